@@ -1,0 +1,104 @@
+"""Measurements and their releases."""
+
+from typing import Any
+
+from django.db import models
+from django.urls import reverse
+
+from core.people.models import Collaboration, User
+
+
+class Axis(models.TextChoices):
+    """What the resolution is even on: x or its logarithm."""
+
+    LINEAR = "linear", "linear"
+    LOG = "log", "logarithmic"
+
+
+class Measurement(models.Model):
+    """One quantity as a function of x."""
+
+    COLLABORATION_PATH = "collaboration"
+
+    collaboration = models.ForeignKey(Collaboration, on_delete=models.CASCADE, related_name="measurements")
+    name = models.CharField(max_length=160)
+    about = models.TextField(blank=True)
+    x_name = models.CharField("name of x", max_length=80)
+    x_unit = models.CharField("unit of x", max_length=40, blank=True)
+    y_name = models.CharField("name of y", max_length=80)
+    y_unit = models.CharField("unit of y", max_length=40, blank=True)
+    axis = models.CharField(max_length=6, choices=Axis.choices, default=Axis.LINEAR)
+    created_by = models.ForeignKey(User, on_delete=models.PROTECT, related_name="+")
+    created_at = models.DateTimeField(auto_now_add=True)
+
+    class Meta:
+        ordering = ("name", "pk")
+        constraints = (models.UniqueConstraint(fields=["collaboration", "name"], name="measurement_name"),)
+
+    def __str__(self) -> str:
+        return self.name
+
+    def get_absolute_url(self) -> str:
+        return reverse("overviews:measurement", args=[self.pk])
+
+    @property
+    def x_label(self) -> str:
+        """Name and unit of x, as on an axis."""
+        return f"{self.x_name} ({self.x_unit})" if self.x_unit else self.x_name
+
+    @property
+    def y_label(self) -> str:
+        """Name and unit of y, as on an axis."""
+        return f"{self.y_name} ({self.y_unit})" if self.y_unit else self.y_name
+
+
+class Release(models.Model):
+    """One numbered data table of a measurement. A draft has no number; a published one never changes."""
+
+    COLLABORATION_PATH = "measurement__collaboration"
+
+    class State(models.TextChoices):
+        DRAFT = "draft", "draft"
+        PUBLISHED = "published", "published"
+
+    measurement = models.ForeignKey(Measurement, on_delete=models.CASCADE, related_name="releases")
+    number = models.PositiveIntegerField(null=True, blank=True)
+    state = models.CharField(max_length=10, choices=State.choices, default=State.DRAFT)
+    note = models.TextField(blank=True)
+    # The numbers of the uploaded table as one .npy of shape (rows, columns), the line each row stood on,
+    # and per column {"header": str, "role": str}; see core.measurements.reading.
+    table = models.BinaryField()
+    lines = models.BinaryField()
+    columns = models.JSONField()
+    covariance = models.BinaryField(null=True, blank=True)
+    file_name = models.CharField(max_length=200)
+    file_sha256 = models.CharField(max_length=64)
+    covariance_name = models.CharField(max_length=200, blank=True)
+    covariance_sha256 = models.CharField(max_length=64, blank=True)
+    points = models.PositiveIntegerField()
+    created_by = models.ForeignKey(User, on_delete=models.PROTECT, related_name="+")
+    created_at = models.DateTimeField(auto_now_add=True)
+    published_at = models.DateTimeField(null=True, blank=True)
+
+    class Meta:
+        ordering = ("measurement", "number", "pk")
+        constraints = (
+            models.UniqueConstraint(fields=["measurement", "number"], name="release_number"),
+            models.CheckConstraint(
+                condition=models.Q(state="draft", number=None) | models.Q(state="published", number__gte=1),
+                name="published_releases_are_numbered",
+            ),
+        )
+
+    def __str__(self) -> str:
+        return f"release {self.number}" if self.number else "draft release"
+
+    def get_absolute_url(self) -> str:
+        return reverse("measurements:release", args=[self.pk])
+
+    def save(self, *args: Any, **kwargs: Any) -> None:
+        """Refuse to change what has been published."""
+        published = Release.objects.filter(pk=self.pk, state=Release.State.PUBLISHED)
+        if self.pk is not None and published.exists():
+            raise TypeError("a published release is immutable; a correction is a new release")
+        super().save(*args, **kwargs)

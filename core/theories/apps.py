@@ -1,0 +1,6 @@
+from django.apps import AppConfig
+
+
+class TheoriesConfig(AppConfig):
+    name = "core.theories"
+    label = "theories"

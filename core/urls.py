@@ -1,0 +1,13 @@
+"""Addresses of the site, one line an app."""
+
+from django.urls import include, path
+
+urlpatterns = [
+    path("accounts/", include("allauth.account.urls")),
+    path("", include("fits.overviews.urls")),
+    path("", include("core.people.urls")),
+    path("", include("core.measurements.urls")),
+    path("", include("core.theories.urls")),
+    path("", include("fits.assessments.urls")),
+    path("", include("fits.reports.urls")),
+]

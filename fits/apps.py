@@ -1,0 +1,6 @@
+from django.apps import AppConfig
+
+
+class FitsConfig(AppConfig):
+    name = "fits"
+    label = "fits"

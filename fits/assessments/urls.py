@@ -1,0 +1,4 @@
+from django.urls import URLPattern
+
+app_name = "assessments"
+urlpatterns: list[URLPattern] = []

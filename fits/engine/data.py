@@ -1,0 +1,225 @@
+"""What is measured: points, their errors, and the rules that both must keep."""
+
+from dataclasses import dataclass, field
+from enum import StrEnum
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fits.engine.refusal import InputRefused
+
+FloatArray = NDArray[np.float64]
+
+MINIMUM_POINTS = 8
+MAXIMUM_COVARIANCE_POINTS = 5000
+
+
+class Axis(StrEnum):
+    """What the resolution is even on: x itself or its logarithm."""
+
+    LINEAR = "linear"
+    LOG = "log"
+
+
+class ErrorSource(StrEnum):
+    """Where the errors come from."""
+
+    GIVEN = "given"  # an error column or a covariance
+    ESTIMATE = "estimate"  # Σ = σ² diag(r²), σ unknown, r = 1 where no relative errors are given
+    COUNTS = "counts"  # y are Poisson counts
+
+
+@dataclass(frozen=True, eq=False)
+class Data:
+    """One measured curve. Arrays are float64 and read-only; build it with `validated_data`.
+
+    x, y        shape (n,), in the order of the upload
+    errors      shape (n,): standard errors (GIVEN), relative errors (ESTIMATE); None with a covariance,
+                with counts, or where all relative errors are 1
+    covariance  shape (n, n) or None
+    shared      name → shape (n,): errors fully correlated across the points
+    low, high   shape (n,) or None: each point is the mean of the curve over [low, high]
+    """
+
+    x: FloatArray
+    y: FloatArray
+    axis: Axis = Axis.LINEAR
+    source: ErrorSource = ErrorSource.GIVEN
+    errors: FloatArray | None = None
+    covariance: FloatArray | None = None
+    shared: dict[str, FloatArray] = field(default_factory=dict)
+    low: FloatArray | None = None
+    high: FloatArray | None = None
+
+    @property
+    def points(self) -> int:
+        """n."""
+        return int(self.x.size)
+
+
+@dataclass(frozen=True, eq=False)
+class CurveTable:
+    """A theory's prediction on a grid of its own: shape (k,) each, x strictly increasing."""
+
+    name: str
+    x: FloatArray
+    y: FloatArray
+
+
+def validated_data(
+    x: FloatArray,
+    y: FloatArray,
+    *,
+    axis: Axis = Axis.LINEAR,
+    source: ErrorSource = ErrorSource.GIVEN,
+    errors: FloatArray | None = None,
+    covariance: FloatArray | None = None,
+    shared: dict[str, FloatArray] | None = None,
+    low: FloatArray | None = None,
+    high: FloatArray | None = None,
+) -> Data:
+    """Check every rule once and return arrays that the kernels can trust.
+
+    Raises InputRefused with field "x", "y", "errors", "covariance", "low" or "shared:NAME" and the index of
+    the first offending point.
+    """
+    x = _clean("x", x)
+    n = x.size
+    if n < MINIMUM_POINTS:
+        raise InputRefused(
+            "too-few-points", "x", f"{n} points, at least {MINIMUM_POINTS} are needed", "Add points"
+        )
+    y = _clean("y", y, n)
+    if low is not None or high is not None:
+        low, high = _bins(low, high, n)
+    if float(x.min()) == float(x.max()):
+        raise InputRefused("all-x-equal", "x", "all x are equal", "A curve needs at least two different x")
+    if axis is Axis.LOG:
+        _positive(
+            "x-not-positive", "x" if low is None else "low", x if low is None else low, "on a log axis x"
+        )
+    return Data(
+        x=x,
+        y=y,
+        axis=axis,
+        source=source,
+        errors=_errors(source, errors, covariance, y),
+        covariance=_covariance(covariance, n),
+        shared={name: _clean(f"shared:{name}", column, n) for name, column in (shared or {}).items()},
+        low=low,
+        high=high,
+    )
+
+
+def validated_curve(name: str, x: FloatArray, y: FloatArray) -> CurveTable:
+    """A curve sorted by x. Raises InputRefused (fields "x", "y") for repeats and for fewer than two points."""
+    x = _clean("x", x)
+    y = _clean("y", y, x.size)
+    if x.size < 2:
+        raise InputRefused("too-few-points", "x", "a curve needs at least two points", "Add points")
+    order = np.argsort(x, kind="stable")
+    repeats = np.flatnonzero(np.diff(x[order]) == 0.0)
+    if repeats.size:
+        second = int(order[repeats[0] + 1])
+        raise InputRefused(
+            "repeated-x", "x", f"x = {x[second]:g} stands twice", "Give each x of a curve once", second
+        )
+    return CurveTable(name, _frozen(x[order]), _frozen(y[order]))
+
+
+def _frozen(values: FloatArray) -> FloatArray:
+    values = np.array(values, dtype=np.float64, copy=True)
+    values.flags.writeable = False
+    return values
+
+
+def _clean(name: str, values: FloatArray, size: int | None = None) -> FloatArray:
+    """A read-only copy, one-dimensional, of the given size and finite."""
+    array = np.asarray(values, dtype=np.float64)
+    if array.ndim != 1 or (size is not None and array.size != size):
+        expected = "one column" if size is None else f"{size} values"
+        raise InputRefused("wrong-shape", name, f"has shape {array.shape}, not {expected}")
+    wrong = np.flatnonzero(~np.isfinite(array))
+    if wrong.size:
+        index = int(wrong[0])
+        kind = "infinite" if np.isinf(array[index]) else "not a number"
+        raise InputRefused(
+            "not-finite", name, f"is {kind}", "Give a finite number or leave the row out", index
+        )
+    return _frozen(array)
+
+
+def _positive(code: str, name: str, values: FloatArray, what: str) -> None:
+    wrong = np.flatnonzero(values <= 0.0)
+    if wrong.size:
+        index = int(wrong[0])
+        raise InputRefused(
+            code,
+            name,
+            f"{what} must be above 0, not {values[index]:g}",
+            "Correct it or leave the row out",
+            index,
+        )
+
+
+def _errors(
+    source: ErrorSource, errors: FloatArray | None, covariance: FloatArray | None, y: FloatArray
+) -> FloatArray | None:
+    if source is ErrorSource.COUNTS:
+        wrong = np.flatnonzero((y < 0.0) | (y != np.round(y)))
+        if wrong.size:
+            index = int(wrong[0])
+            reason = f"{y[index]:g} is not a count"
+            raise InputRefused("not-a-count", "y", reason, "Counts are whole numbers from 0", index)
+        return None
+    if covariance is not None:
+        return None
+    if errors is None:
+        if source is ErrorSource.GIVEN:
+            raise InputRefused(
+                "no-errors",
+                "errors",
+                "there are none",
+                "Add an error column or a covariance, or have them estimated",
+            )
+        return None
+    errors = _clean("errors", errors, y.size)
+    _positive("error-not-positive", "errors", errors, "an error")
+    return errors
+
+
+def _bins(low: FloatArray | None, high: FloatArray | None, n: int) -> tuple[FloatArray, FloatArray]:
+    if low is None or high is None:
+        missing = "low" if low is None else "high"
+        raise InputRefused("half-a-bin", missing, "bins need both edges", "Give lo and hi")
+    low, high = _clean("low", low, n), _clean("high", high, n)
+    wrong = np.flatnonzero(low >= high)
+    if wrong.size:
+        index = int(wrong[0])
+        reason = f"lo = {low[index]:g} is not below hi = {high[index]:g}"
+        raise InputRefused("bin-reversed", "low", reason, "Give lo < hi", index)
+    return low, high
+
+
+def _covariance(covariance: FloatArray | None, n: int) -> FloatArray | None:
+    """Shape, finiteness and symmetry; positive definiteness shows when it is factorised."""
+    if covariance is None:
+        return None
+    matrix = np.asarray(covariance, dtype=np.float64)
+    if matrix.shape != (n, n):
+        reason = f"has shape {' × '.join(map(str, matrix.shape))} for {n} points"
+        raise InputRefused("covariance-shape", "covariance", reason, f"Give {n} × {n} numbers")
+    if n > MAXIMUM_COVARIANCE_POINTS:
+        reason = f"{n} points are more than the {MAXIMUM_COVARIANCE_POINTS} that a covariance may have"
+        raise InputRefused(
+            "covariance-too-large", "covariance", reason, "Thin the data or give an error column"
+        )
+    if not np.isfinite(matrix).all():
+        index = int(np.flatnonzero(~np.isfinite(matrix).all(axis=1))[0])
+        raise InputRefused("not-finite", "covariance", f"row {index + 1} holds a value that is not finite")
+    asymmetry = float(np.abs(matrix - matrix.T).max())
+    largest = float(np.abs(matrix).max())
+    if asymmetry > 1e-9 * largest:
+        reason = f"not symmetric: entries differ from their mirror image by up to {asymmetry:.3g}"
+        raise InputRefused("covariance-asymmetric", "covariance", reason, "Give a symmetric matrix")
+    return _frozen((matrix + matrix.T) / 2.0)

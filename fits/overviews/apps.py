@@ -1,0 +1,6 @@
+from django.apps import AppConfig
+
+
+class OverviewsConfig(AppConfig):
+    name = "fits.overviews"
+    label = "overviews"
