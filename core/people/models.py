@@ -63,7 +63,7 @@ class Collaboration(models.Model):
     name = models.CharField(max_length=120)
     about = models.TextField(blank=True)
     created_at = models.DateTimeField(auto_now_add=True)
-    members: models.ManyToManyField[User, "Membership"] = models.ManyToManyField(
+    members: "models.ManyToManyField[User, Membership]" = models.ManyToManyField(
         User, through="Membership", related_name="collaborations"
     )
 

@@ -32,7 +32,7 @@ class Assessment(models.Model):
     ENDED = (Status.DONE, Status.FAILED, Status.CANCELLED)
 
     release = models.ForeignKey(Release, on_delete=models.CASCADE, related_name="assessments")
-    curves: models.ManyToManyField[Curve, models.Model] = models.ManyToManyField(
+    curves: "models.ManyToManyField[Curve, models.Model]" = models.ManyToManyField(
         Curve, related_name="assessments"
     )
     settings = models.JSONField()
