@@ -1,6 +1,6 @@
 """Who may do what, in one place.
 
-Each model that belongs to a collaboration names its way there in `COLLABORATION_PATH`. Views load rows through
+Each model that belongs to a collaboration names its way there in `COLLABORATION_PATH`. Views load rows by
 `load`, so that a stranger cannot tell a row that is hidden from one that is not there.
 """
 

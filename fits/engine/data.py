@@ -112,7 +112,7 @@ def validated_data(
 
 
 def validated_curve(name: str, x: FloatArray, y: FloatArray) -> CurveTable:
-    """A curve sorted by x. Raises InputRefused (fields "x", "y") for repeats and for fewer than two points."""
+    """A curve sorted by x. Raises InputRefused for repeats and for fewer than two points."""
     x = _clean("x", x)
     y = _clean("y", y, x.size)
     if x.size < 2:
