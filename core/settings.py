@@ -1,8 +1,10 @@
 """All settings. Each that an installation may want to change is read from the environment."""
 
 import contextlib
+import hashlib
 import os
 import secrets
+import tempfile
 from pathlib import Path
 
 import dj_database_url
@@ -23,6 +25,8 @@ def listed(name: str, default: str = "") -> list[str]:
 # What the running site writes: the embedded database, the embedded Redis, the secret key, compiled kernels.
 HOME = Path(os.environ.get("INRADIUS_HOME", BASE_DIR / "var")).resolve()
 HOME.mkdir(parents=True, exist_ok=True, mode=0o700)
+# Numba reads this when it is first imported. The code's own folder may be read-only.
+os.environ.setdefault("NUMBA_CACHE_DIR", str(HOME / "compiled"))
 
 
 def own_secret_key() -> str:
@@ -37,6 +41,15 @@ def own_secret_key() -> str:
             path.hardlink_to(draft)
         draft.unlink()
     return path.read_text()
+
+
+def socket_path() -> Path:
+    """Where the embedded Redis listens: in HOME, or in a short folder where HOME is too long for a socket."""
+    path = HOME / "redis.sock"
+    if len(os.fsencode(path)) < 100:
+        return path
+    mark = hashlib.sha256(os.fsencode(HOME)).hexdigest()[:12]
+    return Path(tempfile.gettempdir()) / f"inradius-{os.getuid()}-{mark}" / "redis.sock"
 
 
 DEBUG = flag("INRADIUS_DEBUG")
@@ -141,7 +154,7 @@ DEFAULT_FROM_EMAIL = os.environ.get("INRADIUS_EMAIL_FROM", "inradius@localhost")
 
 # ---- Jobs ----
 # REDIS_URL names a service; without it the socket is that of the Redis which core.broker starts.
-REDIS_SOCKET = HOME / "redis.sock"
+REDIS_SOCKET = socket_path()
 REDIS_URL = os.environ.get("REDIS_URL", "")
 CELERY_BROKER_URL = REDIS_URL or f"redis+socket://{REDIS_SOCKET}"
 CELERY_TASK_ALWAYS_EAGER = False
@@ -155,6 +168,7 @@ CELERY_WORKER_SOFT_SHUTDOWN_TIMEOUT = 30
 CELERY_WORKER_MAX_TASKS_PER_CHILD = 50
 CELERY_WORKER_MAX_MEMORY_PER_CHILD = 1_500_000  # kB
 CELERY_WORKER_HIJACK_ROOT_LOGGER = False
+CELERY_WORKER_PROC_ALIVE_TIMEOUT = 60
 CELERY_BROKER_CONNECTION_RETRY_ON_STARTUP = True
 # The shortest of the three visibility time-outs wins, so that all three are set.
 CELERY_VISIBILITY_TIMEOUT = 7200
@@ -162,13 +176,21 @@ CELERY_BROKER_TRANSPORT_OPTIONS = {
     "visibility_timeout": 7200,
     "unacked_restore_interval": 10,
     "socket_timeout": 30,
+    "socket_connect_timeout": 5,
     "health_check_interval": 25,
 }
 CELERY_RESULT_BACKEND_TRANSPORT_OPTIONS = {"visibility_timeout": 7200}
 CELERY_BEAT_SCHEDULE_FILENAME = str(HOME / "schedule")
+# Both expire, so that they do not pile up while every worker process is busy.
 CELERY_BEAT_SCHEDULE = {
-    "sweep": {"task": "fits.assessments.tasks.sweep", "schedule": 30.0},
+    "sweep": {"task": "fits.assessments.tasks.sweep", "schedule": 30.0, "options": {"expires": 30.0}},
+    "canary": {"task": "fits.assessments.tasks.canary", "schedule": 60.0, "options": {"expires": 60.0}},
 }
+# A worker that has neither sung (the canary) nor got on with an assessment for so long hangs.
+WORKER_ALIVE_FILE = HOME / "worker-alive"
+WORKER_SILENCE_SECONDS = 180
+# An assessment that nobody picked up for so long is enqueued again: its message may be lost.
+ASSESSMENT_PICK_UP_SECONDS = 20
 # An assessment whose worker has been silent for so long is taken to be lost.
 ASSESSMENT_LEASE_SECONDS = 120
 ASSESSMENT_MAX_ATTEMPTS = 3

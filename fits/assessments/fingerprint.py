@@ -1,0 +1,29 @@
+"""When two assessments are the same computation."""
+
+import hashlib
+import json
+from collections.abc import Iterable, Mapping
+from typing import Any
+
+from core.measurements.models import Release
+from core.theories.models import Curve
+from fits.engine import VERSION
+
+
+def fingerprint(*, release: Release, curves: Iterable[Curve], settings: Mapping[str, Any], seed: int) -> str:
+    """SHA-256 over everything that the numbers depend on; the order of the curves is no part of it."""
+    document = {
+        "engine": VERSION,
+        "release": {
+            "key": release.pk,
+            "file": release.file_sha256,
+            "covariance": release.covariance_sha256,
+            "columns": release.columns,
+            "axis": release.measurement.axis,
+        },
+        "curves": sorted([curve.pk, curve.file_sha256] for curve in curves),
+        "settings": dict(settings),
+        "seed": seed,
+    }
+    text = json.dumps(document, sort_keys=True, separators=(",", ":"), allow_nan=False)
+    return hashlib.sha256(text.encode()).hexdigest()
