@@ -5,6 +5,7 @@ from typing import Any
 
 import numpy as np
 import scipy.special
+from numpy.typing import NDArray
 
 from fits.assessments.document import drawing_grid
 from fits.engine.data import FloatArray
@@ -14,6 +15,8 @@ from fits.engine.ranking import positions
 from fits.engine.resolution import feature_width
 from fits.engine.result import CurveVerdict, Result
 from fits.engine.shrinkage import nested_risks
+
+IndexArray = NDArray[np.int64]
 
 MOST_DRAWN_POINTS = 4000
 MOST_QUANTILES = 400
@@ -68,7 +71,7 @@ def _curve(
     verdict: CurveVerdict,
     grid: FloatArray,
     functions_on_grid: FloatArray,
-    drawn: FloatArray,
+    drawn: IndexArray,
     place: FloatArray,
 ) -> dict[str, Any]:
     fit = result.fit
@@ -118,8 +121,8 @@ def _leftover_quantiles(result: Result) -> dict[str, list[float]] | None:
     return {"expected": expected[shown].tolist(), "observed": observed[shown].tolist()}
 
 
-def _evenly(size: int, most: int) -> "np.ndarray[Any, np.dtype[np.intp]]":
+def _evenly(size: int, most: int) -> IndexArray:
     """Indices of all, or of `most` evenly strewn over them with both ends."""
     if size <= most:
-        return np.arange(size)
-    return np.unique(np.linspace(0, size - 1, most).round().astype(np.intp))
+        return np.arange(size, dtype=np.int64)
+    return np.unique(np.linspace(0, size - 1, most).round().astype(np.int64))

@@ -1,0 +1,106 @@
+"""Ranks curves against a table of data, without database or broker."""
+
+from typing import Any
+
+import numpy as np
+from django.core.management.base import CommandParser
+
+from fits.assessments.detail import detail_document
+from fits.assessments.document import level_key, result_document
+from fits.engine.assess import assess
+from fits.management.base import FileCommand
+from fits.management.options import add_options, read_inputs
+
+
+class Command(FileCommand):
+    """`manage.py rank DATA CURVE …`"""
+
+    help = "Rank curves against data: distance, p-values, and which confidence sets hold them."
+
+    def add_arguments(self, parser: CommandParser) -> None:
+        add_options(parser)
+        parser.add_argument("curves", metavar="CURVE", nargs="+", help="table with x and y")
+        parser.add_argument("--page", metavar="FILE", help="write a report page that stands alone")
+
+    def compute(self, options: dict[str, Any]) -> None:
+        inputs = read_inputs(options, options["curves"], command="rank")
+        rng = np.random.default_rng(inputs.seed)
+        found = assess(inputs.data, inputs.curves, inputs.settings, rng=rng)
+        result = result_document(found, seed=inputs.seed)
+        if options["page"]:
+            # Loaded here, since charts take longer to load than a ranking to compute.
+            from fits.reports.standalone import render_standalone
+
+            page = render_standalone(result, detail_document(found), inputs.context)
+            self.write_file(options["page"], page)
+        if options["json"]:
+            self.write_json(options["json"], result)
+        if options["json"] != "-":
+            self.stdout.write(ranking_table(result))
+
+
+def ranking_table(result: dict[str, Any]) -> str:
+    """The result for people at a terminal."""
+    levels = [level_key(radius["level"]) for radius in result["radii"]]
+    rows = [
+        ["rank", "curve", "distance", "entry", "p-value", "scale p", "worst scale"]
+        + [f"{100 * float(level):g} %" for level in levels]
+    ]
+    for curve in result["curves"]:
+        marks = [_word(curve, level) for level in levels]
+        rows.append(
+            [
+                f"{curve['rank']}{'' if curve['order_settled'] else '~'}",
+                curve["name"],
+                f"{curve['distance']:.4f}",
+                f"{100 * curve['entry_level']['calibrated']:.1f} %",
+                f"{curve['p_value']:.4f} ± {curve['p_value_error']:.4f}",
+                f"{curve['scales']['p_value']:.4f}",
+                f"> {curve['scales']['worst']['wider_than']:.3g}",
+                *marks,
+            ]
+        )
+    lines = _aligned(rows)
+    if not all(curve["order_settled"] for curve in result["curves"]):
+        lines += ["", "~ the data do not settle the order of neighbours so marked"]
+    if any("but off" in row[-k] for row in rows[1:] for k in range(1, len(levels) + 1)):
+        lines += ["but off: inside the ball, rejected by the scale set; see its scale p and worst scale"]
+    lines += ["", *_aligned(_radii(result)), "", *_summary(result)]
+    return "\n".join(lines + [f"Note: {note['message']}" for note in result["notes"]])
+
+
+def _word(curve: dict[str, Any], level: str) -> str:
+    if not curve["inside"]["exact"][level]:
+        return "outside"
+    return "inside" if curve["inside"]["scales"][level] else "inside, but off"
+
+
+def _radii(result: dict[str, Any]) -> list[list[str]]:
+    kinds = ("published", "calibrated", "cautious")
+    return [["radius", *kinds]] + [
+        [f"{100 * radius['level']:g} %", *(f"{radius[kind]:.4f}" for kind in kinds)]
+        for radius in result["radii"]
+    ]
+
+
+def _summary(result: dict[str, Any]) -> list[str]:
+    fit, leftover = result["fit"], result["leftover"]
+    lines = [
+        f"{result['release']['points']} points, resolution {fit['resolution']}, "
+        f"{fit['effective_parameters']:.2f} effective parameters, {fit['shrinkage']} shrinkage"
+    ]
+    if leftover:
+        lines.append(
+            f"leftover χ² {leftover['chi2']:.2f} on {leftover['dof']}, p = {leftover['p_value']:.3g}"
+        )
+    if result["release"]["sigma"] is not None:
+        lines.append(f"estimated error size {result['release']['sigma']:.4g}")
+    lines.append("Inside means not ruled out at that level; it never means proved.")
+    return lines
+
+
+def _aligned(rows: list[list[str]]) -> list[str]:
+    widths = [max(len(row[column]) for row in rows) for column in range(len(rows[0]))]
+    return [
+        "  ".join(cell.ljust(width) for cell, width in zip(row, widths, strict=True)).rstrip() for row in rows
+    ]
