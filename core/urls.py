@@ -2,7 +2,10 @@
 
 from django.urls import include, path
 
+from core.health import health
+
 urlpatterns = [
+    path("health", health),
     path("accounts/", include("allauth.account.urls")),
     path("", include("fits.overviews.urls")),
     path("", include("core.people.urls")),
