@@ -10,7 +10,6 @@ import pytest
 from django.test import Client
 from django.utils import timezone
 from numpy.typing import NDArray
-from pytest_django import Settings
 
 from core.measurements.models import Measurement, Release
 from core.people.models import Collaboration, Membership, Role, User
@@ -32,12 +31,6 @@ def npy(array: NDArray[np.float64] | NDArray[np.int64]) -> bytes:
     buffer = io.BytesIO()
     np.save(buffer, array, allow_pickle=False)
     return buffer.getvalue()
-
-
-@pytest.fixture(autouse=True)
-def quick_passwords(settings: Settings) -> None:
-    """Hash at once what is meant to take its time."""
-    settings.PASSWORD_HASHERS = ["django.contrib.auth.hashers.MD5PasswordHasher"]
 
 
 @pytest.fixture
