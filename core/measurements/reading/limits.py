@@ -1,0 +1,34 @@
+"""How much of a file is read at all. Each is checked before anything that it bounds is built."""
+
+from dataclasses import dataclass
+
+MAXIMUM_BYTES = 50 * 1024 * 1024
+MAXIMUM_ROWS = 1_000_000
+MAXIMUM_COVARIANCE_POINTS = 5000
+# Header, comments and blank lines that may stand beside the rows.
+SPARE_LINES = 10_000
+MAXIMUM_NAME_LENGTH = 200
+MAXIMUM_HEADER_LENGTH = 80
+
+# Of the child process that reads uploads for the web pages.
+CHILD_ADDRESS_SPACE = 1024 * 1024 * 1024
+CHILD_CPU_SECONDS = 60
+CHILD_WALL_SECONDS = 75
+CHILD_FILE_BYTES = 512 * 1024 * 1024
+CHILD_OPEN_FILES = 64
+
+
+@dataclass(frozen=True)
+class TableLimits:
+    """The largest table of one kind."""
+
+    rows: int
+    columns: int
+    line_length: int
+
+
+DATA_TABLE = TableLimits(rows=MAXIMUM_ROWS, columns=200, line_length=20_000)
+# 5000 numbers of up to 30 characters each.
+COVARIANCE_TABLE = TableLimits(
+    rows=MAXIMUM_COVARIANCE_POINTS, columns=MAXIMUM_COVARIANCE_POINTS, line_length=150_000
+)
