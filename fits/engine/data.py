@@ -12,6 +12,9 @@ FloatArray = NDArray[np.float64]
 
 MINIMUM_POINTS = 8
 MAXIMUM_COVARIANCE_POINTS = 5000
+# Rounding may differ between a matrix and its mirror image by this share of the largest entry.
+SYMMETRY_TOLERANCE = 1e-9
+_ROWS_AT_A_TIME = 256
 
 
 class Axis(StrEnum):
@@ -217,9 +220,29 @@ def _covariance(covariance: FloatArray | None, n: int) -> FloatArray | None:
     if not np.isfinite(matrix).all():
         index = int(np.flatnonzero(~np.isfinite(matrix).all(axis=1))[0])
         raise InputRefused("not-finite", "covariance", f"row {index + 1} holds a value that is not finite")
-    asymmetry = float(np.abs(matrix - matrix.T).max())
-    largest = float(np.abs(matrix).max())
-    if asymmetry > 1e-9 * largest:
+    matrix = matrix.copy()
+    asymmetry = _symmetrise(matrix)
+    if asymmetry > SYMMETRY_TOLERANCE * max(float(matrix.max()), -float(matrix.min())):
         reason = f"not symmetric: entries differ from their mirror image by up to {asymmetry:.3g}"
         raise InputRefused("covariance-asymmetric", "covariance", reason, "Give a symmetric matrix")
-    return _frozen((matrix + matrix.T) / 2.0)
+    matrix.flags.writeable = False
+    return matrix
+
+
+def _symmetrise(matrix: FloatArray) -> float:
+    """Replace the matrix by its symmetric part; returns the largest asymmetry that it had.
+
+    A block of rows at a time, so that a large matrix is not held several times over.
+    """
+    largest = 0.0
+    for start in range(0, len(matrix), _ROWS_AT_A_TIME):
+        rows, columns = (
+            matrix[start : start + _ROWS_AT_A_TIME, start:],
+            matrix[start:, start : start + _ROWS_AT_A_TIME],
+        )
+        mirrored = columns.T.copy()
+        largest = max(largest, float(np.abs(rows - mirrored).max()))
+        mean = (rows + mirrored) / 2.0
+        rows[:] = mean
+        columns[:] = mean.T
+    return largest

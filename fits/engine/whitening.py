@@ -76,9 +76,9 @@ def whitening_of(data: Data) -> Whitening:
             f"shared errors of {data.points} points; at most {MAXIMUM_COVARIANCE_POINTS} are supported",
             "Thin the data",
         )
-    matrix = np.diag(independent**2) if data.covariance is None else data.covariance.copy()
+    matrix = np.diag(independent**2) if data.covariance is None else data.covariance
     for column in data.shared.values():
-        matrix += np.outer(column, column)
+        matrix = matrix + np.outer(column, column)
     return CorrelatedErrors(cholesky(matrix))
 
 

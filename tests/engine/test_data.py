@@ -86,3 +86,15 @@ def test_a_curve_in_any_order_is_sorted() -> None:
 def test_settings_that_cannot_be_are_refused(settings: dict[str, Any]) -> None:
     with pytest.raises(InputRefused):
         Settings(**settings)
+
+
+def test_rounding_between_a_covariance_and_its_mirror_image_is_averaged_out() -> None:
+    rng = np.random.default_rng(1)
+    root = rng.normal(size=(600, 600))
+    matrix = root @ root.T + 600 * np.eye(600)
+    rough = matrix * (1 + 1e-13 * rng.normal(size=matrix.shape))
+    x = np.arange(600.0)
+    found = validated_data(x, x, covariance=rough).covariance
+    assert found is not None
+    assert (found == found.T).all()
+    assert found == pytest.approx((rough + rough.T) / 2, rel=1e-15)
