@@ -1,0 +1,1 @@
+"""The made-up scenario that `manage.py demo` shows."""
