@@ -1,0 +1,29 @@
+"""Publish a draft release: from then on it never changes."""
+
+from django.db import transaction
+from django.db.models import Max
+from django.utils import timezone
+
+from core.errors import UserError
+from core.measurements.models import Measurement, Release
+from core.measurements.stored_release import data_of
+from core.people.models import User
+
+
+@transaction.atomic
+def publish_release(release: Release, user: User) -> Release:
+    """Number the draft and make it immutable, once all rules of its data hold."""
+    # The measurement's row is the lock: two who publish at once get one number after the other.
+    measurement = Measurement.objects.select_for_update().get(pk=release.measurement_id)
+    draft = Release.objects.filter(pk=release.pk, state=Release.State.DRAFT).first()
+    if draft is None:
+        raise UserError("not-a-draft", "this release is a draft no more", "Look at the measurement's page")
+    draft.measurement = measurement
+    data_of(draft)
+    last = measurement.releases.aggregate(last=Max("number"))["last"] or 0
+    draft.number = last + 1
+    draft.state = Release.State.PUBLISHED
+    draft.published_at = timezone.now()
+    draft.created_by = user  # whoever publishes answers for it
+    draft.save(update_fields=["number", "state", "published_at", "created_by"])
+    return draft
