@@ -1,0 +1,71 @@
+"""How numbers are written: never more digits than are known, never a zero that is only small."""
+
+import math
+
+
+def significant(value: float, digits: int = 3) -> str:
+    """Rounded to so many digits, without an exponent where that is readable."""
+    if value == 0.0:
+        return "0"
+    exponent = math.floor(math.log10(abs(float(f"{value:.{digits - 1}e}"))))
+    if -4 <= exponent < 6:
+        return f"{value:.{max(0, digits - 1 - exponent)}f}".replace("-", "−")
+    return f"{value:.{digits - 1}e}".replace("-", "−")
+
+
+def p_value(value: float, error: float | None = None, *, smallest: float | None = None) -> str:
+    """A p-value with its simulation error: "0.091 ± 0.006".
+
+    smallest  the least that the simulation can give: at it only a bound is known, "< 0.0005"
+    """
+    if smallest is not None and value <= smallest * (1.0 + 1e-9):
+        bound = ceiling(smallest)
+        return f"{'<' if smallest < float(bound) else '≤'} {bound}"
+    if error is None or error == 0.0:
+        return f"{value:.3f}" if value >= 0.001 else significant(value, 1)
+    # One digit of the error, two where that digit is a one.
+    exponent = math.floor(math.log10(error))
+    digits = -exponent + (1 if error / 10**exponent < 1.95 and exponent > -4 else 0)
+    places = min(max(digits, 2), 6)
+    return f"{value:.{places}f} ± {error:.{places}f}"
+
+
+def ceiling(value: float) -> str:
+    """Rounded up to one digit, as a bound is."""
+    exponent = math.floor(math.log10(value) + 1e-12)
+    digit = math.ceil(value / 10**exponent - 1e-9)
+    if digit == 10:
+        digit, exponent = 1, exponent + 1
+    return f"{digit * 10.0**exponent:.{max(0, -exponent)}f}"
+
+
+def smallest_p_value(draws: int) -> float:
+    """1/(B + 1): what is left when no simulated repeat is as far off."""
+    return 1.0 / (draws + 1.0)
+
+
+def percent(share: float, *, places: int = 0) -> str:
+    """A share as "95 %"."""
+    text = f"{100.0 * share:.{places}f}" if places else f"{100.0 * share:.6g}"
+    return f"{text} %"
+
+
+def entry_level(level: float) -> str:
+    """The smallest level whose ball holds a curve; 0 and 1 are only what the simulation or rounding leave."""
+    if level < 0.001:
+        return "< 0.1 %"
+    if level > 0.999:
+        return "> 99.9 %"
+    return percent(level, places=1)
+
+
+def level_words(level: str) -> str:
+    """ "0.95" as "95 %"."""
+    return percent(float(level))
+
+
+def width(value: float, *, unit: str = "", log: bool = False) -> str:
+    """The width of a feature: in units of x, or as a factor on a log axis."""
+    if log:
+        return f"a factor of {significant(math.exp(value))}" if value < 20.0 else "the whole range"
+    return f"{significant(value)} {unit}".strip()

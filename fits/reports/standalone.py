@@ -1,0 +1,69 @@
+"""A result as one file that needs no server: styles, scripts and drawings are inside it."""
+
+import base64
+import json
+from pathlib import Path
+from typing import Any
+
+from django.contrib.staticfiles import finders
+from django.template.loader import render_to_string
+from django.utils.safestring import SafeString, mark_safe
+
+from fits.reports.exports import ranking_csv, table_csv
+from fits.reports.figures.figure import Figure
+from fits.reports.figures.svg import svg
+from fits.reports.page import result_page
+from fits.reports.snapshot import Document, Snapshot
+
+STYLES = ("css/site.css", "css/report.css", "css/plotly.css")
+SCRIPTS = ("vendor/plotly/plotly-cartesian.min.js", "js/charts.js")
+
+
+class InsideThePage:
+    """Addresses that hold what they lead to."""
+
+    def __init__(self, snapshot: Snapshot) -> None:
+        self.snapshot = snapshot
+
+    def chart(self, figure: Figure, form: str) -> str:
+        """The chart as a data: address."""
+        if form == "svg":
+            return data_address("image/svg+xml", svg(figure))
+        return data_address("text/csv", table_csv(figure.table))
+
+    def result_json(self) -> str:
+        """The result as a data: address."""
+        return data_address("application/json", json.dumps(self.snapshot.result))
+
+    def ranking_csv(self) -> str:
+        """The ranking as a data: address."""
+        return data_address("text/csv", ranking_csv(self.snapshot))
+
+
+def render_standalone(result: Document, detail: Document, context: Document) -> str:
+    """The page. Reads static files only: no database, no request, no network."""
+    snapshot = Snapshot(result, detail, context)
+    page: dict[str, Any] = result_page(snapshot, InsideThePage(snapshot))
+    page["styles"] = [_style(_static(name)) for name in STYLES]
+    page["scripts"] = [_script(_static(name)) for name in SCRIPTS]
+    return render_to_string("reports/standalone.html", page)
+
+
+def data_address(kind: str, text: str) -> str:
+    """A data: address of a text."""
+    return f"data:{kind};charset=utf-8;base64,{base64.b64encode(text.encode()).decode()}"
+
+
+def _static(name: str) -> str:
+    path = finders.find(name)
+    assert isinstance(path, str), f"static file {name} is missing"
+    return Path(path).read_text(encoding="utf-8")
+
+
+# These are files of ours: nothing that anybody sent is in them. What would end the element early is broken up.
+def _script(text: str) -> SafeString:
+    return mark_safe(text.replace("</script", r"<\/script").replace("<!--", r"<\!--"))  # noqa: S308
+
+
+def _style(text: str) -> SafeString:
+    return mark_safe(text.replace("</style", r"<\/style"))  # noqa: S308
