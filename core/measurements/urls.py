@@ -1,4 +1,16 @@
-from django.urls import URLPattern
+"""Addresses of measurements and releases."""
+
+from django.urls import path
+
+from core.measurements import views
 
 app_name = "measurements"
-urlpatterns: list[URLPattern] = []
+urlpatterns = [
+    path("collaborations/<int:pk>/measurements/new", views.new_measurement, name="new_measurement"),
+    path("measurements/<int:pk>/edit", views.edit_measurement, name="edit_measurement"),
+    path("measurements/<int:pk>/releases/new", views.upload, name="upload"),
+    path("releases/<int:pk>/", views.release, name="release"),
+    path("releases/<int:pk>/publish", views.publish, name="publish"),
+    path("releases/<int:pk>/discard", views.discard, name="discard"),
+    path("releases/<int:pk>/table.csv", views.download, name="download"),
+]
