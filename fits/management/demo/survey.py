@@ -1,6 +1,5 @@
 """The survey of Lake Merrow: three releases drawn from the parabolic floor, and the four theories' curves."""
 
-import hashlib
 import io
 from collections.abc import Callable
 from dataclasses import dataclass
@@ -141,8 +140,3 @@ def npy(array: FloatArray) -> bytes:
     buffer = io.BytesIO()
     np.save(buffer, array, allow_pickle=False)
     return buffer.getvalue()
-
-
-def password_of(email: str) -> str:
-    """The password of a demo account: made up, and the same at each start, so that it can be printed again."""
-    return "merrow-" + hashlib.sha256(email.encode()).hexdigest()[:8]
