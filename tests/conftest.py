@@ -149,3 +149,9 @@ def pytest_sessionfinish(session: pytest.Session) -> None:
     """Where everything is installed (CI=true) a skipped test is a failure."""
     if os.environ.get("CI") == "true" and session.exitstatus == 0 and _skipped(session):
         session.exitstatus = pytest.ExitCode.TESTS_FAILED
+
+
+def pytest_terminal_summary(terminalreporter: pytest.TerminalReporter) -> None:
+    """Say why a run without failures failed."""
+    if os.environ.get("CI") == "true" and terminalreporter.stats.get("skipped"):
+        terminalreporter.write_line("skipped tests are failures where CI=true", red=True)
