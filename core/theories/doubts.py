@@ -1,0 +1,83 @@
+"""What looks wrong with a curve beside the data that it predicts. None of it stops a submission."""
+
+import numpy as np
+
+from core.measurements.preview_figure import standard_errors
+from fits.engine.data import CurveTable, Data, FloatArray
+from fits.engine.interpolation import curve_at_data
+from fits.engine.refusal import InputRefused
+
+# A curve this many times larger or smaller than the data is likely to be in another unit.
+ODD_RATIO = 10.0
+# Cubic and monotone cubic interpolation may differ by this share of an error bar.
+COARSE = 0.05
+ROUNDING = 1e-9
+
+
+def doubts(curve: CurveTable, data: Data) -> list[str]:
+    """One sentence for each doubt: range, size, grid."""
+    low = float(np.min(data.x if data.low is None else data.low))
+    high = float(np.max(data.x if data.high is None else data.high))
+    if curve.x[-1] < low or curve.x[0] > high:
+        return [
+            f"Your curve covers {_stretch(curve.x[0], curve.x[-1])}, the data {_stretch(low, high)}: "
+            "they have no x in common. Check the unit of x."
+        ]
+    return [*_missing(curve, low, high), *_odd_size(curve, data), *_coarse_grid(curve, data)]
+
+
+def _missing(curve: CurveTable, low: float, high: float) -> list[str]:
+    slack = ROUNDING * (high - low)
+    missing = []
+    if curve.x[0] > low + slack:
+        missing.append(_stretch(low, curve.x[0]))
+    if curve.x[-1] < high - slack:
+        missing.append(_stretch(curve.x[-1], high))
+    if not missing:
+        return []
+    return [
+        f"Your curve covers {_stretch(curve.x[0], curve.x[-1])}, the data {_stretch(low, high)}: "
+        f"missing stretch {' and '.join(missing)}. "
+        "A curve is never continued, so it cannot be assessed on these data."
+    ]
+
+
+def _odd_size(curve: CurveTable, data: Data) -> list[str]:
+    values = np.interp(data.x, curve.x, curve.y)
+    there = (data.x >= curve.x[0]) & (data.x <= curve.x[-1])
+    if not there.any():
+        return []
+    of_curve, of_data = _size(values[there]), _size(data.y[there])
+    if of_curve == 0.0 or of_data == 0.0:
+        return []
+    ratio = of_curve / of_data
+    if 1.0 / ODD_RATIO <= ratio <= ODD_RATIO:
+        return []
+    if ratio > 1.0:
+        return [f"Your curve is typically {ratio:.3g} times as large as the data. Check the unit of y."]
+    return [f"Your curve is typically {1.0 / ratio:.3g} times as small as the data. Check the unit of y."]
+
+
+def _coarse_grid(curve: CurveTable, data: Data) -> list[str]:
+    errors = standard_errors(data)
+    try:
+        at_data = curve_at_data(curve, data)
+    except InputRefused:
+        return []
+    if errors is None:
+        return []
+    difference = float(np.sqrt(np.mean(((at_data.cubic - at_data.monotone) / errors) ** 2)))
+    if difference <= COARSE:
+        return []
+    return [
+        f"Two ways of interpolating your curve differ by {difference:.2g} error bars: "
+        "its grid is too coarse. Give it at more values of x."
+    ]
+
+
+def _size(values: FloatArray) -> float:
+    return float(np.sqrt(np.mean(values**2)))
+
+
+def _stretch(low: float, high: float) -> str:
+    return f"{low:.6g}–{high:.6g}" if low >= 0.0 else f"{low:.6g} to {high:.6g}"

@@ -1,0 +1,49 @@
+"""What is asked for on the pages of theories and curves."""
+
+from typing import Any
+
+from django import forms
+
+from core.measurements.forms import UploadField
+from core.measurements.models import Measurement
+from core.theories.models import Theory
+
+
+class TheoryForm(forms.ModelForm[Theory]):
+    """Words of a theory."""
+
+    class Meta:
+        model = Theory
+        fields = ("name", "proposed_by", "description", "reference")
+        labels = {"proposed_by": "Proposed by", "description": "What it says"}  # noqa: RUF012
+        help_texts = {  # noqa: RUF012
+            "name": "Short: it stands in tables and beside curves.",
+            "proposed_by": "A person or a group.",
+            "reference": "Where it is written down.",
+        }
+
+
+class CurveForm(forms.Form):
+    """A curve to upload: the measurement that it predicts, the file, a note."""
+
+    measurement = forms.ModelChoiceField(
+        Measurement.objects.none(),
+        label="Measurement",
+        empty_label=None,
+        help_text="What the curve predicts.",
+    )
+    table = UploadField(
+        label="Curve",
+        help_text="Text with two columns, x and y, on a grid of your own, in any order and without repeats. "
+        "It must reach over the whole range of the data.",
+    )
+    note = forms.CharField(
+        label="What is new in it", required=False, max_length=2000, widget=forms.Textarea(attrs={"rows": 3})
+    )
+
+    def __init__(self, theory: Theory, *args: Any, **kwargs: Any) -> None:
+        super().__init__(*args, **kwargs)
+        measurements = Measurement.objects.filter(collaboration=theory.collaboration)
+        choice = self.fields["measurement"]
+        assert isinstance(choice, forms.ModelChoiceField)
+        choice.queryset = measurements
