@@ -29,7 +29,7 @@ class UploadField(forms.FileField):
         limit = {"data-limit": settings.UPLOAD_MAX_BYTES}
         super().__init__(widget=forms.ClearableFileInput(attrs=limit), max_length=255, **kwargs)
 
-    def to_python(self, data: File[Any] | None) -> File[Any] | None:
+    def to_python(self, data: "File[Any] | None") -> "File[Any] | None":
         """Refuse what is too large."""
         file = super().to_python(data)
         if file is not None and (file.size or 0) > settings.UPLOAD_MAX_BYTES:
@@ -38,7 +38,7 @@ class UploadField(forms.FileField):
         return file
 
 
-class MeasurementForm(forms.ModelForm[Measurement]):
+class MeasurementForm(forms.ModelForm):  # type: ignore[type-arg]
     """Words and axis of a measurement."""
 
     class Meta:

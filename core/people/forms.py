@@ -14,7 +14,7 @@ def explain(form: forms.BaseForm, error: UserError, field: str | None = None) ->
     form.add_error(field, f"{error.reason[:1].upper()}{error.reason[1:]}.{remedy}")
 
 
-class CollaborationForm(forms.ModelForm[Collaboration]):
+class CollaborationForm(forms.ModelForm):  # type: ignore[type-arg]
     """Name and description of a collaboration."""
 
     class Meta:

@@ -9,7 +9,7 @@ from core.measurements.models import Measurement
 from core.theories.models import Theory
 
 
-class TheoryForm(forms.ModelForm[Theory]):
+class TheoryForm(forms.ModelForm):  # type: ignore[type-arg]
     """Words of a theory."""
 
     class Meta:
