@@ -1,0 +1,1 @@
+"""The pages that are read: home, collaboration, measurement, theory."""

@@ -1,0 +1,118 @@
+"""What the page of a collaboration shows."""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from django.db.models import Count, Q
+
+from core.measurements.models import Measurement
+from core.people.models import Collaboration, Membership
+from core.theories.models import Curve, Theory
+from fits.overviews.standings import (
+    NewestCurve,
+    ReleaseSummary,
+    Standing,
+    by_theory,
+    newest_curves,
+    releases_of,
+    standings_in,
+)
+from fits.reports.models import Report
+
+MOST_REPORTS = 20
+
+
+@dataclass(frozen=True)
+class MeasurementRow:
+    """A measurement and its newest published release."""
+
+    measurement: Measurement
+    newest: ReleaseSummary | None
+
+
+@dataclass(frozen=True)
+class Cell:
+    """A theory on a measurement: judged, or submitted and not judged, or without a curve."""
+
+    standing: Standing | None
+    newest: NewestCurve | None
+
+    @property
+    def unjudged(self) -> NewestCurve | None:
+        """A submitted version newer than the one judged."""
+        if self.standing is None or self.newest is None or self.newest.version <= self.standing.version:
+            return None
+        return self.newest
+
+
+@dataclass(frozen=True)
+class TheoryRow:
+    """A theory with its number of curves, and how it stands on each measurement."""
+
+    theory: Theory
+    curves: int
+    cells: tuple[Cell, ...]
+
+
+@dataclass(frozen=True)
+class CollaborationPage:
+    """Measurements, theories, reports and people, in the order in which they are read."""
+
+    measurements: tuple[MeasurementRow, ...]
+    theories: tuple[TheoryRow, ...]
+    reports: tuple[Report, ...]
+    people: tuple[Membership, ...]
+
+    @property
+    def released(self) -> tuple[MeasurementRow, ...]:
+        """The measurements on which a theory can stand, the columns of the comparison."""
+        return tuple(row for row in self.measurements if row.newest)
+
+
+def collaboration_page(collaboration: Collaboration) -> CollaborationPage:
+    """Gather the page in seven queries."""
+    measurements = list(Measurement.objects.filter(collaboration=collaboration))
+    releases = releases_of([measurement.pk for measurement in measurements])
+    rows = tuple(
+        MeasurementRow(measurement, next(iter(releases.get(measurement.pk, [])), None))
+        for measurement in measurements
+    )
+    reports = Report.objects.filter(collaboration=collaboration).select_related("author")
+    people = Membership.objects.filter(collaboration=collaboration).select_related("user")
+    return CollaborationPage(
+        measurements=rows,
+        theories=_theories(collaboration, [row for row in rows if row.newest]),
+        reports=tuple(
+            reports.only("title", "created_at", "collaboration", "author__name", "author__email")[
+                :MOST_REPORTS
+            ]
+        ),
+        people=tuple(people),
+    )
+
+
+def _theories(collaboration: Collaboration, released: Sequence[MeasurementRow]) -> tuple[TheoryRow, ...]:
+    assessments = {
+        row.measurement.pk: row.newest.assessment for row in released if row.newest and row.newest.assessment
+    }
+    found = standings_in(assessments.values())
+    judged = {
+        measurement: by_theory(found.get(assessment, [])) for measurement, assessment in assessments.items()
+    }
+    newest = newest_curves([row.measurement.pk for row in released])
+    submitted = Count("curves", filter=Q(curves__state=Curve.State.SUBMITTED))
+    theories = Theory.objects.filter(collaboration=collaboration).annotate(submitted=submitted)
+    return tuple(
+        TheoryRow(
+            theory=theory,
+            curves=theory.submitted,
+            cells=tuple(
+                Cell(
+                    standing=judged.get(row.measurement.pk, {}).get(theory.pk),
+                    newest=newest.get((theory.pk, row.measurement.pk)),
+                )
+                for row in released
+            ),
+        )
+        for theory in theories
+    )

@@ -1,0 +1,147 @@
+"""What happened in someone's collaborations: releases published, assessments done, reports written."""
+
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass
+from datetime import datetime
+from typing import Any, TypeVar
+
+from django.db.models import F, Model, QuerySet, Window
+from django.db.models.functions import RowNumber
+from django.urls import reverse
+
+from core.measurements.models import Release
+from fits.assessments.models import Assessment
+from fits.overviews.standings import Standing, standings_in
+from fits.reports.models import Report
+
+# Of each kind so many a collaboration, newest first; what is older stands on the pages themselves.
+MOST = 20
+MOST_EARLIER = 5
+
+Row = TypeVar("Row", bound=Model)
+
+
+@dataclass(frozen=True)
+class News:
+    """Something that happened. `outcome` is the one line that an assessment comes to."""
+
+    at: datetime
+    what: str
+    url: str
+    where: str
+    where_url: str
+    detail: str
+    outcome: tuple[Standing, ...] = ()
+
+    @property
+    def inside(self) -> list[str]:
+        """Names of those inside at 95 %."""
+        return [_name(standing, self.outcome) for standing in self.outcome if standing.is_inside]
+
+    @property
+    def outside(self) -> list[str]:
+        """Names of those outside at 95 %."""
+        return [_name(standing, self.outcome) for standing in self.outcome if not standing.is_inside]
+
+
+@dataclass(frozen=True)
+class Digest:
+    """The news of one collaboration, newest first: since the last look, and some of before it."""
+
+    new: tuple[News, ...]
+    earlier: tuple[News, ...]
+
+
+def digests(collaborations: Iterable[int], since: datetime | None) -> dict[int, Digest]:
+    """The digest of each collaboration; everything is new to someone who never looked. Four queries."""
+    keys = list(collaborations)
+    found: dict[int, list[News]] = {key: [] for key in keys}
+    for kind in (_releases(keys), _assessments(keys), _reports(keys)):
+        for collaboration, news in kind:
+            found[collaboration].append(news)
+    return {key: _digest(news, since) for key, news in found.items()}
+
+
+def _digest(news: list[News], since: datetime | None) -> Digest:
+    ordered = sorted(news, key=lambda item: item.at, reverse=True)
+    new = tuple(item for item in ordered if since is None or item.at > since)
+    return Digest(new=new, earlier=tuple(ordered[len(new) :][:MOST_EARLIER]))
+
+
+def _releases(collaborations: list[int]) -> list[tuple[int, News]]:
+    path = "measurement__collaboration"
+    published = Release.objects.filter(state=Release.State.PUBLISHED, **{f"{path}__in": collaborations})
+    rows = _newest(published, path, "published_at", "number", "points", "measurement", "measurement__name")
+    return [
+        (
+            row[path],
+            News(
+                at=row["published_at"],
+                what=f"Release {row['number']}",
+                url=reverse("measurements:release", args=[row["pk"]]),
+                where=row["measurement__name"],
+                where_url=reverse("overviews:measurement", args=[row["measurement"]]),
+                detail=f"{row['points']} points",
+            ),
+        )
+        for row in rows
+    ]
+
+
+def _assessments(collaborations: list[int]) -> list[tuple[int, News]]:
+    path = "release__measurement__collaboration"
+    done = Assessment.objects.filter(
+        status=Assessment.Status.DONE, ended_at__isnull=False, **{f"{path}__in": collaborations}
+    )
+    rows = _newest(
+        done, path, "ended_at", "release__number", "release__measurement", "release__measurement__name"
+    )
+    outcomes = standings_in([row["pk"] for row in rows])
+    return [
+        (
+            row[path],
+            News(
+                at=row["ended_at"],
+                what=f"Assessment of release {row['release__number']}",
+                url=reverse("reports:assessment", args=[row["pk"]]),
+                where=row["release__measurement__name"],
+                where_url=reverse("overviews:measurement", args=[row["release__measurement"]]),
+                detail="",
+                outcome=tuple(outcomes.get(row["pk"], [])),
+            ),
+        )
+        for row in rows
+    ]
+
+
+def _reports(collaborations: list[int]) -> list[tuple[int, News]]:
+    written = Report.objects.filter(collaboration__in=collaborations)
+    rows = _newest(written, "collaboration", "created_at", "title", "author__name", "author__email")
+    return [
+        (
+            row["collaboration"],
+            News(
+                at=row["created_at"],
+                what=f"Report: {row['title']}",
+                url=reverse("reports:report", args=[row["pk"]]),
+                where="",
+                where_url="",
+                detail=f"by {row['author__name'] or row['author__email']}",
+            ),
+        )
+        for row in rows
+    ]
+
+
+def _newest(rows: QuerySet[Row], collaboration: str, moment: str, *fields: str) -> list[Mapping[str, Any]]:
+    """These fields of the newest MOST rows of each collaboration."""
+    newest_first = [F(moment).desc(), F("pk").desc()]
+    place = Window(RowNumber(), partition_by=[F(collaboration)], order_by=newest_first)
+    newest = rows.annotate(place=place).filter(place__lte=MOST)
+    return list(newest.values("pk", collaboration, moment, *fields))
+
+
+def _name(standing: Standing, together: tuple[Standing, ...]) -> str:
+    """The theory's name, with the version where two curves of it were judged together."""
+    same = sum(other.theory == standing.theory for other in together)
+    return standing.theory_name if same == 1 else f"{standing.theory_name}, version {standing.version}"

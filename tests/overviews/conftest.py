@@ -1,0 +1,153 @@
+"""Assessments with verdicts, made without a computation."""
+
+import itertools
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass, field
+from datetime import datetime, timedelta
+
+import pytest
+from django.utils import timezone
+
+from core.measurements.models import Measurement, Release
+from core.people.models import Collaboration, User
+from core.theories.models import Curve, Theory
+from fits.assessments.models import Assessment, Verdict
+from fits.reports.models import Report
+
+SETTINGS = {"levels": [0.67, 0.9, 0.95, 0.99], "shrinkage": "monotone", "draws": 2000}
+
+
+@dataclass
+class Maker:
+    """Makes rows of the made-up survey, in as many copies as a test wants."""
+
+    lead: User
+    sample: Release
+    line: Curve
+    counter: Iterator[int] = field(default_factory=lambda: itertools.count(1))
+
+    def measurement(self, collaboration: Collaboration | None = None) -> Measurement:
+        """Another measurement."""
+        return Measurement.objects.create(
+            collaboration=collaboration or self.sample.measurement.collaboration,
+            name=f"Gauge {next(self.counter)}",
+            x_name="frequency",
+            y_name="power",
+            created_by=self.lead,
+        )
+
+    def release(
+        self, measurement: Measurement, number: int | None, published_at: datetime | None = None
+    ) -> Release:
+        """A release with the sample's table; without a number a draft."""
+        return Release.objects.create(
+            measurement=measurement,
+            number=number,
+            state=Release.State.PUBLISHED if number else Release.State.DRAFT,
+            note=f"note {number}",
+            table=self.sample.table,
+            lines=self.sample.lines,
+            columns=self.sample.columns,
+            file_name=f"merrow-{number}.csv",
+            file_sha256="0" * 64,
+            points=self.sample.points,
+            created_by=self.lead,
+            published_at=(published_at or timezone.now()) if number else None,
+        )
+
+    def theory(self, name: str) -> Theory:
+        """Another theory of the collaboration."""
+        return Theory.objects.create(
+            collaboration=self.line.theory.collaboration,
+            name=name,
+            proposed_by="Group F (made up)",
+            submitted_by=self.line.submitted_by,
+        )
+
+    def curve(
+        self, theory: Theory, measurement: Measurement, version: int | None = 1, by: User | None = None
+    ) -> Curve:
+        """A curve with the sample's table; without a version a draft."""
+        return Curve.objects.create(
+            theory=theory,
+            measurement=measurement,
+            version=version,
+            state=Curve.State.SUBMITTED if version else Curve.State.DRAFT,
+            table=self.line.table,
+            file_name=f"curve-{next(self.counter)}.csv",
+            file_sha256="0" * 64,
+            points=self.line.points,
+            x_min=self.line.x_min,
+            x_max=self.line.x_max,
+            submitted_by=by or self.line.submitted_by,
+            submitted_at=timezone.now() if version else None,
+        )
+
+    def assessment(
+        self,
+        release: Release,
+        p_values: dict[Curve, float],
+        *,
+        status: str = Assessment.Status.DONE,
+        ended_at: datetime | None = None,
+        scale_p_value: float = 0.6,
+    ) -> Assessment:
+        """An assessment that gave these p-values, ranked in the order given."""
+        assessment = Assessment.objects.create(
+            release=release,
+            settings=SETTINGS,
+            seed=1,
+            fingerprint=f"{next(self.counter):064d}",
+            requested_by=self.lead,
+            status=status,
+            ended_at=ended_at or timezone.now(),
+        )
+        assessment.curves.set(p_values)
+        Verdict.objects.bulk_create(
+            Verdict(
+                assessment=assessment,
+                curve=curve,
+                rank=rank,
+                distance=0.25 * rank,
+                entry_level=1.0 - p_value,
+                p_value=p_value,
+                scale_p_value=scale_p_value,
+                inside={"0.95": p_value > 0.05},
+            )
+            for rank, (curve, p_value) in enumerate(p_values.items(), start=1)
+        )
+        return assessment
+
+    def report(self, assessment: Assessment, title: str, created_at: datetime | None = None) -> Report:
+        """A report of an assessment."""
+        report = Report.objects.create(
+            collaboration=assessment.release.measurement.collaboration,
+            assessment=assessment,
+            title=title,
+            snapshot={},
+            author=self.lead,
+        )
+        if created_at:
+            Report.objects.filter(pk=report.pk).update(created_at=created_at)
+        return report
+
+
+@pytest.fixture
+def make(lead: User, release: Release, curve: Curve) -> Maker:
+    return Maker(lead=lead, sample=release, line=curve)
+
+
+@pytest.fixture
+def rival(make: Maker, measurement: Measurement) -> Curve:
+    """A curve of a second theory for the same measurement."""
+    return make.curve(make.theory("Flat floor"), measurement)
+
+
+@pytest.fixture
+def ago() -> Callable[[int], datetime]:
+    """A moment so many hours ago."""
+
+    def hours(count: int) -> datetime:
+        return timezone.now() - timedelta(hours=count)
+
+    return hours
