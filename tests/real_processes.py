@@ -13,6 +13,8 @@ from urllib.parse import quote
 from django.conf import settings
 from django.db import connection
 
+from tests.waiting import wait_until
+
 BASE_DIR = Path(__file__).resolve().parent.parent
 
 
@@ -61,6 +63,16 @@ def real_worker(
         yield process
     finally:
         kill_group(process)
+
+
+def wait_until_ready(worker: subprocess.Popen[bytes], log: Path) -> None:
+    """Wait until a worker takes work; fails at once, with its log, if it ends instead."""
+
+    def ready() -> bool:
+        assert worker.poll() is None, log.read_text()
+        return "ready." in log.read_text()
+
+    wait_until(ready, seconds=60.0, what="the worker is ready")
 
 
 def kill_group(process: subprocess.Popen[bytes]) -> None:

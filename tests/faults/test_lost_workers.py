@@ -13,7 +13,7 @@ from core.theories.models import Curve
 from fits.assessments.models import Assessment
 from fits.assessments.services import cancel_assessment, request_assessment
 from tests.assessments.conftest import SETTINGS
-from tests.real_processes import kill_group, real_worker
+from tests.real_processes import kill_group, real_worker, wait_until_ready
 from tests.waiting import wait_until
 
 pytestmark = pytest.mark.django_db(transaction=True)
@@ -77,8 +77,8 @@ def test_what_was_asked_for_while_redis_was_away_still_ends(
     gate = tmp_path / "gate"
     gate.touch()
     log = tmp_path / "worker.log"
-    with real_worker(log, app=GATED, GATE=str(gate)):
-        wait_until(lambda: b"ready." in log.read_bytes(), what="the worker is ready")
+    with real_worker(log, app=GATED, GATE=str(gate)) as worker:
+        wait_until_ready(worker, log)
         assert redis.child
         redis.child.process.kill()
         redis.child.process.wait()

@@ -39,6 +39,11 @@ class Serving:
         """All that it printed."""
         return self.output.read_text()
 
+    def is_up(self) -> bool:
+        """Whether it says so; fails at once, with what it said, if it has ended."""
+        assert self.process.poll() is None, self.said()
+        return "Inradius is at" in self.said()
+
     def family(self) -> list[psutil.Process]:
         """All processes that it started."""
         return list(psutil.Process(self.process.pid).children(recursive=True))
@@ -54,7 +59,7 @@ def serving(tmp_path: Path) -> Iterator[Serving]:
     site = Serving(tmp_path)
     family: list[psutil.Process] = []
     try:
-        wait_until(lambda: "Inradius is at" in site.said(), seconds=60.0, what="the site is up")
+        wait_until(site.is_up, seconds=60.0, what="the site is up")
         worker_log = tmp_path / "logs" / "worker.log"
         wait_until(lambda: "ready." in worker_log.read_text(), seconds=60.0, what="its worker is ready")
         family = site.family()
