@@ -245,7 +245,10 @@ LOGGING = {
     "version": 1,
     "disable_existing_loggers": False,
     "formatters": {"line": {"format": "{asctime} {levelname} {name} {message}", "style": "{"}},
-    "handlers": {"console": {"class": "logging.StreamHandler", "formatter": "line"}},
+    "filters": {"share_links": {"()": "core.masking.MaskShareLinks"}},
+    "handlers": {
+        "console": {"class": "logging.StreamHandler", "formatter": "line", "filters": ["share_links"]},
+    },
     "loggers": {
         "core": {"handlers": ["console"], "level": "INFO", "propagate": False},
         "fits": {"handlers": ["console"], "level": "INFO", "propagate": False},

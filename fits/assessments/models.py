@@ -77,7 +77,7 @@ class Assessment(models.Model):
         return f"assessment {self.pk}"
 
     def get_absolute_url(self) -> str:
-        return reverse("assessments:assessment", args=[self.pk])
+        return reverse("reports:assessment", args=[self.pk])
 
     @property
     def has_ended(self) -> bool:

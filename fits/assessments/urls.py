@@ -1,4 +1,12 @@
-from django.urls import URLPattern
+"""Addresses of what is done with assessments; their page is that of their result, in fits.reports."""
+
+from django.urls import path
+
+from fits.assessments import views
 
 app_name = "assessments"
-urlpatterns: list[URLPattern] = []
+urlpatterns = [
+    path("releases/<int:pk>/assess", views.new_assessment, name="new"),
+    path("assessments/<int:pk>/progress", views.progress, name="progress"),
+    path("assessments/<int:pk>/cancel", views.cancel, name="cancel"),
+]

@@ -75,8 +75,10 @@ class Snapshot:
 
     @property
     def y_label(self) -> str:
-        """Name and unit of y."""
-        return self.measurement.get("y_label") or "y"
+        """Name and unit of y, on the scale on which the data are judged."""
+        label = self.measurement.get("y_label") or "y"
+        # Counts are judged, and drawn, after Anscombe's transformation.
+        return f"2√(v + 3/8), v: {label}" if self.result["release"]["errors"] == "counts" else label
 
     @property
     def x_unit(self) -> str:

@@ -78,8 +78,8 @@ def meaning(snapshot: Snapshot) -> tuple[str, ...]:
         "contradict one another can be inside together, and a curve that nobody thought of may fit as well.",
         "The ball speaks of all curves at once: the chance that the true curve is outside the 95 % set is 5 % "
         "however many curves are tried, so no correction for many theories is due.",
-        f"Only features wider than {resolution_width(snapshot)} were judged, the resolution chosen beforehand. What is finer was neither "
-        "confirmed nor refuted.",
+        f"Only features wider than {resolution_width(snapshot)} were judged, the resolution chosen beforehand. What "
+        "is finer was neither confirmed nor refuted.",
         "All of this stands on the errors being right: errors stated too small put true curves outside, errors "
         "stated too large let wrong ones in. The leftover check above is the test of that which the data allow.",
     )

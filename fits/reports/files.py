@@ -1,0 +1,41 @@
+"""Answers that are files: charts, the result, the ranking."""
+
+import json
+
+from django.http import Http404, HttpRequest, HttpResponse
+
+from fits.reports.exports import ranking_csv, table_csv
+from fits.reports.figures import figure_of
+from fits.reports.figures.svg import svg
+from fits.reports.snapshot import Snapshot
+
+
+def chart_file(request: HttpRequest, snapshot: Snapshot, name: str, form: str) -> HttpResponse:
+    """A chart as "svg" or "csv" under the level and curve in the query."""
+    figure = figure_of(name, snapshot, level=request.GET.get("level"), curve=request.GET.get("curve"))
+    if figure is None or form not in {"svg", "csv"}:
+        raise Http404
+    if form == "svg":
+        return _file(svg(figure), "image/svg+xml", f"{name}.svg", shown=True)
+    return _file(table_csv(figure.table), "text/csv", f"{name}.csv")
+
+
+def result_file(snapshot: Snapshot) -> HttpResponse:
+    """The whole result as JSON."""
+    return _file(json.dumps(snapshot.result, indent=1), "application/json", "result.json")
+
+
+def ranking_file(snapshot: Snapshot) -> HttpResponse:
+    """The ranking table as CSV."""
+    return _file(ranking_csv(snapshot), "text/csv", "ranking.csv")
+
+
+def _file(text: str, kind: str, name: str, *, shown: bool = False) -> HttpResponse:
+    disposition = f'{"inline" if shown else "attachment"}; filename="{name}"'
+    response = HttpResponse(text.encode(), content_type=f"{kind}; charset=utf-8")
+    response["Content-Disposition"] = disposition
+    # Opened by itself, a drawing is a document: it may style itself and do nothing else.
+    response["Content-Security-Policy"] = (
+        "default-src 'none'; style-src 'unsafe-inline'; img-src data:; sandbox"
+    )
+    return response

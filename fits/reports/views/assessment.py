@@ -1,0 +1,103 @@
+"""The page of an assessment: how far along it is, then its result."""
+
+from django.contrib.auth.decorators import login_required
+from django.db.models import QuerySet
+from django.http import Http404, HttpResponse
+from django.shortcuts import redirect, render
+from django.views.decorators.cache import cache_control
+from django.views.decorators.http import require_GET, require_http_methods
+
+from core.people.access import Action, load, may
+from core.people.signed_in import SignedInRequest
+from fits.assessments.context import context_of
+from fits.assessments.models import Assessment
+from fits.reports.addresses import RouteAddresses
+from fits.reports.files import chart_file, ranking_file, result_file
+from fits.reports.forms import ReportForm
+from fits.reports.page import result_page
+from fits.reports.services import create_report
+from fits.reports.snapshot import Snapshot
+
+
+def with_place() -> QuerySet[Assessment]:
+    """Assessments with all that says where they belong."""
+    return Assessment.objects.select_related("release__measurement__collaboration", "requested_by")
+
+
+@login_required
+@require_GET
+def assessment(request: SignedInRequest, pk: int) -> HttpResponse:
+    """Progress while it is under way, why it ended without a result, or the result."""
+    found = load(with_place(), request.user, Action.VIEW, pk)
+    measurement = found.release.measurement
+    context = {
+        "assessment": found,
+        "measurement": measurement,
+        "collaboration": measurement.collaboration,
+        "may_assess": may(request.user, Action.ASSESS, measurement.collaboration),
+    }
+    if found.status != Assessment.Status.DONE:
+        return render(request, "assessments/progress.html", context)
+    page = result_page(
+        _snapshot(found),
+        RouteAddresses("assessment", pk),
+        level=request.GET.get("level"),
+        curve=request.GET.get("curve"),
+    )
+    context |= {
+        "may_report": may(request.user, Action.REPORT, measurement.collaboration),
+        "reports": found.reports.select_related("author"),
+    }
+    return render(request, "reports/assessment.html", context | page)
+
+
+@login_required
+@require_GET
+@cache_control(private=True, max_age=86400)
+def chart(request: SignedInRequest, pk: int, name: str, form: str) -> HttpResponse:
+    """A chart of the result."""
+    return chart_file(request, _loaded_snapshot(request, pk), name, form)
+
+
+@login_required
+@require_GET
+def result_json(request: SignedInRequest, pk: int) -> HttpResponse:
+    """The whole result."""
+    return result_file(_loaded_snapshot(request, pk))
+
+
+@login_required
+@require_GET
+def ranking_csv(request: SignedInRequest, pk: int) -> HttpResponse:
+    """The ranking table."""
+    return ranking_file(_loaded_snapshot(request, pk))
+
+
+@login_required
+@require_http_methods(["GET", "POST"])
+def new_report(request: SignedInRequest, pk: int) -> HttpResponse:
+    """Write a report on the assessment."""
+    found = load(with_place(), request.user, Action.REPORT, pk)
+    form = ReportForm(
+        request.POST or None, initial={"title": f"{found.release.measurement}, {found.release}"}
+    )
+    if form.is_valid():
+        return redirect(create_report(user=request.user, assessment=found, **form.cleaned_data))
+    measurement = found.release.measurement
+    context = {
+        "form": form,
+        "assessment": found,
+        "measurement": measurement,
+        "collaboration": measurement.collaboration,
+    }
+    return render(request, "reports/report_form.html", context)
+
+
+def _loaded_snapshot(request: SignedInRequest, pk: int) -> Snapshot:
+    return _snapshot(load(with_place(), request.user, Action.VIEW, pk))
+
+
+def _snapshot(found: Assessment) -> Snapshot:
+    if found.result is None or found.detail is None:
+        raise Http404
+    return Snapshot(found.result, found.detail, context_of(found))
