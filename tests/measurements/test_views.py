@@ -7,9 +7,11 @@ import pytest
 from django.core.files.uploadedfile import SimpleUploadedFile
 from django.test import Client
 from django.urls import reverse
+from pytest_django import Settings
 
 from core.measurements import services
 from core.measurements.models import Measurement, Release
+from core.measurements.reading.stored import from_bytes
 from core.people.models import Collaboration, User
 
 SignedIn = Callable[[User], Client]
@@ -149,9 +151,9 @@ def test_a_file_above_the_limit_is_refused_before_it_is_read(
     lead: User,
     signed_in: SignedIn,
     monkeypatch: pytest.MonkeyPatch,
-    settings: object,
+    settings: Settings,
 ) -> None:
-    monkeypatch.setattr(settings, "UPLOAD_MAX_BYTES", 20)
+    settings.UPLOAD_MAX_BYTES = 20
     monkeypatch.setattr(services, "draft_release", lambda **_: pytest.fail("it was read"))
     answer = signed_in(lead).post(reverse("measurements:upload", args=[measurement.pk]), {"table": file()})
     assert answer.status_code == 400
@@ -201,7 +203,5 @@ def test_the_download_reads_back_to_the_same_numbers(
 ) -> None:
     answer = signed_in(member).get(reverse("measurements:download", args=[release.pk]))
     text = b"".join(answer.streaming_content).decode()  # type: ignore[attr-defined]
-    from core.measurements.reading.stored import from_bytes
-
     read = np.array([[float(cell) for cell in line.split(",")] for line in text.split("\r\n")[1:-1]])
     assert np.array_equal(read, from_bytes(release.table))

@@ -4,6 +4,7 @@ import pytest
 from allauth.core import context
 from django.core import mail
 from django.test import RequestFactory
+from pytest_django import DjangoCaptureOnCommitCallbacks
 
 from core.errors import UserError
 from core.people import services
@@ -35,9 +36,11 @@ def test_an_unknown_address_gets_a_user_who_cannot_sign_in_yet(collaboration: Co
 
 
 def test_an_unknown_address_gets_the_link_that_sets_a_password(
-    collaboration: Collaboration, django_capture_on_commit_callbacks: object, rf: RequestFactory
+    collaboration: Collaboration,
+    django_capture_on_commit_callbacks: DjangoCaptureOnCommitCallbacks,
+    rf: RequestFactory,
 ) -> None:
-    with context.request_context(rf.get("/")), django_capture_on_commit_callbacks(execute=True):  # type: ignore[operator]
+    with context.request_context(rf.get("/")), django_capture_on_commit_callbacks(execute=True):
         services.add_member(collaboration=collaboration, email="new@merrow.example", role=Role.MEMBER)
     (sent,) = mail.outbox
     assert sent.to == ["new@merrow.example"]
