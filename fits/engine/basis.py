@@ -47,30 +47,31 @@ class Interval:
 
 
 def raw_functions(t: FloatArray, functions: int) -> FloatArray:
-    """ψ_0 … ψ_{J−1} at t, shape (len(t), J)."""
-    values = np.empty((t.size, functions))
+    """ψ_0 … ψ_{J−1} at t, shape (len(t), J), each function contiguous in memory."""
+    values = np.empty((functions, t.size))
     if functions <= _MOST_BY_RECURRENCE:
-        _by_recurrence(t, values)
-        return values
-    values[:, 0] = 1.0
-    values[:, 1] = t - 0.5
-    np.cos(np.pi * np.outer(t, np.arange(1, functions - 1)), out=values[:, 2:])
-    return values
+        _by_recurrence(t, np.cos(np.pi * t), values)
+    else:
+        values[0], values[1] = 1.0, t - 0.5
+        np.cos(np.pi * np.outer(np.arange(1, functions - 1), t), out=values[2:])
+    return values.T
 
 
 @compiled
-def _by_recurrence(t: FloatArray, values: FloatArray) -> None:
+def _by_recurrence(t: FloatArray, cosine: FloatArray, values: FloatArray) -> None:
     """cos((k + 1) θ) = 2 cos θ cos(k θ) − cos((k − 1) θ): one cosine for each point instead of J."""
-    functions = values.shape[1]
-    for i in range(t.size):
-        values[i, 0] = 1.0
-        if functions > 1:
-            values[i, 1] = t[i] - 0.5
-        cosine = np.cos(np.pi * t[i])
-        before, now = 1.0, cosine
-        for j in range(2, functions):
-            values[i, j] = now
-            before, now = now, 2.0 * cosine * now - before
+    for j in range(values.shape[0]):
+        for i in range(t.size):
+            if j == 0:
+                values[j, i] = 1.0
+            elif j == 1:
+                values[j, i] = t[i] - 0.5
+            elif j == 2:
+                values[j, i] = cosine[i]
+            elif j == 3:
+                values[j, i] = 2.0 * cosine[i] * cosine[i] - 1.0
+            else:
+                values[j, i] = 2.0 * cosine[i] * values[j - 1, i] - values[j - 2, i]
 
 
 def averaged_functions(interval: Interval, low: FloatArray, high: FloatArray, functions: int) -> FloatArray:

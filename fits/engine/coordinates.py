@@ -16,8 +16,8 @@ from fits.engine.whitening import IndependentErrors, SharedErrors, Whitening
 DEPENDENT = 1.5e-8
 # Above this many points the functions are computed in blocks whenever they are needed.
 STREAMED_POINTS = 50_000
-# R from the Gram matrix has lost twice the digits of the condition number: with this one, 1e-10 are left.
-_MOST_CONDITION = 1e3
+# R from the Gram matrix loses twice the digits of the condition number: with this one, it is good to 1e-8.
+_MOST_CONDITION = 1e4
 
 
 @dataclass(frozen=True, eq=False)

@@ -12,7 +12,7 @@ from fits.engine.data import FloatArray
 from fits.engine.observation import Observation
 from fits.engine.whitening import IndependentErrors, SharedErrors, Whitening
 
-BLOCK_ROWS = 8192
+BLOCK_ROWS = 4096
 
 
 class Design(Protocol):
