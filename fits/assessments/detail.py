@@ -28,16 +28,16 @@ def detail_document(result: Result) -> dict[str, Any]:
     """Arrays for drawing; curves in rank order."""
     fit = result.fit
     grid = drawing_grid(fit.coordinates.interval, fit.coordinates.functions)
-    functions_on_grid = fit.coordinates.functions_at(grid)
+    functions_on_grid = fit.coordinates.basis.at(grid)
     drawn = _evenly(result.data.points, MOST_DRAWN_POINTS)
     differences = np.array([verdict.coordinates - fit.estimate for verdict in result.verdicts])
     places = positions(differences) if len(differences) else np.empty((0, 2))
     return {
         "data": {
             "x": result.data.x[drawn].tolist(),
-            "y": fit.observed[drawn].tolist(),
-            "error": fit.standard_errors[drawn].tolist(),
-            "fit": fit.at(result.data.x[drawn]).tolist(),
+            "y": result.observed[drawn].tolist(),
+            "error": fit.whitening.standard_errors[drawn].tolist(),
+            "fit": result.seen[drawn].tolist(),
             "thinned": drawn.size < result.data.points,
         },
         "grid": {
@@ -77,7 +77,9 @@ def _curve(
     fit = result.fit
     span = fit.coordinates.interval.span
     worst = verdict.scales.functions[verdict.scales.worst]
-    up_to_worst = functions_on_grid[:, :worst]
+    up_to_worst = (
+        functions_on_grid if verdict.own_basis is fit.coordinates.basis else verdict.own_basis.at(grid)
+    )[:, :worst]
     values = curve_on_grid(verdict.curve, grid, result.data.axis)
     reached = np.isfinite(values)
     return {
@@ -91,7 +93,7 @@ def _curve(
         },
         "misfit": {
             "x": grid.tolist(),
-            "y": (up_to_worst @ (fit.z - verdict.coordinates)[:worst]).tolist(),
+            "y": (up_to_worst @ verdict.own_misfit[:worst]).tolist(),
             "band": (_misfit_radius(result, worst) * np.linalg.norm(up_to_worst, axis=1)).tolist(),
             "functions": worst,
             "wider_than": feature_width(worst, span),
@@ -115,7 +117,7 @@ def _leftover_quantiles(result: Result) -> dict[str, list[float]] | None:
     """The quantile plot of the leftover against the normal distribution."""
     if result.fit.leftover is None:
         return None
-    observed = leftover_residuals(result.fit.coordinates, result.fit.whitened)
+    observed = leftover_residuals(result.fit.coordinates, result.fit.whitened, result.fit.z)
     expected = scipy.special.ndtri((np.arange(observed.size) + 0.5) / observed.size)
     shown = _evenly(observed.size, MOST_QUANTILES)
     return {"expected": expected[shown].tolist(), "observed": observed[shown].tolist()}

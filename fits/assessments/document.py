@@ -32,7 +32,7 @@ def result_document(result: Result, *, seed: int) -> dict[str, Any]:
             "x_min": float(result.data.x.min()),
             "x_max": float(result.data.x.max()),
             "errors": error_model(result.data),
-            "sigma": fit.sigma,
+            "sigma": result.sigma,
         },
         "fit": {
             "resolution": fit.coordinates.functions,

@@ -66,7 +66,7 @@ def _on_the_data(result: Result) -> Iterator[Note]:
 def _on_the_leftover(result: Result) -> Iterator[Note]:
     leftover = result.fit.leftover
     if leftover is None:
-        if result.fit.sigma is not None:
+        if result.sigma is not None:
             yield Note(
                 "errors-estimated",
                 f"The errors are estimated from what the {result.fit.coordinates.functions} functions leave over "

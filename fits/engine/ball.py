@@ -13,7 +13,7 @@ import numpy as np
 import scipy.special
 
 from fits.engine.data import FloatArray
-from fits.engine.draws import Noise, statistic_of, statistics
+from fits.engine.draws import Noise, conditional_statistics, statistic_of, statistics
 from fits.engine.settings import Shrinkage
 from fits.engine.shrinkage import Shrunk
 
@@ -57,7 +57,7 @@ class Ball:
 
     def statistic(self, distance: float) -> float:
         """T = (d² − R)/τ."""
-        return float(statistic_of(distance**2, self.shrunk.risk, self.shrunk.tau**2))
+        return statistic_at(distance, self.shrunk)
 
     def published_entry_level(self, distance: float) -> float:
         """Φ(T): the smallest level whose published ball holds a curve at this distance."""
@@ -108,15 +108,30 @@ def empirical_quantile(sample: FloatArray, level: float) -> float:
 
 
 def exact_p_value(
-    curve: FloatArray, ball: Ball, distance: float, noise: Noise, *, shrinkage: Shrinkage
+    curve: FloatArray,
+    statistic: float,
+    noise: Noise,
+    *,
+    shrinkage: Shrinkage,
+    total: float | None = None,
 ) -> PValue:
     """p = (1 + #{T' ≥ T(m)})/(B + 1) with T' simulated as if the curve were true; valid at every n.
 
-    curve  coordinates β_m, shape (J,)
+    curve      coordinates β_m, shape (J,)
+    statistic  T(m)
+    total      S = ν + n ‖Z − β_m‖² where the errors are scaled by the leftover's σ̂; see conditional_statistics
     """
-    repeats = statistics(curve, noise, shrinkage=shrinkage)
-    p = (1.0 + float(np.count_nonzero(repeats >= ball.statistic(distance)))) / (noise.draws + 1.0)
+    if total is None:
+        repeats = statistics(curve, noise, shrinkage=shrinkage)
+    else:
+        repeats = conditional_statistics(curve, noise, total=total, shrinkage=shrinkage)
+    p = (1.0 + float(np.count_nonzero(repeats >= statistic))) / (noise.draws + 1.0)
     return PValue(p, math.sqrt(p * (1.0 - p) / noise.draws))
+
+
+def statistic_at(distance: float, shrunk: Shrunk) -> float:
+    """T = (d² − R)/τ of a curve at this distance from a fit."""
+    return float(statistic_of(distance**2, shrunk.risk, shrunk.tau**2))
 
 
 def is_inside(distance: float, radius_squared: float) -> bool:

@@ -30,6 +30,15 @@ class ErrorSource(StrEnum):
     GIVEN = "given"  # an error column or a covariance
     ESTIMATE = "estimate"  # Σ = σ² diag(r²), σ unknown, r = 1 where no relative errors are given
     COUNTS = "counts"  # y are Poisson counts
+    PROFILE = "profile"  # Σ = diag(σ(x)²), a smooth σ(x) estimated from local differences
+
+
+@dataclass(frozen=True, eq=False)
+class Windows:
+    """Each point sees Σ_k weights_ik f(grid_k): grid of shape (g,), increasing; weights of shape (n, g)."""
+
+    grid: FloatArray
+    weights: FloatArray
 
 
 @dataclass(frozen=True, eq=False)
@@ -41,7 +50,9 @@ class Data:
                 with counts, or where all relative errors are 1
     covariance  shape (n, n) or None
     shared      name → shape (n,): errors fully correlated across the points
+    calibration the fraction c to which the scale of the data is known; 0 where it is exact
     low, high   shape (n,) or None: each point is the mean of the curve over [low, high]
+    windows     or each point sees the curve through a row of a matrix
     """
 
     x: FloatArray
@@ -51,8 +62,10 @@ class Data:
     errors: FloatArray | None = None
     covariance: FloatArray | None = None
     shared: dict[str, FloatArray] = field(default_factory=dict)
+    calibration: float = 0.0
     low: FloatArray | None = None
     high: FloatArray | None = None
+    windows: Windows | None = None
 
     @property
     def points(self) -> int:
@@ -78,8 +91,10 @@ def validated_data(
     errors: FloatArray | None = None,
     covariance: FloatArray | None = None,
     shared: dict[str, FloatArray] | None = None,
+    calibration: float = 0.0,
     low: FloatArray | None = None,
     high: FloatArray | None = None,
+    windows: Windows | None = None,
 ) -> Data:
     """Check every rule once and return arrays that the kernels can trust.
 
@@ -95,6 +110,12 @@ def validated_data(
     y = _clean("y", y, n)
     if low is not None or high is not None:
         low, high = _bins(low, high, n)
+    if windows is not None:
+        windows = _windows(windows, n, binned=low is not None)
+    if not 0.0 <= calibration < 1.0:
+        raise InputRefused(
+            "calibration", "calibration", "a calibration is a fraction from 0 to 1", "Give 0.02 for 2 %"
+        )
     if float(x.min()) == float(x.max()):
         raise InputRefused("all-x-equal", "x", "all x are equal", "A curve needs at least two different x")
     if axis is Axis.LOG:
@@ -109,8 +130,10 @@ def validated_data(
         errors=_errors(source, errors, covariance, y),
         covariance=_covariance(covariance, n),
         shared={name: _clean(f"shared:{name}", column, n) for name, column in (shared or {}).items()},
+        calibration=calibration,
         low=low,
         high=high,
+        windows=windows,
     )
 
 
@@ -202,6 +225,31 @@ def _bins(low: FloatArray | None, high: FloatArray | None, n: int) -> tuple[Floa
         reason = f"lo = {low[index]:g} is not below hi = {high[index]:g}"
         raise InputRefused("bin-reversed", "low", reason, "Give lo < hi", index)
     return low, high
+
+
+def _windows(windows: Windows, n: int, *, binned: bool) -> Windows:
+    grid = _clean("windows", windows.grid)
+    weights = np.asarray(windows.weights, dtype=np.float64)
+    if binned:
+        raise InputRefused(
+            "bins-and-windows", "windows", "there are bins as well", "Give bins or windows, not both"
+        )
+    if grid.size < 2 or (np.diff(grid) <= 0.0).any():
+        raise InputRefused("window-grid", "windows", "the grid does not increase", "Sort it, each x once")
+    if weights.shape != (n, grid.size):
+        shape = " × ".join(map(str, weights.shape))
+        reason = f"has shape {shape} for {n} points and a grid of {grid.size}"
+        raise InputRefused("wrong-shape", "windows", reason, f"Give {n} × {grid.size} weights")
+    if not np.isfinite(weights).all():
+        index = int(np.flatnonzero(~np.isfinite(weights).all(axis=1))[0])
+        raise InputRefused("not-finite", "windows", "holds a weight that is not finite", "Correct it", index)
+    empty = np.flatnonzero(~weights.any(axis=1))
+    if empty.size:
+        reason = "all weights of this point are 0: it sees nothing"
+        raise InputRefused("window-empty", "windows", reason, "Leave the point out", int(empty[0]))
+    weights = weights.copy()
+    weights.flags.writeable = False
+    return Windows(grid, weights)
 
 
 def _covariance(covariance: FloatArray | None, n: int) -> FloatArray | None:

@@ -14,14 +14,14 @@ from fits.engine.shrinkage import minimise_risk, risk_of, tau_squared_of
 class Noise:
     """What one assessment draws once and uses for every centre and curve.
 
-    normal     shape (B, J): standard normal
-    variances  shape (B,): the v that each repeat believes in; the true one times χ²_ν/ν where v is estimated
-    variance   the true v
-    freedom    ν, inf where v is known
+    normal    shape (B, J): standard normal
+    shares    shape (B,): χ²_ν/ν, by which the v that a repeat believes in misses the true one; 1 where v is known
+    variance  v
+    freedom   ν, inf where v is known
     """
 
     normal: FloatArray
-    variances: FloatArray
+    shares: FloatArray
     variance: float
     freedom: float
 
@@ -38,21 +38,39 @@ def draw_noise(
     normal = rng.standard_normal((draws, functions))
     known = np.isinf(freedom)
     shares = np.ones(draws) if known else rng.chisquare(freedom, draws) / freedom
-    return Noise(normal, variance * shares, variance, freedom)
+    return Noise(normal, shares, variance, freedom)
 
 
 def statistics(truth: FloatArray, noise: Noise, *, shrinkage: Shrinkage) -> FloatArray:
     """T' of each repeat Z' = truth + N(0, v I), shape (B,), in the order of the draws."""
+    scales = np.full(noise.draws, np.sqrt(noise.variance))
+    return _run(truth, noise, scales, noise.variance * noise.shares, shrinkage)
+
+
+def conditional_statistics(
+    truth: FloatArray, noise: Noise, *, total: float, shrinkage: Shrinkage
+) -> FloatArray:
+    """T' of repeats that share with the data what a curve leaves unknown: the size of the errors.
+
+    If the curve is true and σ² estimated from a leftover with ν degrees of freedom, the scaled squares
+    S = ν σ̂² + n ‖Z − β_m‖² are all that the data say of σ, and given S the misfit (in all n − J + J directions) is
+    uniform on a sphere. So each repeat is scaled to the S of the data: whatever σ is, the p-value is exact.
+
+    total  S in units of σ̂²
+    """
+    normal = noise.normal[:, : truth.size]
+    chi2 = noise.shares * noise.freedom
+    factors = total / (np.einsum("ij,ij->i", normal, normal) + chi2)
+    believed = noise.variance * factors * noise.shares
+    return _run(truth, noise, np.sqrt(noise.variance * factors), believed, shrinkage)
+
+
+def _run(
+    truth: FloatArray, noise: Noise, scales: FloatArray, variances: FloatArray, shrinkage: Shrinkage
+) -> FloatArray:
     found = np.empty(noise.draws)
-    _statistics(
-        truth,
-        noise.normal,
-        np.sqrt(noise.variance),
-        noise.variances,
-        noise.freedom,
-        shrinkage is Shrinkage.NESTED,
-        found,
-    )
+    nested = shrinkage is Shrinkage.NESTED
+    _statistics(truth, noise.normal, scales, variances, noise.freedom, nested, found)
     return found
 
 
@@ -70,7 +88,7 @@ def statistic_of(loss: float, risk: float, tau_squared: float) -> float:
 def _statistics(
     truth: FloatArray,
     normal: FloatArray,
-    scale: float,
+    scales: FloatArray,
     variances: FloatArray,
     freedom: float,
     nested: bool,
@@ -83,7 +101,7 @@ def _statistics(
     for draw in range(normal.shape[0]):
         v = variances[draw]
         for j in range(functions):
-            z[j] = truth[j] + scale * normal[draw, j]
+            z[j] = truth[j] + scales[draw] * normal[draw, j]
         minimise_risk(z, v, nested, factors, work)
         loss = 0.0
         for j in range(functions):

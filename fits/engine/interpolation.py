@@ -1,45 +1,59 @@
-"""Bringing a curve from its own grid to the data's x (or its means to the data's bins)."""
+"""A curve between the points of its own grid, and what the data's points see of it."""
 
 from dataclasses import dataclass
-from typing import Protocol
 
 import numpy as np
 from scipy.interpolate import CubicSpline, PchipInterpolator
 
-from fits.engine.data import Axis, CurveTable, Data, FloatArray
+from fits.engine.data import Axis, CurveTable, FloatArray
+from fits.engine.observation import Observation
 from fits.engine.refusal import InputRefused
 
 # How far outside its own grid rounding may put a point, as a share of the range.
 _ROUNDING = 1e-9
 
 
-class Spline(Protocol):
-    """A piecewise polynomial that can be integrated."""
+@dataclass(frozen=True, eq=False)
+class InterpolatedCurve:
+    """A curve by cubic, or by monotone cubic, interpolation; never beyond its own range."""
 
-    def __call__(self, x: FloatArray) -> FloatArray: ...
+    table: CurveTable
+    axis: Axis
+    monotone: bool = False
 
-    def antiderivative(self) -> "Spline": ...
+    def at(self, x: FloatArray) -> FloatArray:
+        """Values at x. On a log axis the spline is one in ln x, where curves are smooth."""
+        knots = self.table.x
+        x = np.clip(x, knots[0], knots[-1])
+        if self.axis is Axis.LOG and knots[0] > 0.0:
+            knots, x = np.log(knots), np.log(x)
+            x = np.clip(x, knots[0], knots[-1])
+        return np.asarray(self._spline(knots)(x), dtype=np.float64)
+
+    def mean(self, low: FloatArray, high: FloatArray) -> FloatArray:
+        """Means over [low, high], exact for the spline in x."""
+        integral = self._spline(self.table.x).antiderivative()
+        low, high = (np.clip(edge, self.table.x[0], self.table.x[-1]) for edge in (low, high))
+        return np.asarray((integral(high) - integral(low)) / (high - low))
+
+    def _spline(self, knots: FloatArray) -> "CubicSpline[np.float64] | PchipInterpolator":
+        return (PchipInterpolator if self.monotone else CubicSpline)(knots, self.table.y)
 
 
 @dataclass(frozen=True, eq=False)
 class CurveAtData:
-    """cubic, monotone: values by cubic and by monotone cubic interpolation, shape (n,)."""
+    """What the points see by cubic and by monotone cubic interpolation, shape (n,)."""
 
     cubic: FloatArray
     monotone: FloatArray
 
 
-def curve_at_data(curve: CurveTable, data: Data) -> CurveAtData:
-    """The curve at the data's x, or averaged over their bins. Raises InputRefused where it does not reach."""
-    low = data.x if data.low is None else data.low
-    high = data.x if data.high is None else data.high
-    refuse_missing_stretch(curve, float(low.min()), float(high.max()))
-    if data.low is not None and data.high is not None:
-        return CurveAtData(
-            _means(CubicSpline(curve.x, curve.y), data.low, data.high),
-            _means(PchipInterpolator(curve.x, curve.y), data.low, data.high),
-        )
-    cubic, monotone = (values_between(curve, data.x, data.axis, kind) for kind in ("cubic", "monotone"))
+def curve_at_data(curve: CurveTable, observation: Observation, axis: Axis) -> CurveAtData:
+    """What the data's points see of a curve. Raises InputRefused where it does not reach."""
+    refuse_missing_stretch(curve, *observation.reach)
+    cubic, monotone = (
+        observation.of(InterpolatedCurve(curve, axis, monotone=monotone)) for monotone in (False, True)
+    )
     return CurveAtData(cubic, monotone)
 
 
@@ -48,18 +62,8 @@ def curve_on_grid(curve: CurveTable, grid: FloatArray, axis: Axis) -> FloatArray
     inside = (grid >= curve.x[0]) & (grid <= curve.x[-1])
     values = np.full(grid.size, np.nan)
     if inside.any():
-        values[inside] = values_between(curve, grid[inside], axis, "cubic")
+        values[inside] = InterpolatedCurve(curve, axis).at(grid[inside])
     return values
-
-
-def values_between(curve: CurveTable, x: FloatArray, axis: Axis, kind: str) -> FloatArray:
-    """Interpolate in x, or in ln x on a log axis, where curves are smooth in it."""
-    x = np.clip(x, curve.x[0], curve.x[-1])
-    logarithmic = axis is Axis.LOG and curve.x[0] > 0.0
-    knots, at = (np.log(curve.x), np.log(x)) if logarithmic else (curve.x, x)
-    at = np.clip(at, knots[0], knots[-1])
-    spline = CubicSpline(knots, curve.y) if kind == "cubic" else PchipInterpolator(knots, curve.y)
-    return np.asarray(spline(at), dtype=np.float64)
 
 
 def refuse_missing_stretch(curve: CurveTable, low: float, high: float) -> None:
@@ -77,8 +81,3 @@ def refuse_missing_stretch(curve: CurveTable, low: float, high: float) -> None:
             f"the curve does not cover the data: x from {' and from '.join(missing)} is missing",
             f"Give it from {low:.6g} to {high:.6g}",
         )
-
-
-def _means(spline: Spline, low: FloatArray, high: FloatArray) -> FloatArray:
-    integral = spline.antiderivative()
-    return np.asarray((integral(high) - integral(low)) / (high - low))

@@ -22,20 +22,21 @@ class Leftover:
         return float(np.sqrt(self.chi2 / points))
 
 
-def leftover_of(coordinates: Coordinates, whitened: FloatArray) -> Leftover | None:
-    """The leftover of whitened values, shape (n,); None where J = n leaves nothing."""
+def leftover_of(coordinates: Coordinates, whitened: FloatArray, z: FloatArray) -> Leftover | None:
+    """The leftover of whitened values, shape (n,), with coordinates z; None where J = n leaves nothing."""
     dof = coordinates.points - coordinates.functions
     if dof == 0:
         return None
-    chi2 = coordinates.remainder(whitened)
+    # Subtracting the projection before squaring keeps the digits that a difference of squares would lose.
+    rest = coordinates.residuals(whitened, z)
+    chi2 = float(rest @ rest)
     return Leftover(chi2, dof, float(scipy.special.chdtrc(dof, chi2)))
 
 
-def leftover_residuals(coordinates: Coordinates, whitened: FloatArray) -> FloatArray:
+def leftover_residuals(coordinates: Coordinates, whitened: FloatArray, z: FloatArray) -> FloatArray:
     """The whitened residuals of the unshrunk fit, sorted and scaled to unit variance each, for a quantile plot."""
-    q = coordinates.orthonormal
-    rest = whitened - q @ (q.T @ whitened)
+    rest = coordinates.residuals(whitened, z)
     # Each residual's variance is 1 − h_i, h_i the share that the J functions take up at that point.
-    free = 1.0 - np.einsum("ij,ij->i", q, q)
+    free = 1.0 - coordinates.design.leverage()
     enough = free > 1e-6
     return np.sort(rest[enough] / np.sqrt(free[enough]))

@@ -1,4 +1,7 @@
-"""Σ = L Lᵀ, and L⁻¹ applied to data, curves and basis functions."""
+"""Σ = L Lᵀ, and L⁻¹ applied to data, curves and basis functions.
+
+Any square root of Σ will do for L: inner products, and with them everything that is computed, are the same.
+"""
 
 from dataclasses import dataclass
 from typing import Protocol
@@ -6,7 +9,7 @@ from typing import Protocol
 import numpy as np
 import scipy.linalg
 
-from fits.engine.data import MAXIMUM_COVARIANCE_POINTS, Data, ErrorSource, FloatArray
+from fits.engine.data import Data, ErrorSource, FloatArray
 from fits.engine.refusal import InputRefused
 
 
@@ -23,6 +26,9 @@ class Whitening(Protocol):
     def scaled(self, factor: float) -> "Whitening":
         """The whitening of factor² Σ."""
 
+    def with_shared(self, columns: FloatArray) -> "Whitening":
+        """The whitening of Σ + S Sᵀ, S of shape (n, m)."""
+
 
 @dataclass(frozen=True, eq=False)
 class IndependentErrors:
@@ -36,6 +42,9 @@ class IndependentErrors:
 
     def scaled(self, factor: float) -> "IndependentErrors":
         return IndependentErrors(self.standard_errors * factor)
+
+    def with_shared(self, columns: FloatArray) -> "Whitening":
+        return with_shared_errors(self, columns)
 
 
 @dataclass(frozen=True, eq=False)
@@ -55,31 +64,72 @@ class CorrelatedErrors:
     def scaled(self, factor: float) -> "CorrelatedErrors":
         return CorrelatedErrors(self.lower * factor)
 
+    def with_shared(self, columns: FloatArray) -> "Whitening":
+        return with_shared_errors(self, columns)
 
-def whitening_of(data: Data) -> Whitening:
+
+@dataclass(frozen=True, eq=False)
+class SharedErrors:
+    """Σ = L₀ (I + A Aᵀ) L₀ᵀ with A = L₀⁻¹ S = U diag(a) Vᵀ.
+
+    The symmetric root of I + A Aᵀ changes nothing outside the span of U:
+    (I + A Aᵀ)^(−1/2) = I − U diag(1 − (1 + a²)^(−1/2)) Uᵀ; so m columns cost m products and no n × n matrix.
+    """
+
+    own: Whitening
+    directions: FloatArray  # U, shape (n, m)
+    strengths: FloatArray  # a, shape (m,)
+    columns: FloatArray  # S, shape (n, m)
+
+    @property
+    def standard_errors(self) -> FloatArray:
+        shared = np.einsum("ij,ij->i", self.columns, self.columns)
+        return np.asarray(np.sqrt(self.own.standard_errors**2 + shared))
+
+    def apply(self, values: FloatArray) -> FloatArray:
+        return self.correct(self.own.apply(values))
+
+    def correct(self, values: FloatArray) -> FloatArray:
+        """(I + A Aᵀ)^(−1/2) values; the matrix is symmetric."""
+        inner = self.directions.T @ values
+        lost = -np.expm1(-0.5 * np.log1p(self.strengths**2))
+        return np.asarray(values - self.directions @ (inner.T * lost).T)
+
+    def scaled(self, factor: float) -> "SharedErrors":
+        return SharedErrors(self.own.scaled(factor), self.directions, self.strengths, self.columns * factor)
+
+    def with_shared(self, columns: FloatArray) -> "Whitening":
+        return with_shared_errors(self.own, np.hstack([self.columns, columns]))
+
+
+def with_shared_errors(own: Whitening, columns: FloatArray) -> Whitening:
+    """Add errors that are fully correlated across the points; columns of zeros add nothing."""
+    columns = columns[:, columns.any(axis=0)]
+    if columns.shape[1] == 0:
+        return own
+    directions, strengths, _ = np.linalg.svd(own.apply(columns), full_matrices=False)
+    return SharedErrors(own, directions, strengths, columns)
+
+
+def whitening_of(data: Data, *, profile: FloatArray | None = None) -> Whitening:
     """The whitening of validated data; where σ is unknown, that of Σ₀ = diag(r²) (σ = 1).
 
-    Raises InputRefused, field "covariance", where Σ is not positive definite.
+    profile  standard errors that were estimated elsewhere, shape (n,)
+    Raises InputRefused, field "covariance", where Σ is not positive definite. The calibration is not in it: it
+    multiplies a curve, which the data do not name.
     """
-    if data.source is ErrorSource.COUNTS:
-        independent = np.ones(data.points)
-    elif data.errors is not None:
-        independent = data.errors
+    own: Whitening
+    if data.covariance is not None and data.source is not ErrorSource.COUNTS:
+        own = CorrelatedErrors(cholesky(data.covariance))
+    elif profile is not None:
+        own = IndependentErrors(profile)
+    elif data.errors is not None and data.source is not ErrorSource.COUNTS:
+        own = IndependentErrors(data.errors)
     else:
-        independent = np.ones(data.points)
-    if data.covariance is None and not data.shared:
-        return IndependentErrors(independent)
-    if data.points > MAXIMUM_COVARIANCE_POINTS:
-        raise InputRefused(
-            "covariance-too-large",
-            "shared",
-            f"shared errors of {data.points} points; at most {MAXIMUM_COVARIANCE_POINTS} are supported",
-            "Thin the data",
-        )
-    matrix = np.diag(independent**2) if data.covariance is None else data.covariance
-    for column in data.shared.values():
-        matrix = matrix + np.outer(column, column)
-    return CorrelatedErrors(cholesky(matrix))
+        own = IndependentErrors(np.ones(data.points))
+    if not data.shared:
+        return own
+    return own.with_shared(np.column_stack(list(data.shared.values())))
 
 
 def cholesky(matrix: FloatArray) -> FloatArray:

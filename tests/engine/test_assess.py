@@ -135,7 +135,7 @@ def test_overstated_errors_empty_the_ball() -> None:
 def test_estimated_errors_are_near_the_true_ones() -> None:
     data = validated_data(X, noisy(), source=ErrorSource.ESTIMATE)
     result = run(data, [curve("true", spectrum(X))], resolution=20)
-    assert result.fit.sigma == pytest.approx(0.1, rel=0.35)
+    assert result.sigma == pytest.approx(0.1, rel=0.35)
     assert result.fit.freedom == 40
     assert result.fit.leftover is None
 
@@ -144,8 +144,8 @@ def test_relative_errors_are_the_given_ones_up_to_their_size() -> None:
     relative = validated_data(X, noisy(), errors=np.full(X.size, 7.0), source=ErrorSource.ESTIMATE)
     plain = validated_data(X, noisy(), source=ErrorSource.ESTIMATE)
     one, other = (run(data, [curve("true", spectrum(X))], resolution=20) for data in (relative, plain))
-    assert one.fit.sigma is not None
-    assert one.fit.sigma * 7.0 == pytest.approx(other.fit.sigma, rel=1e-9)
+    assert one.sigma is not None
+    assert one.sigma * 7.0 == pytest.approx(other.sigma, rel=1e-9)
     assert one.verdicts[0].distance == pytest.approx(other.verdicts[0].distance, rel=1e-9)
 
 

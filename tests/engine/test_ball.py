@@ -35,7 +35,7 @@ def test_radii_and_p_values_are_those_of_a_slow_loop(
     lam = slow.factors(z, v, nested=nested)
     risk, tau = slow.risk(z, v, lam), slow.tau(z, v, lam, freedom)
     repeats = [
-        np.sort(slow.statistics(centre, noise.normal, noise.variances, v, nested=nested, freedom=freedom))
+        np.sort(slow.statistics(centre, noise.normal, v * noise.shares, v, nested=nested, freedom=freedom))
         for centre in (lam**0.25 * z, z, curve)
     ]
     for radius in ball.radii:
@@ -45,7 +45,7 @@ def test_radii_and_p_values_are_those_of_a_slow_loop(
         assert radius.cautious_squared == pytest.approx(risk + max(smooth, rough) * tau, rel=1e-7, abs=1e-9)
     distance = float(np.linalg.norm(curve - lam * z))
     t = (distance**2 - risk) / tau
-    p = exact_p_value(curve, ball, distance, noise, shrinkage=shrinkage)
+    p = exact_p_value(curve, ball.statistic(distance), noise, shrinkage=shrinkage)
     assert p.value == pytest.approx((1 + sum(repeat >= t for repeat in repeats[2])) / 26, abs=1.01 / 26)
     assert ball.published_entry_level(distance) == pytest.approx(0.5 * math.erfc(-t / math.sqrt(2)), abs=1e-8)
 
@@ -93,6 +93,6 @@ def test_exact_p_values_are_uniform_under_the_curve() -> None:
         shrunk = shrink(z, variance=v, freedom=np.inf, shrinkage=Shrinkage.MONOTONE)
         ball = ball_of(z, shrunk, noise, levels=(0.9,), shrinkage=Shrinkage.MONOTONE)
         distance = float(np.linalg.norm(truth - shrunk.factors * z))
-        p = exact_p_value(truth, ball, distance, noise, shrinkage=Shrinkage.MONOTONE)
+        p = exact_p_value(truth, ball.statistic(distance), noise, shrinkage=Shrinkage.MONOTONE)
         small += p.value <= 0.1
     assert abs(small / repeats - 0.1) < 3 * math.sqrt(0.1 * 0.9 / repeats)
