@@ -1,23 +1,20 @@
 """From rows to the engine and back."""
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
+from threadpoolctl import threadpool_limits
 
-from core.measurements.models import Release
-from core.measurements.reading.release import release_data
-from core.measurements.reading.stored import from_bytes
-from core.measurements.reading.table import Table
-from core.theories.models import Curve
+from core.measurements.stored_release import data_of
+from core.theories.stored_curve import table_of
 from core.user_error import UserError
 from fits.assessments.context import curve_names
 from fits.assessments.detail import detail_document
 from fits.assessments.document import result_document
 from fits.assessments.models import Assessment
 from fits.engine.assess import assess
-from fits.engine.data import Axis, CurveTable, Data, validated_curve
 from fits.engine.refusal import InputRefused
 from fits.engine.settings import Settings, Shrinkage
 
@@ -31,11 +28,13 @@ class Outcome:
     curve_keys: dict[str, int]
 
 
+# Sums split over threads come out otherwise rounded: one thread gives the same bits on every machine of a kind.
+@threadpool_limits.wrap(limits=1)  # type: ignore[untyped-decorator]
 def compute(assessment: Assessment, progress: Callable[[str, float], None]) -> Outcome:
     """Compute an assessment from its rows alone; the same rows give the same bits."""
     progress(Assessment.Stage.READING, 0.0)
     names = curve_names(assessment)
-    curves = [curve_of(curve, names[curve.pk]) for curve in assessment.curves.order_by("pk")]
+    curves = [replace(table_of(curve), name=names[curve.pk]) for curve in assessment.curves.order_by("pk")]
     data = data_of(assessment.release)
     try:
         result = assess(
@@ -65,28 +64,3 @@ def settings_of(chosen: Mapping[str, Any]) -> Settings:
         shrinkage=Shrinkage(chosen["shrinkage"]),
         draws=chosen["draws"],
     )
-
-
-def data_of(release: Release) -> Data:
-    """A release's stored table as data for the engine."""
-    columns = release.columns
-    table = Table(
-        file_name=release.file_name,
-        headers=tuple(column["header"] for column in columns),
-        values=from_bytes(release.table),
-        lines=from_bytes(release.lines),
-    )
-    covariance = None if release.covariance is None else from_bytes(release.covariance)
-    return release_data(
-        table,
-        [column["role"] for column in columns],
-        axis=Axis(release.measurement.axis),
-        covariance=covariance,
-        covariance_name=release.covariance_name,
-    )
-
-
-def curve_of(curve: Curve, name: str) -> CurveTable:
-    """A curve's stored table."""
-    table = from_bytes(curve.table)
-    return validated_curve(name, table[:, 0], table[:, 1])

@@ -4,6 +4,7 @@ from typing import Any
 
 import numpy as np
 from django.core.management.base import CommandParser
+from threadpoolctl import threadpool_limits
 
 from fits.assessments.detail import detail_document
 from fits.assessments.document import level_key, result_document
@@ -25,7 +26,9 @@ class Command(FileCommand):
     def compute(self, options: dict[str, Any]) -> None:
         inputs = read_inputs(options, options["curves"], command="rank")
         rng = np.random.default_rng(inputs.seed)
-        found = assess(inputs.data, inputs.curves, inputs.settings, rng=rng)
+        # As in a worker: sums split over threads come out otherwise rounded.
+        with threadpool_limits(limits=1):
+            found = assess(inputs.data, inputs.curves, inputs.settings, rng=rng)
         result = result_document(found, seed=inputs.seed)
         if options["page"]:
             # Loaded here, since charts take longer to load than a ranking to compute.
