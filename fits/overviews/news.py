@@ -22,6 +22,14 @@ Row = TypeVar("Row", bound=Model)
 
 
 @dataclass(frozen=True)
+class Group:
+    """The names of those with one verdict, and a standing that shows it."""
+
+    standing: Standing
+    names: tuple[str, ...]
+
+
+@dataclass(frozen=True)
 class News:
     """Something that happened. `outcome` is the one line that an assessment comes to."""
 
@@ -34,14 +42,14 @@ class News:
     outcome: tuple[Standing, ...] = ()
 
     @property
-    def inside(self) -> list[str]:
-        """Names of those inside at 95 %."""
-        return [_name(standing, self.outcome) for standing in self.outcome if standing.is_inside]
-
-    @property
-    def outside(self) -> list[str]:
-        """Names of those outside at 95 %."""
-        return [_name(standing, self.outcome) for standing in self.outcome if not standing.is_inside]
+    def groups(self) -> list[Group]:
+        """The outcome by verdict, those inside first."""
+        found: list[Group] = []
+        for word in ("inside", "inside, but off", "outside"):
+            alike = [standing for standing in self.outcome if standing.word == word]
+            if alike:
+                found.append(Group(alike[0], tuple(_name(standing, self.outcome) for standing in alike)))
+        return found
 
 
 @dataclass(frozen=True)

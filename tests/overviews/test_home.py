@@ -98,8 +98,11 @@ def test_an_assessment_names_who_is_inside_and_who_outside(
 ) -> None:
     make.assessment(release, {curve: 0.4, rival: 0.001})
     [news] = look(member)
-    item = news.digest.new[0]
-    assert (item.inside, item.outside) == (["Parabolic floor"], ["Flat floor"])
+    groups = news.digest.new[0].groups
+    assert [(group.standing.word, group.names) for group in groups] == [
+        ("inside", ("Parabolic floor",)),
+        ("outside", ("Flat floor",)),
+    ]
 
 
 def test_two_curves_of_one_theory_are_told_apart_by_version(
@@ -108,9 +111,11 @@ def test_two_curves_of_one_theory_are_told_apart_by_version(
     second = make.curve(curve.theory, curve.measurement, 2)
     make.assessment(release, {second: 0.4, curve: 0.001})
     [news] = look(member)
-    item = news.digest.new[0]
-    assert item.inside == ["Parabolic floor, version 2"]
-    assert item.outside == ["Parabolic floor, version 1"]
+    groups = news.digest.new[0].groups
+    assert [group.names for group in groups] == [
+        ("Parabolic floor, version 2",),
+        ("Parabolic floor, version 1",),
+    ]
 
 
 @pytest.mark.parametrize("status", ["queued", "running", "failed", "cancelled"])
