@@ -4,6 +4,7 @@ from django.contrib.auth.decorators import login_required
 from django.http import HttpResponse
 from django.shortcuts import render
 from django.utils import timezone
+from django.views.decorators.http import require_safe
 
 from core.measurements.models import Measurement
 from core.measurements.preview_figure import plotly_json
@@ -19,6 +20,7 @@ from fits.overviews.theory import theory_page
 
 
 @login_required
+@require_safe
 def home(request: SignedInRequest) -> HttpResponse:
     """What is new in my collaborations since I was last here."""
     since, now = request.user.last_looked_at, timezone.now()
@@ -28,6 +30,7 @@ def home(request: SignedInRequest) -> HttpResponse:
 
 
 @login_required
+@require_safe
 def collaboration(request: SignedInRequest, pk: int) -> HttpResponse:
     """Which measurements exist, how the theories stand on each, who is here."""
     row = load(Collaboration.objects.all(), request.user, Action.VIEW, pk)
@@ -36,6 +39,7 @@ def collaboration(request: SignedInRequest, pk: int) -> HttpResponse:
 
 
 @login_required
+@require_safe
 def measurement(request: SignedInRequest, pk: int) -> HttpResponse:
     """What the data look like, which theories survive, and how that moved from release to release."""
     row = load(Measurement.objects.select_related("collaboration"), request.user, Action.VIEW, pk)
@@ -54,6 +58,7 @@ def measurement(request: SignedInRequest, pk: int) -> HttpResponse:
 
 
 @login_required
+@require_safe
 def theory(request: SignedInRequest, pk: int) -> HttpResponse:
     """What a theory predicts where, and how it fares."""
     row = load(Theory.objects.select_related("collaboration", "submitted_by"), request.user, Action.VIEW, pk)
