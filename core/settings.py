@@ -177,6 +177,11 @@ CELERY_BROKER_TRANSPORT_OPTIONS = {
     "unacked_restore_interval": 10,
     "socket_timeout": 30,
     "socket_connect_timeout": 5,
+    # A page that hands over a job does not wait for a broker that is away; workers go on trying all the same.
+    "max_retries": 1,
+    "interval_start": 0,
+    "interval_step": 0.1,
+    "interval_max": 0.1,
     "health_check_interval": 25,
 }
 CELERY_RESULT_BACKEND_TRANSPORT_OPTIONS = {"visibility_timeout": 7200}
