@@ -93,7 +93,9 @@ class ColumnsForm(forms.Form):
                 required=False,
                 max_length=MAXIMUM_HEADER_LENGTH,
                 initial=column["role"].removeprefix(SHARED) if is_shared else title,
-                widget=forms.TextInput(attrs={"aria-label": f"Name of the shared error in {title}"}),
+                widget=forms.TextInput(
+                    attrs={"aria-label": f"Name of the shared error in {title}", "placeholder": "its name"}
+                ),
             )
 
     @property

@@ -2,8 +2,6 @@
 
 from dataclasses import dataclass
 
-import numpy as np
-
 from core.measurements.models import Release
 from core.measurements.preview_figure import PreviewFigure, preview_figure
 from core.measurements.preview_table import PreviewTable, preview_table
@@ -11,6 +9,7 @@ from core.measurements.reading.roles import problems_of_roles
 from core.measurements.stored_release import data_of, roles_of, table_of
 from core.user_error import UserError
 from fits.engine.data import Data
+from fits.engine.observation import observation_of
 
 
 @dataclass(frozen=True, eq=False)
@@ -37,12 +36,13 @@ def release_page(release: Release) -> ReleasePage:
     except UserError as fault:
         return ReleasePage(preview, (fault,))
     name = str(release)
+    low, high = observation_of(data).reach
     return ReleasePage(
         preview,
         (),
         preview_figure(release.measurement, data, data_name=name),
-        float(np.min(data.x if data.low is None else data.low)),
-        float(np.max(data.x if data.high is None else data.high)),
+        low,
+        high,
         errors_in_words(data),
     )
 

@@ -5,6 +5,7 @@ import numpy as np
 from core.measurements.preview_figure import standard_errors
 from fits.engine.data import CurveTable, Data, FloatArray
 from fits.engine.interpolation import curve_at_data
+from fits.engine.observation import observation_of
 from fits.engine.refusal import InputRefused
 
 # A curve this many times larger or smaller than the data is likely to be in another unit.
@@ -16,8 +17,7 @@ ROUNDING = 1e-9
 
 def doubts(curve: CurveTable, data: Data) -> list[str]:
     """One sentence for each doubt: range, size, grid."""
-    low = float(np.min(data.x if data.low is None else data.low))
-    high = float(np.max(data.x if data.high is None else data.high))
+    low, high = observation_of(data).reach
     if curve.x[-1] < low or curve.x[0] > high:
         return [
             f"Your curve covers {_stretch(curve.x[0], curve.x[-1])}, the data {_stretch(low, high)}: "
@@ -54,14 +54,14 @@ def _odd_size(curve: CurveTable, data: Data) -> list[str]:
     if 1.0 / ODD_RATIO <= ratio <= ODD_RATIO:
         return []
     if ratio > 1.0:
-        return [f"Your curve is typically {ratio:.3g} times as large as the data. Check the unit of y."]
-    return [f"Your curve is typically {1.0 / ratio:.3g} times as small as the data. Check the unit of y."]
+        return [f"Your curve is typically {_times(ratio)} times as large as the data. Check the unit of y."]
+    return [f"Your curve is typically {_times(1.0 / ratio)} times as small as the data. Check the unit of y."]
 
 
 def _coarse_grid(curve: CurveTable, data: Data) -> list[str]:
     errors = standard_errors(data)
     try:
-        at_data = curve_at_data(curve, data)
+        at_data = curve_at_data(curve, observation_of(data), data.axis)
     except InputRefused:
         return []
     if errors is None:
@@ -77,6 +77,10 @@ def _coarse_grid(curve: CurveTable, data: Data) -> list[str]:
 
 def _size(values: FloatArray) -> float:
     return float(np.sqrt(np.mean(values**2)))
+
+
+def _times(ratio: float) -> str:
+    return f"{ratio:.0f}" if ratio < 1e6 else f"{ratio:.1e}"
 
 
 def _stretch(low: float, high: float) -> str:

@@ -194,7 +194,7 @@ def test_an_unfinished_draft_offers_no_publication(
     unmapped: Release, lead: User, signed_in: SignedIn
 ) -> None:
     page = signed_in(lead).get(unmapped.get_absolute_url()).content.decode()
-    assert "no column is marked y" in page
+    assert "No column is marked y" in page
     assert reverse("measurements:publish", args=[unmapped.pk]) not in page
 
 
