@@ -1,7 +1,7 @@
 """What is asked for before an assessment starts."""
 
 import secrets
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from django import forms
 
@@ -33,10 +33,16 @@ SHRINKAGES = (
 )
 
 
-class CurveChoice(forms.ModelMultipleChoiceField):
+if TYPE_CHECKING:
+    ManyCurves = forms.ModelMultipleChoiceField[Curve]
+else:  # at run time Django's field takes no type argument
+    ManyCurves = forms.ModelMultipleChoiceField
+
+
+class CurveChoice(ManyCurves):
     """Curves, named by theory and version."""
 
-    def label_from_instance(self, obj: Any) -> str:
+    def label_from_instance(self, obj: Curve) -> str:
         proposed_by = f", {obj.theory.proposed_by}" if obj.theory.proposed_by else ""
         return f"{obj}{proposed_by}"
 

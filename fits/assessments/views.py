@@ -14,6 +14,7 @@ from core.user_error import UserError
 from fits.assessments.forms import AssessmentForm
 from fits.assessments.models import Assessment
 from fits.assessments.services import cancel_assessment, request_assessment
+from fits.assessments.stages import stages_of
 
 
 @login_required
@@ -55,7 +56,9 @@ def new_assessment(request: SignedInRequest, pk: int) -> HttpResponse:
 def progress(request: SignedInRequest, pk: int) -> HttpResponse:
     """The part of the page that is fetched again and again; once it has ended, the whole page is."""
     assessment = load(Assessment.objects.defer("result", "detail"), request.user, Action.VIEW, pk)
-    response = render(request, "assessments/progress_part.html", {"assessment": assessment})
+    response = render(
+        request, "assessments/progress_part.html", {"assessment": assessment, "stages": stages_of(assessment)}
+    )
     if assessment.has_ended:
         response["HX-Refresh"] = "true"
     return response

@@ -41,9 +41,9 @@ class Snapshot:
         return next(float(r[kind]) for r in self.result["radii"] if level_key(r["level"]) == level)
 
     @property
-    def curves(self) -> tuple[Document, ...]:
+    def curves(self) -> tuple[dict[str, Any], ...]:
         """The verdicts, in rank order."""
-        return tuple(self.result["curves"])
+        return tuple(dict(curve) for curve in self.result["curves"])
 
     @property
     def names(self) -> tuple[str, ...]:
@@ -54,11 +54,11 @@ class Snapshot:
         """The curve that was asked for if there is one, else the first in rank."""
         return asked if asked is not None and asked in self.names else self.names[0]
 
-    def drawing(self, name: str) -> Document:
+    def drawing(self, name: str) -> dict[str, Any]:
         """What the charts need of a curve."""
         return next(dict(curve) for curve in self.detail["curves"] if curve["name"] == name)
 
-    def origin(self, name: str) -> Document:
+    def origin(self, name: str) -> dict[str, Any]:
         """Where a curve came from; empty where that is not known."""
         known = self.context.get("curves") or []
         return next((dict(curve) for curve in known if curve["name"] == name), {})

@@ -63,16 +63,24 @@
   }
 
   // The files beside a chart follow what is chosen, as far as a server can make them.
+  const unchanging = new Set(["shrinkage", "risk", "quantiles"]);
+  let soon = 0;
+
   function follow(state) {
     const query = `?level=${encodeURIComponent(state.level)}&curve=${encodeURIComponent(state.curve)}`;
     for (const link of result.querySelectorAll("a[data-file]")) {
       const address = link.getAttribute("href");
       if (!address.startsWith("data:")) link.href = address.split("?")[0] + query;
     }
-    for (const still of result.querySelectorAll("img.drawn")) {
-      const address = still.getAttribute("src");
-      if (!address.startsWith("data:")) still.src = address.split("?")[0] + query;
-    }
+    // The still drawings, for print, once the reader has come to rest.
+    clearTimeout(soon);
+    soon = setTimeout(() => {
+      for (const still of result.querySelectorAll("img.drawn")) {
+        const address = still.getAttribute("src");
+        const changes = !unchanging.has(still.closest("[data-chart]").dataset.chart);
+        if (changes && !address.startsWith("data:")) still.src = address.split("?")[0] + query;
+      }
+    }, 600);
   }
 
   function apply() {

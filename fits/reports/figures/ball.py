@@ -8,7 +8,7 @@ from fits.reports.figures import palette
 from fits.reports.figures.figure import Axis, Figure, Layer, Marker, Panel, Place, Points, Ring, Table
 from fits.reports.snapshot import Document, Snapshot
 
-FAR = 3.0  # in radii of the largest ring: what stands further out is named at the edge
+FAR = 2.0  # in radii of the largest ring: what stands further out is named at the edge
 MARGIN = 1.15
 LETTER = 0.0105  # width of a letter and height of a line, as parts of the width of the chart
 LETTERS_HIGH = 2.6
@@ -50,6 +50,7 @@ def ball(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
         level=level,
         curve=curve,
         equal_aspect=True,
+        width=5.6,
         height=5.6,
     )
 
@@ -75,7 +76,7 @@ def _curve(
         x=(at[0],),
         y=(at[1],),
         marker=Marker.DOT if is_far else Marker.NONE,
-        size=3.0 if is_far else 8.0,
+        size=3.0 if is_far else 11.0,
         words=(words,),
         place=labels.place_for(words, *at),
     )

@@ -42,9 +42,9 @@ def curves(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
         name="curves",
         title="Data, fit and theory curves",
         caption=(
-            f"Above: data with their errors, the fit, and the band in which, at {numbers.level_words(level)}, "
-            "every curve of the calibrated ball lies, for all x at once. Solid curves are inside, dashed ones "
-            "outside. Below, in error bars: data minus fit (grey) and data minus the chosen curve." + thinned
+            "Above: data with their errors, the fit, and the band in which every curve of the calibrated ball at the "
+            "chosen level lies, for all x at once. Solid curves are inside, dashed ones outside. Below, in error "
+            "bars: data minus fit (grey) and data minus the curve looked at." + thinned
         ),
         x=log_axis(snapshot.x_label, x) if snapshot.on_log_axis else Axis(snapshot.x_label),
         panels=(Panel(Axis(snapshot.y_label), 0.7), Panel(Axis("in error bars"), 0.3)),

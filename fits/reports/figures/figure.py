@@ -130,6 +130,9 @@ class Table:
     rows: tuple[tuple[Cell, ...], ...]
 
 
+NARROW = 4.7
+
+
 @dataclass(frozen=True)
 class Figure:
     """One chart: name (as in addresses), title, caption in plain words, panels, layers from back to front.
@@ -149,7 +152,10 @@ class Figure:
     curve: str = ""
     switched_on: tuple[str, ...] = ()
     equal_aspect: bool = False
-    height: float = 3.6  # inches at a width of 7
+    width: float = (
+        7.4  # inches; those that stand side by side are narrower, so that their words stay readable
+    )
+    height: float = 3.6
 
     def shows(self, layer: Layer) -> bool:
         """Whether a layer is drawn under what is chosen here."""

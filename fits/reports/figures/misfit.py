@@ -3,6 +3,7 @@
 from fits.reports import numbers
 from fits.reports.figures import palette
 from fits.reports.figures.figure import (
+    NARROW,
     Axis,
     Band,
     Choice,
@@ -66,7 +67,8 @@ def misfit(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
         title="Smooth misfit along x",
         caption=(
             "Data minus curve, with everything finer than the curve's worst scale left out. Where the line leaves "
-            "the band, the curve is off by more than the 95 % scale set allows."
+            "the band, the curve is off by more than the 95 % scale set allows; a curve can also be rejected for its "
+            "misfit as a whole without leaving the band anywhere."
         ),
         x=log_axis(label, grid) if snapshot.on_log_axis else Axis(label),
         panels=(Panel(Axis(f"misfit, {snapshot.y_label}")),),
@@ -74,5 +76,6 @@ def misfit(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
         table=Table(("curve", snapshot.x_label, "misfit", "band (±)"), tuple(rows)),
         level=level,
         curve=curve,
-        height=3.2,
+        width=NARROW,
+        height=3.0,
     )

@@ -3,6 +3,7 @@
 from fits.reports import numbers
 from fits.reports.figures import palette
 from fits.reports.figures.figure import (
+    NARROW,
     Choice,
     Figure,
     Layer,
@@ -82,5 +83,6 @@ def scales(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
         table=Table(("curve", "functions", "features wider than", "p-value"), tuple(rows)),
         level=level,
         curve=curve,
-        height=3.2,
+        width=NARROW,
+        height=3.0,
     )

@@ -2,8 +2,11 @@
 
 import io
 import math
+from collections.abc import Iterable
+from typing import Any
 
 import matplotlib as mpl
+from matplotlib.artist import Artist
 from matplotlib.axes import Axes
 from matplotlib.axis import XAxis, YAxis
 from matplotlib.backends.backend_svg import FigureCanvasSVG
@@ -29,12 +32,12 @@ from fits.reports.figures.figure import (
 
 DASHES = {Dash.SOLID: "-", Dash.DASHED: (0, (5, 2.4)), Dash.DOTTED: (0, (1.2, 2))}
 MARKERS = {Marker.DOT: "o", Marker.CIRCLE: "o", Marker.CROSS: "X"}
-WIDTH = 7.4
-STYLE = {
+STYLE: Any = {
     "svg.fonttype": "none",  # text stays text: selectable, and small
     "svg.hashsalt": "inradius",
+    # Comes with matplotlib: the same bytes on every machine, and it has every sign that we use.
     "font.family": ["sans-serif"],
-    "font.sans-serif": ["Liberation Sans", "DejaVu Sans"],
+    "font.sans-serif": ["DejaVu Sans"],
     "font.size": 9.0,
     "axes.edgecolor": palette.GUIDE,
     "axes.labelcolor": palette.INK,
@@ -52,6 +55,7 @@ PLACES = {
     Place.LEFT: ((-7, 0), "right", "center"),
     Place.RIGHT: ((7, 0), "left", "center"),
 }
+LETTERS_PER_INCH = 14.0  # in the legend
 LEGEND_ROWS = 0.22  # inches a row
 
 
@@ -59,11 +63,11 @@ def svg(figure: Figure) -> str:
     """The figure under the level and curve that it has chosen."""
     with mpl.rc_context(STYLE):
         keys = _legend_keys(figure)
-        columns = 2 if any(len(label) > 24 for label in keys) else 3
+        longest = max(map(len, keys.values()), default=1)
+        columns = max(1, min(3, int(figure.width * LETTERS_PER_INCH / (longest + 6))))
         rows = math.ceil(len(keys) / columns)
-        width = figure.height if figure.equal_aspect else WIDTH
         height = figure.height + rows * LEGEND_ROWS
-        canvas = Canvas(figsize=(width, height), layout="constrained")
+        canvas = Canvas(figsize=(figure.width, height), layout="constrained")
         FigureCanvasSVG(canvas)
         canvas.set_facecolor("none")
         axes = canvas.subplots(
@@ -105,8 +109,8 @@ def _legend_keys(figure: Figure) -> dict[str, str]:
     return keys if len(keys) > 1 and not figure.equal_aspect else {}
 
 
-def _legend(axes: list[Axes], keys: dict[str, str]) -> tuple[list[object], list[str]]:
-    found: dict[str, object] = {}
+def _legend(axes: Iterable[Axes], keys: dict[str, str]) -> tuple[list[Artist], list[str]]:
+    found: dict[str, Artist] = {}
     for axis in axes:
         for handle, label in zip(*axis.get_legend_handles_labels(), strict=True):
             if label in keys:

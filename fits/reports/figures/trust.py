@@ -2,6 +2,7 @@
 
 from fits.reports.figures import palette
 from fits.reports.figures.figure import (
+    NARROW,
     Axis,
     Dash,
     Figure,
@@ -45,6 +46,7 @@ def shrinkage(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
             tuple((j, *row) for j, row in enumerate(zip(z, factors, strict=True))),
         ),
         level=level,
+        width=NARROW,
         height=2.8,
     )
 
@@ -84,6 +86,7 @@ def risk(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
         ),
         table=Table(("coordinates kept", "estimated risk"), tuple(zip(kept, risks, strict=True))),
         level=level,
+        width=NARROW,
         height=2.8,
     )
 
@@ -111,5 +114,6 @@ def quantiles(snapshot: Snapshot, *, level: str, curve: str) -> Figure | None:
         ),
         table=Table(("expected", "found"), tuple(zip(expected, observed, strict=True))),
         level=level,
-        height=3.2,
+        width=NARROW,
+        height=3.0,
     )

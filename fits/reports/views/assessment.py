@@ -11,6 +11,7 @@ from core.people.access import Action, load, may
 from core.people.signed_in import SignedInRequest
 from fits.assessments.context import context_of
 from fits.assessments.models import Assessment
+from fits.assessments.stages import stages_of
 from fits.reports.addresses import RouteAddresses
 from fits.reports.files import chart_file, ranking_file, result_file
 from fits.reports.forms import ReportForm
@@ -37,7 +38,7 @@ def assessment(request: SignedInRequest, pk: int) -> HttpResponse:
         "may_assess": may(request.user, Action.ASSESS, measurement.collaboration),
     }
     if found.status != Assessment.Status.DONE:
-        return render(request, "assessments/progress.html", context)
+        return render(request, "assessments/progress.html", context | {"stages": stages_of(found)})
     page = result_page(
         _snapshot(found),
         RouteAddresses("assessment", pk),
