@@ -4,7 +4,8 @@
 const FIGURE_OPTIONS = {
   responsive: true,
   displaylogo: false,
-  modeBarButtonsToRemove: ["select2d", "lasso2d", "autoScale2d", "toImage"],
+  // Named one by one: the library may come to offer buttons that send data away.
+  modeBarButtons: [["zoom2d", "pan2d", "zoomIn2d", "zoomOut2d", "resetScale2d"]],
 };
 
 for (const place of document.querySelectorAll("div.figure[data-figure]")) {
