@@ -20,7 +20,7 @@ from fits.engine.refusal import InputRefused
 from fits.engine.resolution import functions_for
 from fits.engine.result import CurveVerdict, Fit, Result
 from fits.engine.scales import ScaleTable, scale_table
-from fits.engine.settings import Settings
+from fits.engine.settings import Settings, refuse_too_many_draws
 from fits.engine.whitening import Whitening
 
 
@@ -73,6 +73,7 @@ def assess(
     observation = observation_of(data)
     observed = stabilised(data.y) if data.source is ErrorSource.COUNTS else data.y
     asked = functions_for(settings, points=data.points, span=interval_of(data).span)
+    refuse_too_many_draws(settings, functions=asked)
     errors = error_model_of(data, observed, functions=asked)
     fit = fit_of(data, observed, errors.whitening, errors.freedom, functions=asked, settings=settings)
     if data.calibration:

@@ -73,24 +73,36 @@ class StreamedDesign:
         return self._correct(values)
 
     def leverage(self) -> FloatArray:
-        found = np.empty(self._errors().size)
         inverse = scipy.linalg.solve_triangular(self.triangular, np.eye(self.functions), check_finite=False)
+        shared = self.whitening if isinstance(self.whitening, SharedErrors) else None
+        lost = np.empty((0, self.functions))
+        if shared is not None:
+            lost = shared.lost[:, None] * (self._along(shared) @ inverse)
+        found = np.empty(self._errors().size)
         for rows, block in self._blocks():
-            found[rows] = np.einsum("ij,ij->i", block @ inverse, block @ inverse)
+            orthonormal = block @ inverse
+            if shared is not None:
+                orthonormal -= shared.directions[rows] @ lost
+            found[rows] = np.einsum("ij,ij->i", orthonormal, orthonormal)
         return found
 
     def gram(self) -> FloatArray:
         """(L⁻¹Ψ)ᵀ (L⁻¹Ψ), shape (J, J)."""
         total = np.zeros((self.functions, self.functions))
         shared = self.whitening if isinstance(self.whitening, SharedErrors) else None
-        along = np.zeros((0 if shared is None else shared.strengths.size, self.functions))
-        for rows, block in self._blocks():
+        for _, block in self._blocks():
             total += block.T @ block
-            if shared is not None:
-                along += shared.directions[rows].T @ block
         if shared is not None:
+            along = self._along(shared)
             squares = shared.strengths**2
             total -= along.T @ (along * (squares / (1.0 + squares))[:, None])
+        return total
+
+    def _along(self, shared: SharedErrors) -> FloatArray:
+        """Uᵀ D⁻¹ Ψ, shape (m, J)."""
+        total = np.zeros((shared.strengths.size, self.functions))
+        for rows, block in self._blocks():
+            total += shared.directions[rows].T @ block
         return total
 
     def _blocks(self) -> Iterator[tuple[slice, FloatArray]]:

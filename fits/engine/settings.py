@@ -8,6 +8,8 @@ from fits.engine.refusal import InputRefused
 DEFAULT_LEVELS = (0.67, 0.9, 0.95, 0.99)
 DEFAULT_DRAWS = 2000
 MAXIMUM_DRAWS = 100_000
+# Draws times functions: 200 MB of normal numbers.
+MAXIMUM_DRAWN_NUMBERS = 25_000_000
 FULL_RESOLUTION_POINTS = 3000
 
 
@@ -61,3 +63,14 @@ class Settings:
             raise InputRefused(
                 "draws", "draws", f"draws lie between 100 and {MAXIMUM_DRAWS}", "2000 are usual"
             )
+
+
+def refuse_too_many_draws(settings: Settings, *, functions: int) -> None:
+    """Raise InputRefused where the draws of so many functions would not fit into a worker."""
+    if settings.draws * functions > MAXIMUM_DRAWN_NUMBERS:
+        raise InputRefused(
+            "draws",
+            "draws",
+            f"{settings.draws} draws of {functions} functions are too many",
+            f"Take at most {MAXIMUM_DRAWN_NUMBERS // functions} draws, or a lower resolution",
+        )

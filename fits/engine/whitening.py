@@ -92,8 +92,12 @@ class SharedErrors:
     def correct(self, values: FloatArray) -> FloatArray:
         """(I + A Aᵀ)^(−1/2) values; the matrix is symmetric."""
         inner = self.directions.T @ values
-        lost = -np.expm1(-0.5 * np.log1p(self.strengths**2))
-        return np.asarray(values - self.directions @ (inner.T * lost).T)
+        return np.asarray(values - self.directions @ (inner.T * self.lost).T)
+
+    @property
+    def lost(self) -> FloatArray:
+        """1 − (1 + a²)^(−1/2), shape (m,)."""
+        return np.asarray(-np.expm1(-0.5 * np.log1p(self.strengths**2)))
 
     def scaled(self, factor: float) -> "SharedErrors":
         return SharedErrors(self.own.scaled(factor), self.directions, self.strengths, self.columns * factor)

@@ -212,3 +212,10 @@ def test_a_log_axis_asks_for_positive_x() -> None:
     with pytest.raises(InputRefused) as refusal:
         validated_data(np.linspace(0.0, 1.0, 20), np.ones(20), errors=np.ones(20), axis=Axis.LOG)
     assert (refusal.value.field, refusal.value.index) == ("x", 0)
+
+
+def test_more_draws_than_a_worker_can_hold_are_refused() -> None:
+    x = np.linspace(0, 1, 2000)
+    data = validated_data(x, x, errors=np.ones(2000))
+    with pytest.raises(InputRefused, match="at most 12500 draws"):
+        assess(data, [], Settings(full=True, draws=20_000), rng=np.random.default_rng(1))
