@@ -22,7 +22,7 @@ def p_value(value: float, error: float | None = None, *, smallest: float | None 
         bound = ceiling(smallest)
         return f"{'<' if smallest < float(bound) else '≤'} {bound}"
     if error is None or error == 0.0:
-        return f"{value:.3f}" if value >= 0.001 else significant(value, 1)
+        return f"{value:.3f}" if value >= 0.01 else significant(value, 2)
     # One digit of the error, two where that digit is a one.
     exponent = math.floor(math.log10(error))
     digits = -exponent + (1 if error / 10**exponent < 1.95 and exponent > -4 else 0)

@@ -155,7 +155,9 @@ def _moment(iso: str | None) -> str:
 def _heading(snapshot: Snapshot) -> str:
     name = snapshot.measurement.get("name")
     data = words.data_name(snapshot)
-    return f"{name}, {data}" if name else data
+    # Without a release the measurement is called after the file.
+    is_numbered = bool((snapshot.context.get("release") or {}).get("number"))
+    return f"{name}, {data}" if name and is_numbered else data
 
 
 def _rows(snapshot: Snapshot, level: str) -> list[Row]:

@@ -5,6 +5,7 @@ from fits.reports.figures import palette
 from fits.reports.figures.figure import (
     NARROW,
     Choice,
+    Dash,
     Figure,
     Layer,
     Line,
@@ -67,6 +68,12 @@ def scales(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
             )
         )
         rows += [(name, *row) for row in zip(scale["functions"], width, p, strict=True)]
+    # Keeps 1 in sight, so that a curve that fails at every scale does not look like one that passes.
+    layers.append(
+        Line(
+            colour=palette.GUIDE, x=(min(widths), max(widths)), y=(1.0, 1.0), dash=Dash.DOTTED, thickness=0.8
+        )
+    )
     label = "of ln x" if snapshot.on_log_axis else f"({unit})" if unit else ""
     return Figure(
         name="scales",
