@@ -208,6 +208,9 @@ FILE_UPLOAD_MAX_MEMORY_SIZE = 2 * 1024 * 1024  # larger files stream to a tempor
 # ---- Files ----
 STATIC_URL = "static/"
 STATIC_ROOT = BASE_DIR / "staticfiles"
+# WhiteNoise warns of a folder that is not there; where the code is read-only, `collectstatic` has made it.
+with contextlib.suppress(OSError):
+    STATIC_ROOT.mkdir(exist_ok=True)
 # Without a `collectstatic` step WhiteNoise serves the files from where they stand.
 WHITENOISE_USE_FINDERS = True
 STORAGES = {

@@ -52,6 +52,13 @@ class Measurement(models.Model):
         return f"{self.y_name} ({self.y_unit})" if self.y_unit else self.y_name
 
 
+class ReleaseManager(models.Manager["Release"]):
+    """Leaves a covariance, which can be 200 MB, in the database until it is asked for."""
+
+    def get_queryset(self) -> models.QuerySet["Release"]:
+        return super().get_queryset().defer("covariance")
+
+
 class Release(models.Model):
     """One numbered data table of a measurement. A draft has no number; a published one never changes."""
 
@@ -71,6 +78,8 @@ class Release(models.Model):
     lines = models.BinaryField()
     columns = models.JSONField()
     covariance = models.BinaryField(null=True, blank=True)
+    # Its diagonal, for drawing.
+    variances = models.BinaryField(null=True, blank=True)
     file_name = models.CharField(max_length=200)
     file_sha256 = models.CharField(max_length=64)
     covariance_name = models.CharField(max_length=200, blank=True)
@@ -80,6 +89,8 @@ class Release(models.Model):
     created_at = models.DateTimeField(auto_now_add=True)
     published_at = models.DateTimeField(null=True, blank=True)
 
+    objects = ReleaseManager()
+
     class Meta:
         ordering = ("measurement", "number", "pk")
         constraints = (
@@ -87,6 +98,11 @@ class Release(models.Model):
             models.CheckConstraint(
                 condition=models.Q(state="draft", number=None) | models.Q(state="published", number__gte=1),
                 name="published_releases_are_numbered",
+            ),
+            models.CheckConstraint(
+                condition=models.Q(covariance=None, variances=None)
+                | models.Q(covariance__isnull=False, variances__isnull=False),
+                name="variances_are_those_of_the_covariance",
             ),
         )
 

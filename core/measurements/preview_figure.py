@@ -59,12 +59,9 @@ def preview_figure(
 
 def standard_errors(data: Data) -> FloatArray | None:
     """One standard error for each point, all causes together; None where none is given."""
-    if data.covariance is not None:
-        variance = np.diagonal(data.covariance).copy()
-    elif data.errors is not None:
-        variance = data.errors**2
-    else:
+    if data.errors is None:
         return None
+    variance = data.errors**2
     for shared in data.shared.values():
         variance = variance + shared**2
     return np.asarray(np.sqrt(variance), dtype=np.float64)

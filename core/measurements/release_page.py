@@ -6,7 +6,7 @@ from core.measurements.models import Release
 from core.measurements.preview_figure import PreviewFigure, preview_figure
 from core.measurements.preview_table import PreviewTable, preview_table
 from core.measurements.reading.roles import problems_of_roles
-from core.measurements.stored_release import data_of, roles_of, table_of
+from core.measurements.stored_release import data_to_draw, roles_of, table_of
 from core.user_error import UserError
 from fits.engine.data import Data
 from fits.engine.observation import observation_of
@@ -32,7 +32,7 @@ def release_page(release: Release) -> ReleasePage:
     if faults:
         return ReleasePage(preview, tuple(faults))
     try:
-        data = data_of(release)
+        data = data_to_draw(release)
     except UserError as fault:
         return ReleasePage(preview, (fault,))
     name = str(release)
@@ -43,13 +43,13 @@ def release_page(release: Release) -> ReleasePage:
         preview_figure(release.measurement, data, data_name=name),
         low,
         high,
-        errors_in_words(data),
+        errors_in_words(data, has_covariance=release.variances is not None),
     )
 
 
-def errors_in_words(data: Data) -> str:
+def errors_in_words(data: Data, *, has_covariance: bool) -> str:
     """Where the errors come from."""
-    words = "a covariance matrix" if data.covariance is not None else "an error for each point"
+    words = "a covariance matrix" if has_covariance else "an error for each point"
     if data.shared:
         words += f", and shared: {', '.join(sorted(data.shared))}"
     return words

@@ -6,7 +6,7 @@ from core.measurements.models import Release
 from core.measurements.preview_figure import PreviewFigure, Series, preview_figure
 from core.measurements.preview_table import PreviewTable, preview_table
 from core.measurements.reading.stored import from_bytes
-from core.measurements.stored_release import data_of
+from core.measurements.stored_release import data_to_draw
 from core.theories.doubts import doubts
 from core.theories.models import Curve
 from core.theories.stored_curve import table_of
@@ -28,7 +28,7 @@ def curve_page(curve: Curve) -> CurvePage:
     line = table_of(curve)
     published = measurement.releases.filter(state=Release.State.PUBLISHED)
     release = published.select_related("measurement").order_by("-number").first()
-    data = None if release is None else data_of(release)
+    data = None if release is None else data_to_draw(release)
     figure = preview_figure(
         measurement,
         data,

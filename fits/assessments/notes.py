@@ -1,5 +1,6 @@
 """What a reader must know beside the numbers, each with a stable code."""
 
+import math
 from collections.abc import Iterator
 from dataclasses import dataclass
 
@@ -13,6 +14,7 @@ LEFTOVER_TOO_SMALL = 0.99
 # Error bars, root-mean-square.
 GRID_TOO_COARSE = 0.05
 FINER_THAN_RESOLUTION = 0.1
+# … and only where it would show in the leftover: more than one standard deviation of its χ².
 
 
 @dataclass(frozen=True)
@@ -101,7 +103,8 @@ def _on_the_curves(result: Result) -> Iterator[Note]:
         name = verdict.curve.name
         if verdict.leftover is not None:
             unjudged = verdict.leftover.root_mean_square(result.data.points)
-            if unjudged > FINER_THAN_RESOLUTION:
+            shows = verdict.leftover.chi2 > math.sqrt(2.0 * verdict.leftover.dof)
+            if unjudged > FINER_THAN_RESOLUTION and shows:
                 yield Note(
                     "curve-finer",
                     f"{name} has structure narrower than {narrowest(result)}: {unjudged:.2g} error bars of it "

@@ -5,17 +5,19 @@ from dataclasses import dataclass
 from datetime import UTC, datetime
 from typing import Any, Protocol
 
+from fits.assessments.document import level_key
+from fits.engine.scales import TABLE_DRAWS
 from fits.reports import numbers, verdict_words, words
 from fits.reports.figures import BUILDERS, figure_of
 from fits.reports.figures.curves import CURVES_SHOWN
 from fits.reports.figures.figure import Cell, Figure
 from fits.reports.figures.palette import curve_colour
 from fits.reports.figures.plotly import plotly_json
-from fits.reports.snapshot import Document, Snapshot, level_key
+from fits.reports.snapshot import Document, Snapshot
 
 # Longer tables are shown in part; the CSV has all rows.
 ROWS_SHOWN = 120
-SMALLEST_SCALE_P_VALUE = numbers.smallest_p_value(20_000)
+SMALLEST_SCALE_P_VALUE = numbers.smallest_p_value(TABLE_DRAWS)
 
 
 class Addresses(Protocol):

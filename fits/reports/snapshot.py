@@ -4,6 +4,8 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any
 
+from fits.assessments.document import level_key
+
 Document = Mapping[str, Any]
 DEFAULT_LEVEL = 0.95
 
@@ -93,8 +95,3 @@ class Snapshot:
     def inside(self, curve: Document) -> dict[str, bool]:
         """Level → whether the exact ball set holds the curve."""
         return dict(curve["inside"]["exact"])
-
-
-def level_key(level: float) -> str:
-    """As levels are named in the documents: "0.9"."""
-    return repr(float(level))

@@ -19,8 +19,12 @@ def release_data(
     source: ErrorSource = ErrorSource.GIVEN,
     covariance: FloatArray | None = None,
     covariance_name: str = "",
+    standard_errors: FloatArray | None = None,
 ) -> Data:
-    """The release's points, every rule of them checked; a broken one is named by line and column."""
+    """The release's points, every rule of them checked; a broken one is named by line and column.
+
+    standard_errors  take the place of an error column
+    """
     if len(roles) != len(table.headers):
         reason = f"{len(roles)} columns are marked of {len(table.headers)}"
         raise UserError("columns-unmapped", reason, MAP_THEM, table.file_name)
@@ -40,7 +44,7 @@ def release_data(
             columns["y"],
             axis=axis,
             source=source,
-            errors=columns.get("error"),
+            errors=columns.get("error") if standard_errors is None else standard_errors,
             covariance=covariance,
             shared={
                 role[len(SHARED) :]: column for role, column in columns.items() if role.startswith(SHARED)

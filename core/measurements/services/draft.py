@@ -3,6 +3,8 @@
 import hashlib
 from collections.abc import Sequence
 
+import numpy as np
+
 from core.measurements.models import Measurement, Release
 from core.measurements.reading.apart import read_covariance_apart, read_table_apart
 from core.measurements.reading.names import safe_name
@@ -47,6 +49,7 @@ def draft_release(
         lines=to_bytes(table.lines),
         columns=[{"header": header, "role": role} for header, role in zip(table.headers, roles, strict=True)],
         covariance=None if covariance is None else to_bytes(covariance),
+        variances=None if covariance is None else to_bytes(np.diagonal(covariance)),
         file_name=table.file_name,
         file_sha256=hashlib.sha256(content).hexdigest(),
         covariance_name=covariance_name if covariance_content is not None else "",

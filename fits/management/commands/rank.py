@@ -9,8 +9,10 @@ from threadpoolctl import threadpool_limits
 from fits.assessments.detail import detail_document
 from fits.assessments.document import level_key, result_document
 from fits.engine.assess import assess
+from fits.engine.scales import TABLE_DRAWS
 from fits.management.base import FileCommand
 from fits.management.options import add_options, read_inputs
+from fits.reports import numbers
 
 
 class Command(FileCommand):
@@ -45,6 +47,7 @@ class Command(FileCommand):
 def ranking_table(result: dict[str, Any]) -> str:
     """The result for people at a terminal."""
     levels = [level_key(radius["level"]) for radius in result["radii"]]
+    smallest = numbers.smallest_p_value(result["draws"])
     rows = [
         ["rank", "curve", "distance", "entry", "p-value", "scale p", "worst scale"]
         + [f"{100 * float(level):g} %" for level in levels]
@@ -56,9 +59,9 @@ def ranking_table(result: dict[str, Any]) -> str:
                 f"{curve['rank']}{'' if curve['order_settled'] else '~'}",
                 curve["name"],
                 f"{curve['distance']:.4f}",
-                f"{100 * curve['entry_level']['calibrated']:.1f} %",
-                f"{curve['p_value']:.4f} ± {curve['p_value_error']:.4f}",
-                f"{curve['scales']['p_value']:.4f}",
+                numbers.entry_level(curve["entry_level"]["calibrated"]),
+                numbers.p_value(curve["p_value"], curve["p_value_error"], smallest=smallest),
+                numbers.p_value(curve["scales"]["p_value"], smallest=numbers.smallest_p_value(TABLE_DRAWS)),
                 f"> {curve['scales']['worst']['wider_than']:.3g}",
                 *marks,
             ]
