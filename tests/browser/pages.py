@@ -1,0 +1,119 @@
+"""Every page of the site: its address, who looks at it, and with which status it answers."""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+from django.urls import reverse
+from playwright.sync_api import Page as BrowserPage
+
+from tests.browser.survey import Survey
+
+
+@dataclass(frozen=True)
+class Row:
+    """A page. `route` is the name of its address; several rows may show one address in several states."""
+
+    name: str
+    route: str
+    key: Callable[[Survey], object] | None = None
+    who: str = "lead"
+    status: int = 200
+    query: str = ""
+    then: Callable[[BrowserPage], None] | None = None
+
+    def address(self, survey: Survey) -> str:
+        """Where it is."""
+        arguments = [] if self.key is None else [self.key(survey)]
+        return reverse(self.route, args=arguments) + self.query
+
+
+def ask_for_too_much(page: BrowserPage) -> None:
+    """Have a form come back with faults."""
+    page.get_by_label("Levels, in %").fill("none of these")
+    page.get_by_role("button", name="Start the assessment").click()
+
+
+def take_the_last_lead_away(page: BrowserPage) -> None:
+    """Ask for what a rule forbids."""
+    page.get_by_role("button", name="Remove Lin Lead").click()
+
+
+def upload_nonsense(page: BrowserPage) -> None:
+    """Upload a table with a fault in it."""
+    table = "x,y,error\n" + "".join(f"{x},{x},0.1\n" for x in range(9)) + "9,=1+1,0.1\n"
+    file = {"name": "merrow.csv", "mimeType": "text/csv", "buffer": table.encode()}
+    page.get_by_label("Data table").set_input_files(files=[file])  # type: ignore[list-item]
+    page.get_by_role("button", name="Read it").click()
+
+
+def make_a_link(page: BrowserPage) -> None:
+    """Make a share link, whose secret is shown once."""
+    page.get_by_label("For whom").fill("the harbour office")
+    page.get_by_role("button", name="Make a link").click()
+
+
+def unfold_everything(page: BrowserPage) -> None:
+    """Open all that is folded."""
+    for fold in page.locator("details").all():
+        fold.evaluate("fold => { fold.open = true; }")
+
+
+PAGES = [
+    Row("sign-in", "account_login", who="nobody"),
+    Row("sign-up-closed", "account_signup", who="nobody"),
+    Row("password-reset", "account_reset_password", who="nobody"),
+    Row("password-reset-sent", "account_reset_password_done", who="nobody"),
+    Row("password-reset-done", "account_reset_password_from_key_done", who="nobody"),
+    Row("inactive", "account_inactive", who="nobody"),
+    Row("sign-out", "account_logout"),
+    Row("password-change", "account_change_password"),
+    Row("reauthenticate", "account_reauthenticate"),
+    Row("home", "overviews:home"),
+    Row("home-of-a-stranger", "overviews:home", who="stranger"),
+    Row("collaboration", "overviews:collaboration", lambda survey: survey.collaboration.pk),
+    Row("measurement", "overviews:measurement", lambda survey: survey.measurement.pk),
+    Row("theory", "overviews:theory", lambda survey: survey.theory.pk),
+    Row("new-collaboration", "people:new_collaboration"),
+    Row("edit-collaboration", "people:edit_collaboration", lambda survey: survey.collaboration.pk),
+    Row("people", "people:people", lambda survey: survey.collaboration.pk),
+    Row("people-as-a-member", "people:people", lambda survey: survey.collaboration.pk, who="member"),
+    Row("new-measurement", "measurements:new_measurement", lambda survey: survey.collaboration.pk),
+    Row("edit-measurement", "measurements:edit_measurement", lambda survey: survey.measurement.pk),
+    Row("upload", "measurements:upload", lambda survey: survey.measurement.pk),
+    Row("draft-release", "measurements:release", lambda survey: survey.draft.pk),
+    Row("draft-release-with-faults", "measurements:release", lambda survey: survey.unmapped.pk),
+    Row("release", "measurements:release", lambda survey: survey.release.pk),
+    Row("new-theory", "theories:new_theory", lambda survey: survey.collaboration.pk),
+    Row("edit-theory", "theories:edit_theory", lambda survey: survey.theory.pk),
+    Row("new-curve", "theories:new_curve", lambda survey: survey.theory.pk),
+    Row("draft-curve", "theories:curve", lambda survey: survey.draft_curve.pk, then=unfold_everything),
+    Row("curve", "theories:curve", lambda survey: survey.curve.pk),
+    Row("assess", "assessments:new", lambda survey: survey.release.pk),
+    Row("assess-with-faults", "assessments:new", lambda survey: survey.release.pk, then=ask_for_too_much),
+    Row("assessment-queued", "reports:assessment", lambda survey: survey.queued.pk),
+    Row("assessment-running", "reports:assessment", lambda survey: survey.running.pk),
+    Row("assessment-failed", "reports:assessment", lambda survey: survey.failed.pk),
+    Row("assessment-cancelled", "reports:assessment", lambda survey: survey.cancelled.pk),
+    Row("result", "reports:assessment", lambda survey: survey.done.pk, then=unfold_everything),
+    Row("new-report", "reports:new", lambda survey: survey.done.pk),
+    Row("report", "reports:report", lambda survey: survey.report.pk),
+    Row("report-with-new-link", "reports:report", lambda survey: survey.report.pk, then=make_a_link),
+    Row("shared-report", "reports:shared", lambda survey: survey.secret, who="nobody"),
+    Row("revoked-link", "reports:shared", lambda survey: survey.revoked_secret, who="nobody", status=404),
+    Row(
+        "upload-refused",
+        "measurements:upload",
+        lambda survey: survey.measurement.pk,
+        status=400,
+        then=upload_nonsense,
+    ),
+    Row(
+        "user-error",
+        "people:people",
+        lambda survey: survey.collaboration.pk,
+        status=400,
+        then=take_the_last_lead_away,
+    ),
+    Row("not-found", "reports:report", lambda survey: survey.report.pk, who="stranger", status=404),
+    Row("forbidden", "reports:new", lambda survey: survey.done.pk, who="member", status=403),
+]

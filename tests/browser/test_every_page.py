@@ -1,0 +1,182 @@
+"""Each page on a desk and on a phone: readable by all, within its width, within the policy, by keyboard alone."""
+
+import os
+from collections.abc import Iterator, Sequence
+from pathlib import Path
+from typing import Any
+
+import pytest
+from axe_playwright_python.base import AXE_SCRIPT
+from django.test import Client
+from django.urls import URLPattern, URLResolver, get_resolver, reverse
+from playwright.sync_api import Page, expect
+
+from core.measurements.models import Release
+from core.people.models import User
+from core.theories.models import Curve, Theory
+from fits.reports.models import ShareLink
+from tests.browser.conftest import WIDE, Browsing
+from tests.browser.pages import PAGES, Row
+from tests.browser.survey import Survey, survey_of
+
+pytestmark = pytest.mark.django_db(transaction=True)
+
+NARROW = 360
+SCREENSHOTS = os.environ.get("INRADIUS_SCREENSHOTS")
+SERIOUS = {"serious", "critical"}
+# Addresses that show no page of their own to who asks by GET: they take POST alone, or answer with a file, with
+# a part of a page or by leading elsewhere.
+NO_PAGES = {
+    *("account_confirm_login_code", "account_confirm_reauthentication_code", "account_set_password"),
+    *("account_request_reauthentication_code", "assessments:cancel", "assessments:progress"),
+    *("measurements:discard", "measurements:download", "measurements:publish"),
+    *("people:change_role", "people:remove"),
+    *("reports:assessment_chart", "reports:assessment_csv", "reports:assessment_json"),
+    *("reports:report_chart", "reports:report_csv", "reports:report_json"),
+    *("reports:shared_chart", "reports:shared_csv", "reports:shared_json"),
+    *("reports:new_link", "reports:revoke"),
+    *("theories:discard", "theories:download", "theories:submit"),
+}
+
+
+@pytest.fixture
+def survey(release: Release, theory: Theory, curve: Curve, member: User, stranger: User) -> Survey:
+    return survey_of(release, theory, curve, member, stranger)
+
+
+def opened(row: Row, survey: Survey, browsing: Browsing, width: int) -> Page:
+    """The page, drawn."""
+    user = None if row.who == "nobody" else getattr(survey, row.who)
+    browsing.watch.expect(row.status)
+    page = browsing.page(user, width=width)
+    answer = page.goto(row.address(survey))
+    assert answer is not None
+    if row.then is None:
+        assert answer.status == row.status
+    else:
+        row.then(page)
+    page.wait_for_load_state("load")
+    return page
+
+
+def seen_faults(page: Page) -> list[str]:
+    """What axe finds serious or critical."""
+    page.evaluate(AXE_SCRIPT)
+    found: dict[str, Any] = page.evaluate("axe.run({resultTypes: ['violations']})")
+    return [
+        f"{fault['id']} ({fault['impact']}): {fault['help']}: {node['target']}"
+        for fault in found["violations"]
+        if fault["impact"] in SERIOUS
+        for node in fault["nodes"]
+    ]
+
+
+def sideways(page: Page) -> list[str]:
+    """What reaches over the right edge, if the page can be scrolled sideways."""
+    found: list[str] = page.evaluate(
+        """() => document.documentElement.scrollWidth <= window.innerWidth ? [] :
+        [...document.querySelectorAll("body *")]
+          .filter((part) => part.getBoundingClientRect().right > window.innerWidth + 1)
+          .map((part) => `${part.tagName}.${part.getAttribute("class")} ${part.textContent.trim().slice(0, 40)}`)
+          .concat(`${document.documentElement.scrollWidth} px`)"""
+    )
+    return found
+
+
+def picture(page: Page, row: Row, width: int) -> None:
+    """Keep a screenshot, for someone to look at."""
+    if SCREENSHOTS:
+        folder = Path(SCREENSHOTS)
+        folder.mkdir(parents=True, exist_ok=True)
+        page.screenshot(path=folder / f"{row.name}-{width}.png", full_page=True)
+
+
+@pytest.mark.parametrize("width", [WIDE, NARROW])
+@pytest.mark.parametrize("row", PAGES, ids=[row.name for row in PAGES])
+def test_a_page_is_readable_by_all_and_keeps_to_its_width(
+    row: Row, width: int, survey: Survey, browsing: Browsing
+) -> None:
+    page = opened(row, survey, browsing, width)
+    picture(page, row, width)
+    assert sideways(page) == []
+    assert seen_faults(page) == []
+
+
+def routes(patterns: Sequence[URLPattern | URLResolver], space: str = "") -> Iterator[tuple[str, str]]:
+    """Name and path of every named address of the site."""
+    for pattern in patterns:
+        if isinstance(pattern, URLResolver):
+            yield from routes(pattern.url_patterns, f"{pattern.namespace}:" if pattern.namespace else space)
+        elif pattern.name:
+            yield space + pattern.name, str(pattern.pattern)
+
+
+def test_every_address_that_shows_a_page_is_in_the_list() -> None:
+    named = {name for name, _ in routes(get_resolver().url_patterns)}
+    assert named == {row.route for row in PAGES} | NO_PAGES
+
+
+def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None:
+    client = Client()
+    client.force_login(survey.lead)
+    keys = {
+        "assessments": survey.done.pk,
+        "collaborations": survey.collaboration.pk,
+        "curves": survey.curve.pk,
+        "links": ShareLink.objects.latest("pk").pk,
+        "r": survey.secret,
+        "releases": survey.release.pk,
+        "reports": survey.report.pk,
+    }
+    rest = {"membership_pk": survey.member.memberships.get().pk, "name": "curves", "form": "csv"}
+    shown = []
+    for name, path in routes(get_resolver().url_patterns):
+        if name in NO_PAGES:
+            own = {"pk": keys.get(path.split("/")[0]), "token": survey.secret, **rest}
+            address = reverse(name, kwargs={key: own[key] for key in own if f":{key}>" in path})
+            answer = client.get(address)
+            assert answer.status_code in {200, 302, 405}, address
+            if answer.status_code == 200 and b"<html" in answer.getvalue():
+                shown.append(name)
+    assert shown == []
+
+
+def test_what_has_the_keyboard_can_be_seen(survey: Survey, browsing: Browsing) -> None:
+    page = browsing.page(survey.lead)
+    for address in (reverse("overviews:home"), survey.done.get_absolute_url(), survey.draft.get_absolute_url()):
+        page.goto(address)
+        page.keyboard.press("Tab")
+        expect(page.get_by_role("link", name="Skip to the content")).to_be_in_viewport()
+        for _ in range(14):
+            page.keyboard.press("Tab")
+            outline = page.evaluate("getComputedStyle(document.activeElement).outlineStyle")
+            assert outline != "none", page.evaluate("document.activeElement.outerHTML")
+
+
+def test_the_way_past_the_header_leads_to_the_content(survey: Survey, browsing: Browsing) -> None:
+    page = browsing.page(survey.lead)
+    page.goto(reverse("overviews:home"))
+    page.keyboard.press("Tab")
+    page.keyboard.press("Enter")
+    expect(page.locator("#content")).to_be_focused()
+
+
+def test_style_scripts_and_charts_arrive(survey: Survey, browsing: Browsing) -> None:
+    page = browsing.page(survey.lead)
+    page.goto(survey.done.get_absolute_url())
+    expect(page.locator(".js-plotly-plot .main-svg").first).to_be_visible()
+    sheets = "[...document.styleSheets].map((sheet) => sheet.cssRules.length)"
+    assert min(page.evaluate(sheets)) > 0
+    drawn = page.locator("[data-chart].is-drawn").count()
+    assert drawn == page.locator("[data-chart]").count() > 5
+
+
+def test_a_result_can_be_read_without_scripts(survey: Survey, browsing: Browsing) -> None:
+    page = browsing.page(survey.lead, scripts=False)
+    page.goto(f"{survey.done.get_absolute_url()}?level=0.99")
+    expect(page.locator(".finding:visible")).to_contain_text("99 % set")
+    stills = page.locator("img.drawn")
+    assert stills.count() > 5
+    for still in stills.all():
+        expect(still).to_be_visible()
+        assert still.evaluate("still => still.complete && still.naturalWidth > 0")
