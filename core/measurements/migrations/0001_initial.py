@@ -4,52 +4,72 @@ from django.db import migrations, models
 
 
 class Migration(migrations.Migration):
-
     initial = True
 
-    dependencies = [
-    ]
+    dependencies = []
 
     operations = [
         migrations.CreateModel(
-            name='Measurement',
+            name="Measurement",
             fields=[
-                ('id', models.BigAutoField(auto_created=True, primary_key=True, serialize=False, verbose_name='ID')),
-                ('name', models.CharField(max_length=160)),
-                ('about', models.TextField(blank=True)),
-                ('x_name', models.CharField(max_length=80, verbose_name='name of x')),
-                ('x_unit', models.CharField(blank=True, max_length=40, verbose_name='unit of x')),
-                ('y_name', models.CharField(max_length=80, verbose_name='name of y')),
-                ('y_unit', models.CharField(blank=True, max_length=40, verbose_name='unit of y')),
-                ('axis', models.CharField(choices=[('linear', 'linear'), ('log', 'logarithmic')], default='linear', max_length=6)),
-                ('created_at', models.DateTimeField(auto_now_add=True)),
+                (
+                    "id",
+                    models.BigAutoField(
+                        auto_created=True, primary_key=True, serialize=False, verbose_name="ID"
+                    ),
+                ),
+                ("name", models.CharField(max_length=160)),
+                ("about", models.TextField(blank=True)),
+                ("x_name", models.CharField(max_length=80, verbose_name="name of x")),
+                ("x_unit", models.CharField(blank=True, max_length=40, verbose_name="unit of x")),
+                ("y_name", models.CharField(max_length=80, verbose_name="name of y")),
+                ("y_unit", models.CharField(blank=True, max_length=40, verbose_name="unit of y")),
+                (
+                    "axis",
+                    models.CharField(
+                        choices=[("linear", "linear"), ("log", "logarithmic")], default="linear", max_length=6
+                    ),
+                ),
+                ("created_at", models.DateTimeField(auto_now_add=True)),
             ],
             options={
-                'ordering': ('name', 'pk'),
+                "ordering": ("name", "pk"),
             },
         ),
         migrations.CreateModel(
-            name='Release',
+            name="Release",
             fields=[
-                ('id', models.BigAutoField(auto_created=True, primary_key=True, serialize=False, verbose_name='ID')),
-                ('number', models.PositiveIntegerField(blank=True, null=True)),
-                ('state', models.CharField(choices=[('draft', 'draft'), ('published', 'published')], default='draft', max_length=10)),
-                ('note', models.TextField(blank=True)),
-                ('table', models.BinaryField()),
-                ('lines', models.BinaryField()),
-                ('columns', models.JSONField()),
-                ('covariance', models.BinaryField(blank=True, null=True)),
-                ('variances', models.BinaryField(blank=True, null=True)),
-                ('file_name', models.CharField(max_length=200)),
-                ('file_sha256', models.CharField(max_length=64)),
-                ('covariance_name', models.CharField(blank=True, max_length=200)),
-                ('covariance_sha256', models.CharField(blank=True, max_length=64)),
-                ('points', models.PositiveIntegerField()),
-                ('created_at', models.DateTimeField(auto_now_add=True)),
-                ('published_at', models.DateTimeField(blank=True, null=True)),
+                (
+                    "id",
+                    models.BigAutoField(
+                        auto_created=True, primary_key=True, serialize=False, verbose_name="ID"
+                    ),
+                ),
+                ("number", models.PositiveIntegerField(blank=True, null=True)),
+                (
+                    "state",
+                    models.CharField(
+                        choices=[("draft", "draft"), ("published", "published")],
+                        default="draft",
+                        max_length=10,
+                    ),
+                ),
+                ("note", models.TextField(blank=True)),
+                ("table", models.BinaryField()),
+                ("lines", models.BinaryField()),
+                ("columns", models.JSONField()),
+                ("covariance", models.BinaryField(blank=True, null=True)),
+                ("variances", models.BinaryField(blank=True, null=True)),
+                ("file_name", models.CharField(max_length=200)),
+                ("file_sha256", models.CharField(max_length=64)),
+                ("covariance_name", models.CharField(blank=True, max_length=200)),
+                ("covariance_sha256", models.CharField(blank=True, max_length=64)),
+                ("points", models.PositiveIntegerField()),
+                ("created_at", models.DateTimeField(auto_now_add=True)),
+                ("published_at", models.DateTimeField(blank=True, null=True)),
             ],
             options={
-                'ordering': ('measurement', 'number', 'pk'),
+                "ordering": ("measurement", "number", "pk"),
             },
         ),
     ]

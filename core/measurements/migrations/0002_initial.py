@@ -6,50 +6,75 @@ from django.db import migrations, models
 
 
 class Migration(migrations.Migration):
-
     initial = True
 
     dependencies = [
-        ('measurements', '0001_initial'),
-        ('people', '0001_initial'),
+        ("measurements", "0001_initial"),
+        ("people", "0001_initial"),
         migrations.swappable_dependency(settings.AUTH_USER_MODEL),
     ]
 
     operations = [
         migrations.AddField(
-            model_name='measurement',
-            name='collaboration',
-            field=models.ForeignKey(on_delete=django.db.models.deletion.CASCADE, related_name='measurements', to='people.collaboration'),
+            model_name="measurement",
+            name="collaboration",
+            field=models.ForeignKey(
+                on_delete=django.db.models.deletion.CASCADE,
+                related_name="measurements",
+                to="people.collaboration",
+            ),
         ),
         migrations.AddField(
-            model_name='measurement',
-            name='created_by',
-            field=models.ForeignKey(on_delete=django.db.models.deletion.PROTECT, related_name='+', to=settings.AUTH_USER_MODEL),
+            model_name="measurement",
+            name="created_by",
+            field=models.ForeignKey(
+                on_delete=django.db.models.deletion.PROTECT, related_name="+", to=settings.AUTH_USER_MODEL
+            ),
         ),
         migrations.AddField(
-            model_name='release',
-            name='created_by',
-            field=models.ForeignKey(on_delete=django.db.models.deletion.PROTECT, related_name='+', to=settings.AUTH_USER_MODEL),
+            model_name="release",
+            name="created_by",
+            field=models.ForeignKey(
+                on_delete=django.db.models.deletion.PROTECT, related_name="+", to=settings.AUTH_USER_MODEL
+            ),
         ),
         migrations.AddField(
-            model_name='release',
-            name='measurement',
-            field=models.ForeignKey(on_delete=django.db.models.deletion.CASCADE, related_name='releases', to='measurements.measurement'),
+            model_name="release",
+            name="measurement",
+            field=models.ForeignKey(
+                on_delete=django.db.models.deletion.CASCADE,
+                related_name="releases",
+                to="measurements.measurement",
+            ),
         ),
         migrations.AddConstraint(
-            model_name='measurement',
-            constraint=models.UniqueConstraint(fields=('collaboration', 'name'), name='measurement_name'),
+            model_name="measurement",
+            constraint=models.UniqueConstraint(fields=("collaboration", "name"), name="measurement_name"),
         ),
         migrations.AddConstraint(
-            model_name='release',
-            constraint=models.UniqueConstraint(fields=('measurement', 'number'), name='release_number'),
+            model_name="release",
+            constraint=models.UniqueConstraint(fields=("measurement", "number"), name="release_number"),
         ),
         migrations.AddConstraint(
-            model_name='release',
-            constraint=models.CheckConstraint(condition=models.Q(models.Q(('number', None), ('state', 'draft')), models.Q(('number__gte', 1), ('state', 'published')), _connector='OR'), name='published_releases_are_numbered'),
+            model_name="release",
+            constraint=models.CheckConstraint(
+                condition=models.Q(
+                    models.Q(("number", None), ("state", "draft")),
+                    models.Q(("number__gte", 1), ("state", "published")),
+                    _connector="OR",
+                ),
+                name="published_releases_are_numbered",
+            ),
         ),
         migrations.AddConstraint(
-            model_name='release',
-            constraint=models.CheckConstraint(condition=models.Q(models.Q(('covariance', None), ('variances', None)), models.Q(('covariance__isnull', False), ('variances__isnull', False)), _connector='OR'), name='variances_are_those_of_the_covariance'),
+            model_name="release",
+            constraint=models.CheckConstraint(
+                condition=models.Q(
+                    models.Q(("covariance", None), ("variances", None)),
+                    models.Q(("covariance__isnull", False), ("variances__isnull", False)),
+                    _connector="OR",
+                ),
+                name="variances_are_those_of_the_covariance",
+            ),
         ),
     ]

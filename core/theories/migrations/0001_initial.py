@@ -6,66 +6,126 @@ from django.db import migrations, models
 
 
 class Migration(migrations.Migration):
-
     initial = True
 
     dependencies = [
-        ('measurements', '0001_initial'),
-        ('people', '0001_initial'),
+        ("measurements", "0001_initial"),
+        ("people", "0001_initial"),
         migrations.swappable_dependency(settings.AUTH_USER_MODEL),
     ]
 
     operations = [
         migrations.CreateModel(
-            name='Theory',
+            name="Theory",
             fields=[
-                ('id', models.BigAutoField(auto_created=True, primary_key=True, serialize=False, verbose_name='ID')),
-                ('name', models.CharField(max_length=120)),
-                ('proposed_by', models.CharField(blank=True, max_length=160, verbose_name='proposed by')),
-                ('description', models.TextField(blank=True)),
-                ('reference', models.CharField(blank=True, max_length=300)),
-                ('created_at', models.DateTimeField(auto_now_add=True)),
-                ('collaboration', models.ForeignKey(on_delete=django.db.models.deletion.CASCADE, related_name='theories', to='people.collaboration')),
-                ('submitted_by', models.ForeignKey(on_delete=django.db.models.deletion.PROTECT, related_name='theories', to=settings.AUTH_USER_MODEL)),
+                (
+                    "id",
+                    models.BigAutoField(
+                        auto_created=True, primary_key=True, serialize=False, verbose_name="ID"
+                    ),
+                ),
+                ("name", models.CharField(max_length=120)),
+                ("proposed_by", models.CharField(blank=True, max_length=160, verbose_name="proposed by")),
+                ("description", models.TextField(blank=True)),
+                ("reference", models.CharField(blank=True, max_length=300)),
+                ("created_at", models.DateTimeField(auto_now_add=True)),
+                (
+                    "collaboration",
+                    models.ForeignKey(
+                        on_delete=django.db.models.deletion.CASCADE,
+                        related_name="theories",
+                        to="people.collaboration",
+                    ),
+                ),
+                (
+                    "submitted_by",
+                    models.ForeignKey(
+                        on_delete=django.db.models.deletion.PROTECT,
+                        related_name="theories",
+                        to=settings.AUTH_USER_MODEL,
+                    ),
+                ),
             ],
             options={
-                'verbose_name_plural': 'theories',
-                'ordering': ('name', 'pk'),
+                "verbose_name_plural": "theories",
+                "ordering": ("name", "pk"),
             },
         ),
         migrations.CreateModel(
-            name='Curve',
+            name="Curve",
             fields=[
-                ('id', models.BigAutoField(auto_created=True, primary_key=True, serialize=False, verbose_name='ID')),
-                ('version', models.PositiveIntegerField(blank=True, null=True)),
-                ('state', models.CharField(choices=[('draft', 'draft'), ('submitted', 'submitted')], default='draft', max_length=10)),
-                ('note', models.TextField(blank=True)),
-                ('table', models.BinaryField()),
-                ('file_name', models.CharField(max_length=200)),
-                ('file_sha256', models.CharField(max_length=64)),
-                ('points', models.PositiveIntegerField()),
-                ('x_min', models.FloatField()),
-                ('x_max', models.FloatField()),
-                ('created_at', models.DateTimeField(auto_now_add=True)),
-                ('submitted_at', models.DateTimeField(blank=True, null=True)),
-                ('measurement', models.ForeignKey(on_delete=django.db.models.deletion.CASCADE, related_name='curves', to='measurements.measurement')),
-                ('submitted_by', models.ForeignKey(on_delete=django.db.models.deletion.PROTECT, related_name='curves', to=settings.AUTH_USER_MODEL)),
-                ('theory', models.ForeignKey(on_delete=django.db.models.deletion.CASCADE, related_name='curves', to='theories.theory')),
+                (
+                    "id",
+                    models.BigAutoField(
+                        auto_created=True, primary_key=True, serialize=False, verbose_name="ID"
+                    ),
+                ),
+                ("version", models.PositiveIntegerField(blank=True, null=True)),
+                (
+                    "state",
+                    models.CharField(
+                        choices=[("draft", "draft"), ("submitted", "submitted")],
+                        default="draft",
+                        max_length=10,
+                    ),
+                ),
+                ("note", models.TextField(blank=True)),
+                ("table", models.BinaryField()),
+                ("file_name", models.CharField(max_length=200)),
+                ("file_sha256", models.CharField(max_length=64)),
+                ("points", models.PositiveIntegerField()),
+                ("x_min", models.FloatField()),
+                ("x_max", models.FloatField()),
+                ("created_at", models.DateTimeField(auto_now_add=True)),
+                ("submitted_at", models.DateTimeField(blank=True, null=True)),
+                (
+                    "measurement",
+                    models.ForeignKey(
+                        on_delete=django.db.models.deletion.CASCADE,
+                        related_name="curves",
+                        to="measurements.measurement",
+                    ),
+                ),
+                (
+                    "submitted_by",
+                    models.ForeignKey(
+                        on_delete=django.db.models.deletion.PROTECT,
+                        related_name="curves",
+                        to=settings.AUTH_USER_MODEL,
+                    ),
+                ),
+                (
+                    "theory",
+                    models.ForeignKey(
+                        on_delete=django.db.models.deletion.CASCADE,
+                        related_name="curves",
+                        to="theories.theory",
+                    ),
+                ),
             ],
             options={
-                'ordering': ('theory', 'measurement', 'version', 'pk'),
+                "ordering": ("theory", "measurement", "version", "pk"),
             },
         ),
         migrations.AddConstraint(
-            model_name='theory',
-            constraint=models.UniqueConstraint(fields=('collaboration', 'name'), name='theory_name'),
+            model_name="theory",
+            constraint=models.UniqueConstraint(fields=("collaboration", "name"), name="theory_name"),
         ),
         migrations.AddConstraint(
-            model_name='curve',
-            constraint=models.UniqueConstraint(fields=('theory', 'measurement', 'version'), name='curve_version'),
+            model_name="curve",
+            constraint=models.UniqueConstraint(
+                fields=("theory", "measurement", "version"), name="curve_version"
+            ),
         ),
         migrations.AddConstraint(
-            model_name='curve',
-            constraint=models.CheckConstraint(condition=models.Q(models.Q(('state', 'draft'), ('version', None)), models.Q(('state', 'submitted'), ('version__gte', 1)), _connector='OR'), name='submitted_curves_have_versions'),
+            model_name="curve",
+            constraint=models.CheckConstraint(
+                condition=models.Q(
+                    models.Q(("state", "draft"), ("version", None)),
+                    models.Q(("state", "submitted"), ("version__gte", 1)),
+                    _connector="OR",
+                ),
+                name="submitted_curves_have_versions",
+            ),
         ),
     ]

@@ -4,52 +4,88 @@ from django.db import migrations, models
 
 
 class Migration(migrations.Migration):
-
     initial = True
 
-    dependencies = [
-    ]
+    dependencies = []
 
     operations = [
         migrations.CreateModel(
-            name='Assessment',
+            name="Assessment",
             fields=[
-                ('id', models.BigAutoField(auto_created=True, primary_key=True, serialize=False, verbose_name='ID')),
-                ('settings', models.JSONField()),
-                ('seed', models.PositiveBigIntegerField()),
-                ('fingerprint', models.CharField(max_length=64)),
-                ('created_at', models.DateTimeField(auto_now_add=True)),
-                ('status', models.CharField(choices=[('queued', 'queued'), ('running', 'running'), ('done', 'done'), ('failed', 'failed'), ('cancelled', 'cancelled')], default='queued', max_length=10)),
-                ('stage', models.CharField(choices=[('waiting', 'waiting for a worker'), ('reading', 'reading the release and the curves'), ('fitting', 'fitting'), ('calibrating', 'calibrating the radii'), ('judging', 'judging each curve'), ('saving', 'saving'), ('ended', 'ended')], default='waiting', max_length=12)),
-                ('progress', models.FloatField(default=0.0)),
-                ('attempt', models.PositiveSmallIntegerField(default=0)),
-                ('heartbeat_at', models.DateTimeField(blank=True, null=True)),
-                ('cancel_requested', models.BooleanField(default=False)),
-                ('started_at', models.DateTimeField(blank=True, null=True)),
-                ('ended_at', models.DateTimeField(blank=True, null=True)),
-                ('failure_code', models.CharField(blank=True, max_length=60)),
-                ('failure', models.TextField(blank=True)),
-                ('engine_version', models.CharField(blank=True, max_length=20)),
-                ('result', models.JSONField(blank=True, null=True)),
-                ('detail', models.JSONField(blank=True, null=True)),
+                (
+                    "id",
+                    models.BigAutoField(
+                        auto_created=True, primary_key=True, serialize=False, verbose_name="ID"
+                    ),
+                ),
+                ("settings", models.JSONField()),
+                ("seed", models.PositiveBigIntegerField()),
+                ("fingerprint", models.CharField(max_length=64)),
+                ("created_at", models.DateTimeField(auto_now_add=True)),
+                (
+                    "status",
+                    models.CharField(
+                        choices=[
+                            ("queued", "queued"),
+                            ("running", "running"),
+                            ("done", "done"),
+                            ("failed", "failed"),
+                            ("cancelled", "cancelled"),
+                        ],
+                        default="queued",
+                        max_length=10,
+                    ),
+                ),
+                (
+                    "stage",
+                    models.CharField(
+                        choices=[
+                            ("waiting", "waiting for a worker"),
+                            ("reading", "reading the release and the curves"),
+                            ("fitting", "fitting"),
+                            ("calibrating", "calibrating the radii"),
+                            ("judging", "judging each curve"),
+                            ("saving", "saving"),
+                            ("ended", "ended"),
+                        ],
+                        default="waiting",
+                        max_length=12,
+                    ),
+                ),
+                ("progress", models.FloatField(default=0.0)),
+                ("attempt", models.PositiveSmallIntegerField(default=0)),
+                ("heartbeat_at", models.DateTimeField(blank=True, null=True)),
+                ("cancel_requested", models.BooleanField(default=False)),
+                ("started_at", models.DateTimeField(blank=True, null=True)),
+                ("ended_at", models.DateTimeField(blank=True, null=True)),
+                ("failure_code", models.CharField(blank=True, max_length=60)),
+                ("failure", models.TextField(blank=True)),
+                ("engine_version", models.CharField(blank=True, max_length=20)),
+                ("result", models.JSONField(blank=True, null=True)),
+                ("detail", models.JSONField(blank=True, null=True)),
             ],
             options={
-                'ordering': ('-created_at', '-pk'),
+                "ordering": ("-created_at", "-pk"),
             },
         ),
         migrations.CreateModel(
-            name='Verdict',
+            name="Verdict",
             fields=[
-                ('id', models.BigAutoField(auto_created=True, primary_key=True, serialize=False, verbose_name='ID')),
-                ('rank', models.PositiveIntegerField()),
-                ('distance', models.FloatField()),
-                ('entry_level', models.FloatField()),
-                ('p_value', models.FloatField()),
-                ('scale_p_value', models.FloatField()),
-                ('inside', models.JSONField()),
+                (
+                    "id",
+                    models.BigAutoField(
+                        auto_created=True, primary_key=True, serialize=False, verbose_name="ID"
+                    ),
+                ),
+                ("rank", models.PositiveIntegerField()),
+                ("distance", models.FloatField()),
+                ("entry_level", models.FloatField()),
+                ("p_value", models.FloatField()),
+                ("scale_p_value", models.FloatField()),
+                ("inside", models.JSONField()),
             ],
             options={
-                'ordering': ('assessment', 'rank'),
+                "ordering": ("assessment", "rank"),
             },
         ),
     ]

@@ -6,56 +6,73 @@ from django.db import migrations, models
 
 
 class Migration(migrations.Migration):
-
     initial = True
 
     dependencies = [
-        ('assessments', '0001_initial'),
-        ('measurements', '0001_initial'),
-        ('theories', '0001_initial'),
+        ("assessments", "0001_initial"),
+        ("measurements", "0001_initial"),
+        ("theories", "0001_initial"),
         migrations.swappable_dependency(settings.AUTH_USER_MODEL),
     ]
 
     operations = [
         migrations.AddField(
-            model_name='assessment',
-            name='curves',
-            field=models.ManyToManyField(related_name='assessments', to='theories.curve'),
+            model_name="assessment",
+            name="curves",
+            field=models.ManyToManyField(related_name="assessments", to="theories.curve"),
         ),
         migrations.AddField(
-            model_name='assessment',
-            name='release',
-            field=models.ForeignKey(on_delete=django.db.models.deletion.CASCADE, related_name='assessments', to='measurements.release'),
+            model_name="assessment",
+            name="release",
+            field=models.ForeignKey(
+                on_delete=django.db.models.deletion.CASCADE,
+                related_name="assessments",
+                to="measurements.release",
+            ),
         ),
         migrations.AddField(
-            model_name='assessment',
-            name='requested_by',
-            field=models.ForeignKey(on_delete=django.db.models.deletion.PROTECT, related_name='assessments', to=settings.AUTH_USER_MODEL),
+            model_name="assessment",
+            name="requested_by",
+            field=models.ForeignKey(
+                on_delete=django.db.models.deletion.PROTECT,
+                related_name="assessments",
+                to=settings.AUTH_USER_MODEL,
+            ),
         ),
         migrations.AddField(
-            model_name='verdict',
-            name='assessment',
-            field=models.ForeignKey(on_delete=django.db.models.deletion.CASCADE, related_name='verdicts', to='assessments.assessment'),
+            model_name="verdict",
+            name="assessment",
+            field=models.ForeignKey(
+                on_delete=django.db.models.deletion.CASCADE,
+                related_name="verdicts",
+                to="assessments.assessment",
+            ),
         ),
         migrations.AddField(
-            model_name='verdict',
-            name='curve',
-            field=models.ForeignKey(on_delete=django.db.models.deletion.CASCADE, related_name='verdicts', to='theories.curve'),
+            model_name="verdict",
+            name="curve",
+            field=models.ForeignKey(
+                on_delete=django.db.models.deletion.CASCADE, related_name="verdicts", to="theories.curve"
+            ),
         ),
         migrations.AddIndex(
-            model_name='assessment',
-            index=models.Index(fields=['fingerprint'], name='assessment_fingerprint'),
+            model_name="assessment",
+            index=models.Index(fields=["fingerprint"], name="assessment_fingerprint"),
         ),
         migrations.AddIndex(
-            model_name='assessment',
-            index=models.Index(fields=['status', 'heartbeat_at'], name='assessment_liveness'),
+            model_name="assessment",
+            index=models.Index(fields=["status", "heartbeat_at"], name="assessment_liveness"),
         ),
         migrations.AddConstraint(
-            model_name='assessment',
-            constraint=models.UniqueConstraint(condition=models.Q(('status__in', ['queued', 'running', 'done'])), fields=('fingerprint',), name='computed_once'),
+            model_name="assessment",
+            constraint=models.UniqueConstraint(
+                condition=models.Q(("status__in", ["queued", "running", "done"])),
+                fields=("fingerprint",),
+                name="computed_once",
+            ),
         ),
         migrations.AddConstraint(
-            model_name='verdict',
-            constraint=models.UniqueConstraint(fields=('assessment', 'curve'), name='one_verdict_each'),
+            model_name="verdict",
+            constraint=models.UniqueConstraint(fields=("assessment", "curve"), name="one_verdict_each"),
         ),
     ]
