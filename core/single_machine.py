@@ -28,7 +28,7 @@ def web_server(port: int) -> list[str]:
     """The command of the web server, which listens on this machine only."""
     return [
         sys.executable, "-m", "gunicorn", "core.wsgi", "--bind", f"127.0.0.1:{port}",
-        "--workers", "2", "--threads", "4", "--no-control-socket",
+        "--workers", "2", "--threads", "4", "--timeout", "120", "--no-control-socket",
     ]
 # fmt: on
 
