@@ -50,10 +50,17 @@ def test_pages_before_signing_in_open(name: str, db: None, client: Client) -> No
     assert client.get(reverse(name)).status_code == 200
 
 
-@pytest.mark.parametrize("name", ["account_change_password", "account_logout", "account_email"])
+@pytest.mark.parametrize("name", ["account_change_password", "account_logout"])
 def test_pages_of_an_account_open(name: str, lead: User, client: Client) -> None:
     client.force_login(lead)
     assert client.get(reverse(name)).status_code == 200
+
+
+@pytest.mark.parametrize("method", ["get", "post"])
+def test_an_e_mail_address_is_not_changed_by_its_owner(method: str, lead: User, client: Client) -> None:
+    client.force_login(lead)
+    answer = client.generic(method, reverse("account_email"))
+    assert (answer.status_code, answer["Location"]) == (302, reverse("account_change_password"))
 
 
 def test_a_page_that_is_not_there_says_so(db: None, client: Client) -> None:
