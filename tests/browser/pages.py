@@ -3,7 +3,10 @@
 from collections.abc import Callable
 from dataclasses import dataclass
 
+from allauth.account.forms import default_token_generator
+from allauth.account.utils import user_pk_to_url_str
 from django.urls import reverse
+from playwright.sync_api import FilePayload
 from playwright.sync_api import Page as BrowserPage
 
 from tests.browser.survey import Survey
@@ -18,13 +21,17 @@ class Row:
     key: Callable[[Survey], object] | None = None
     who: str = "lead"
     status: int = 200
-    query: str = ""
     then: Callable[[BrowserPage], None] | None = None
 
     def address(self, survey: Survey) -> str:
         """Where it is."""
-        arguments = [] if self.key is None else [self.key(survey)]
-        return reverse(self.route, args=arguments) + self.query
+        key = () if self.key is None else self.key(survey)
+        return reverse(self.route, args=key if isinstance(key, tuple) else (key,))
+
+
+def key_of_a_new_password(survey: Survey) -> tuple[str, str]:
+    """What the e-mail that sets a password carries."""
+    return user_pk_to_url_str(survey.member), default_token_generator.make_token(survey.member)
 
 
 def ask_for_too_much(page: BrowserPage) -> None:
@@ -41,8 +48,8 @@ def take_the_last_lead_away(page: BrowserPage) -> None:
 def upload_nonsense(page: BrowserPage) -> None:
     """Upload a table with a fault in it."""
     table = "x,y,error\n" + "".join(f"{x},{x},0.1\n" for x in range(9)) + "9,=1+1,0.1\n"
-    file = {"name": "merrow.csv", "mimeType": "text/csv", "buffer": table.encode()}
-    page.get_by_label("Data table").set_input_files(files=[file])  # type: ignore[list-item]
+    file: FilePayload = {"name": "merrow.csv", "mimeType": "text/csv", "buffer": table.encode()}
+    page.get_by_label("Data table").set_input_files(files=[file])
     page.get_by_role("button", name="Read it").click()
 
 
@@ -63,6 +70,7 @@ PAGES = [
     Row("sign-up-closed", "account_signup", who="nobody"),
     Row("password-reset", "account_reset_password", who="nobody"),
     Row("password-reset-sent", "account_reset_password_done", who="nobody"),
+    Row("password-reset-form", "account_reset_password_from_key", key_of_a_new_password, who="nobody"),
     Row("password-reset-done", "account_reset_password_from_key_done", who="nobody"),
     Row("inactive", "account_inactive", who="nobody"),
     Row("sign-out", "account_logout"),

@@ -59,7 +59,9 @@ class Survey:
     revoked_secret: str
 
 
-def curve_of(theory: Theory, measurement: Measurement, by: User, *, stretch: float, version: int | None) -> Curve:
+def curve_of(
+    theory: Theory, measurement: Measurement, by: User, *, stretch: float, version: int | None
+) -> Curve:
     """A curve whose peaks stand at `stretch` times the true places; without a version a draft."""
     x = np.linspace(0.4, 4.6, 200)
     content = npy(np.column_stack([x, power(x / stretch)]))

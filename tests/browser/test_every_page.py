@@ -28,7 +28,8 @@ SERIOUS = {"serious", "critical"}
 # a part of a page or by leading elsewhere.
 NO_PAGES = {
     *("account_confirm_login_code", "account_confirm_reauthentication_code", "account_set_password"),
-    *("account_request_reauthentication_code", "assessments:cancel", "assessments:progress"),
+    *("account_request_reauthentication_code", "account_email", "account_email_verification_sent"),
+    *("account_confirm_email", "assessments:cancel", "assessments:progress"),
     *("measurements:discard", "measurements:download", "measurements:publish"),
     *("people:change_role", "people:remove"),
     *("reports:assessment_chart", "reports:assessment_csv", "reports:assessment_json"),
@@ -128,12 +129,13 @@ def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None
         "releases": survey.release.pk,
         "reports": survey.report.pk,
     }
-    rest = {"membership_pk": survey.member.memberships.get().pk, "name": "curves", "form": "csv"}
+    person = survey.member.memberships.get().pk
+    rest = {"membership_pk": person, "name": "curves", "form": "csv", "key": "none"}
     shown = []
     for name, path in routes(get_resolver().url_patterns):
         if name in NO_PAGES:
             own = {"pk": keys.get(path.split("/")[0]), "token": survey.secret, **rest}
-            address = reverse(name, kwargs={key: own[key] for key in own if f":{key}>" in path})
+            address = reverse(name, kwargs={key: own[key] for key in own if f"{key}>" in path})
             answer = client.get(address)
             assert answer.status_code in {200, 302, 405}, address
             if answer.status_code == 200 and b"<html" in answer.getvalue():
@@ -143,7 +145,11 @@ def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None
 
 def test_what_has_the_keyboard_can_be_seen(survey: Survey, browsing: Browsing) -> None:
     page = browsing.page(survey.lead)
-    for address in (reverse("overviews:home"), survey.done.get_absolute_url(), survey.draft.get_absolute_url()):
+    for address in (
+        reverse("overviews:home"),
+        survey.done.get_absolute_url(),
+        survey.draft.get_absolute_url(),
+    ):
         page.goto(address)
         page.keyboard.press("Tab")
         expect(page.get_by_role("link", name="Skip to the content")).to_be_in_viewport()

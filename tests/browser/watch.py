@@ -8,7 +8,7 @@ from playwright.sync_api import BrowserContext, ConsoleMessage, Request, Respons
 # Chromium reports a violation on the console as well; the event names directive and culprit.
 REPORT_VIOLATIONS = """
 document.addEventListener("securitypolicyviolation", (event) => console.error(
-  `content security policy: ${event.violatedDirective} forbids ${event.blockedURI} (${event.sourceFile}:${event.lineNumber})`
+  `content security policy: ${event.violatedDirective} forbids ${event.blockedURI} in ${event.sourceFile}`
 ));
 """
 # A page that is left, or that reloads itself, gives up what it was fetching.
