@@ -7,7 +7,7 @@ import subprocess
 import urllib.error
 import urllib.request
 import zipfile
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -171,7 +171,7 @@ def formula() -> bytes:
     return GOOD + b'11,"=HYPERLINK(""http://elsewhere.example"")",0.1\n'
 
 
-TABLES = {
+TABLES: dict[str, tuple[Callable[[], bytes], list[str]]] = {
     "binary": (lambda: bytes(range(256)) * 1000, ["is not text", "Line1"]),
     "zip bomb": (zip_bomb, ["is not text", "Line1"]),
     "one line of 45 MB": (lambda: b"1," * (45 * MEGABYTE // 2), ["a line may have", "Line1"]),
