@@ -137,3 +137,8 @@ def statistic_at(distance: float, shrunk: Shrunk) -> float:
 def is_inside(distance: float, radius_squared: float) -> bool:
     """Whether a curve at this distance is in a ball; an empty ball (s² ≤ 0) holds nothing."""
     return radius_squared > 0.0 and distance**2 <= radius_squared
+
+
+def is_above(p_value: float, level: float) -> bool:
+    """p > 1 − α, with α as written: 1 − 0.95 is not 0.05 in floating point."""
+    return p_value > round(1.0 - level, 12)
