@@ -1,6 +1,7 @@
 """A release's row turned back into its table and into data for the engine."""
 
 from collections.abc import Sequence
+from typing import Any
 
 import numpy as np
 
@@ -8,7 +9,7 @@ from core.measurements.models import Release
 from core.measurements.reading.release import release_data
 from core.measurements.reading.stored import from_bytes
 from core.measurements.reading.table import Table
-from fits.engine.data import Axis, Data, FloatArray
+from fits.engine.data import Axis, Data, ErrorSource, FloatArray
 
 
 def table_of(release: Release) -> Table:
@@ -33,24 +34,55 @@ def covariance_of(release: Release) -> FloatArray | None:
     return from_bytes(release.covariance)
 
 
-def data_of(release: Release, roles: Sequence[str] | None = None) -> Data:
-    """The release's points, all rules checked; under other roles than the stored ones when given."""
-    return release_data(
-        table_of(release),
+def windows_of(release: Release) -> FloatArray | None:
+    """The grid and weights, shape (n + 1, g), fetched only where there are any."""
+    if not release.has_windows or release.windows is None:
+        return None
+    return from_bytes(release.windows)
+
+
+def data_of(
+    release: Release,
+    roles: Sequence[str] | None = None,
+    *,
+    source: ErrorSource | None = None,
+    calibration: float | None = None,
+    table: Table | None = None,
+) -> Data:
+    """The release's points, all rules checked; under other roles, or another word on the errors, than the stored ones
+    when given. `table` spares reading it again."""
+    return _read_as(
+        release,
+        table_of(release) if table is None else table,
         roles_of(release) if roles is None else roles,
-        axis=Axis(release.measurement.axis),
+        source=ErrorSource(release.error_source) if source is None else source,
+        calibration=release.calibration if calibration is None else calibration,
         covariance=covariance_of(release),
         covariance_name=release.covariance_name,
     )
 
 
-def data_to_draw(release: Release) -> Data:
-    """The points with their standard errors; a covariance was checked when it came and is not loaded for a picture."""
-    if release.variances is None:
-        return data_of(release)
-    return release_data(
-        table_of(release),
+def data_to_draw(release: Release, table: Table | None = None) -> Data:
+    """The points for a picture. A covariance was checked when it came; where its diagonal is all that is drawn, that
+    stands in for it as errors."""
+    if release.variances is None or release.error_source != Release.ErrorSource.GIVEN:
+        return data_of(release, table=table)
+    return _read_as(
+        release,
+        table_of(release) if table is None else table,
         roles_of(release),
-        axis=Axis(release.measurement.axis),
+        source=ErrorSource.GIVEN,
+        calibration=release.calibration,
         standard_errors=np.sqrt(from_bytes(release.variances)),
+    )
+
+
+def _read_as(release: Release, table: Table, roles: Sequence[str], **said: Any) -> Data:
+    return release_data(
+        table,
+        roles,
+        axis=Axis(release.measurement.axis),
+        windows=windows_of(release),
+        windows_name=release.windows_name,
+        **said,
     )
