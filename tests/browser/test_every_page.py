@@ -186,3 +186,17 @@ def test_a_result_can_be_read_without_scripts(survey: Survey, browsing: Browsing
     for still in stills.all():
         expect(still).to_be_visible()
         assert still.evaluate("still => still.complete && still.naturalWidth > 0")
+
+
+def test_on_paper_every_chart_is_its_still_drawing(survey: Survey, browsing: Browsing) -> None:
+    page = browsing.page(survey.lead)
+    page.goto(survey.done.get_absolute_url())
+    expect(page.locator(".js-plotly-plot .main-svg").first).to_be_visible()
+    page.emulate_media(media="print")
+    page.pdf()
+    expect(page.locator(".js-plotly-plot:visible")).to_have_count(0)
+    stills = page.locator("img.drawn")
+    assert stills.count() > 5
+    for still in stills.all():
+        expect(still).to_be_visible()
+        assert still.evaluate("still => still.complete && still.naturalWidth > 0")

@@ -31,9 +31,15 @@ def ball(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
     ]
     layers.append(Points(label="fit", colour=palette.INK, x=(0.0,), y=(0.0,), size=4.0))
     labels = _Labels(edge, list(places.values()))
-    for index, verdict in enumerate(snapshot.curves):
-        a, b = places[verdict["name"]]
-        layers += _curve(snapshot, verdict, palette.curve_colour(index), a, b, labels)
+    ranked = list(enumerate(snapshot.curves))
+    # Names at the edge have the fewest sides to choose from.
+    ranked.sort(key=lambda pair: not labels.is_far(*places[pair[1]["name"]]))
+    drawn = {
+        index: _curve(snapshot, verdict, palette.curve_colour(index), *places[verdict["name"]], labels)
+        for index, verdict in ranked
+    }
+    for index in sorted(drawn):
+        layers += drawn[index]
     return Figure(
         name="ball",
         title="The ball seen from above",
@@ -65,7 +71,7 @@ def _curve(
 ) -> list[Layer]:
     name, inside = verdict["name"], snapshot.inside(verdict)
     # At the edge names are written towards the middle, so that they stay in the chart.
-    is_far = max(abs(a), abs(b)) > labels.edge
+    is_far = labels.is_far(a, b)
     shrink = 0.96 * labels.edge / max(abs(a), abs(b)) if is_far else 1.0
     words = f"{name}, at {numbers.significant(verdict['distance'])}" if is_far else name
     at = (shrink * a, shrink * b)
@@ -96,6 +102,10 @@ class _Labels:
     def __post_init__(self) -> None:
         dot = 0.025 * self.edge
         self.taken = [(x - dot, y - dot, x + dot, y + dot) for x, y in [*self.points, (0.0, 0.0)]]
+
+    def is_far(self, x: float, y: float) -> bool:
+        """Whether a point lies outside the chart."""
+        return max(abs(x), abs(y)) > self.edge
 
     def place_for(self, words: str, x: float, y: float) -> Place:
         """The first side on which the words stay inside the chart and clear of what is written already."""
