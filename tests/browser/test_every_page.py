@@ -89,6 +89,7 @@ def picture(page: Page, row: Row, width: int) -> None:
     if SCREENSHOTS:
         folder = Path(SCREENSHOTS)
         folder.mkdir(parents=True, exist_ok=True)
+        page.evaluate("window.scrollTo(0, 0)")
         page.screenshot(path=folder / f"{row.name}-{width}.png", full_page=True)
 
 

@@ -10,8 +10,8 @@ from fits.reports.snapshot import Document, Snapshot
 
 FAR = 2.0  # in radii of the largest ring: what stands further out is named at the edge
 MARGIN = 1.15
-LETTER = 0.0105  # width of a letter and height of a line, as parts of the width of the chart
-LETTERS_HIGH = 2.6
+LETTER = 0.019  # width of a letter as a part of the width of the chart, on a narrow screen
+LETTERS_HIGH = 2.5
 
 
 def ball(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
@@ -109,7 +109,7 @@ class _Labels:
 
     def place_for(self, words: str, x: float, y: float) -> Place:
         """The first side on which the words stay inside the chart and clear of what is written already."""
-        width = LETTER * 2.0 * self.edge * len(words) * 1.6
+        width = LETTER * 2.0 * self.edge * len(words)
         height = LETTER * 2.0 * self.edge * LETTERS_HIGH
         gap = 0.03 * self.edge
         boxes = {
