@@ -90,7 +90,7 @@ class Release(models.Model):
     error_source = models.CharField(max_length=8, choices=ErrorSource.choices, default=ErrorSource.GIVEN)
     # The fraction to which the scale of y is known, 0 where it is exact.
     calibration = models.FloatField(default=0.0)
-    # How the points see the curve, as one .npy of shape (points + 1, grid): the grid of x, then a row of weights a point.
+    # How the points see the curve, as one .npy of shape (points + 1, grid): the grid of x, then weights point by point.
     windows = models.BinaryField(null=True, blank=True)
     windows_name = models.CharField(max_length=200, blank=True)
     windows_sha256 = models.CharField(max_length=64, blank=True)
@@ -119,7 +119,8 @@ class Release(models.Model):
                 name="variances_are_those_of_the_covariance",
             ),
             models.CheckConstraint(
-                condition=models.Q(calibration__gte=0.0, calibration__lt=1.0), name="calibration_is_a_fraction"
+                condition=models.Q(calibration__gte=0.0, calibration__lt=1.0),
+                name="calibration_is_a_fraction",
             ),
         )
 

@@ -68,7 +68,9 @@ def refuse_contradiction(said: SaidOfErrors, roles: Sequence[str], *, has_covari
     if said is SaidOfErrors.ONE_SIZE and (has_column or has_covariance):
         what = "the covariance" if has_covariance else "the error column"
         reason = f"one size at all points leaves {what} without use"
-        remedy = f"Say that {what} is relative, or {'leave it out' if has_covariance else 'mark it as not used'}"
+        remedy = (
+            f"Say that {what} is relative, or {'leave it out' if has_covariance else 'mark it as not used'}"
+        )
         raise UserError("errors-unused", reason, remedy)
     if said is SaidOfErrors.RELATIVE and not has_column and not has_covariance:
         remedy = "Mark the column of relative errors, or say that they have one size"

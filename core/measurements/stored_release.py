@@ -9,7 +9,10 @@ from core.measurements.models import Release
 from core.measurements.reading.release import release_data
 from core.measurements.reading.stored import from_bytes
 from core.measurements.reading.table import Table
+from core.measurements.said_of_errors import SaidOfErrors, what_is_said
+from fits.engine.basis import Interval
 from fits.engine.data import Axis, Data, ErrorSource, FloatArray
+from fits.engine.observation import interval_of
 
 
 def table_of(release: Release) -> Table:
@@ -25,6 +28,12 @@ def table_of(release: Release) -> Table:
 def roles_of(release: Release) -> list[str]:
     """What each column is."""
     return [column["role"] for column in release.columns]
+
+
+def said_of(release: Release) -> SaidOfErrors:
+    """What is said of its errors, in the words of the page."""
+    source, has_covariance = ErrorSource(release.error_source), release.variances is not None
+    return what_is_said(source, roles_of(release), has_covariance=has_covariance)
 
 
 def covariance_of(release: Release) -> FloatArray | None:
@@ -75,6 +84,14 @@ def data_to_draw(release: Release, table: Table | None = None) -> Data:
         calibration=release.calibration,
         standard_errors=np.sqrt(from_bytes(release.variances)),
     )
+
+
+def interval_of_release(release: Release) -> Interval:
+    """The stretch of x that the points look at. No error has a say in it, so that a covariance stays where it is."""
+    table = table_of(release)
+    ones = np.ones(len(table.values))
+    data = _read_as(release, table, roles_of(release), source=ErrorSource.GIVEN, standard_errors=ones)
+    return interval_of(data)
 
 
 def _read_as(release: Release, table: Table, roles: Sequence[str], **said: Any) -> Data:

@@ -39,7 +39,9 @@ def validated_windows(windows: Windows, n: int) -> Windows:
     if steps.size:
         index = int(steps[0]) + 1
         reason = f"the grid does not increase: x = {grid[index]:g} follows {grid[index - 1]:g}"
-        raise InputRefused("windows-grid", "windows:grid", reason, "Sort the grid and give each x once", index)
+        raise InputRefused(
+            "windows-grid", "windows:grid", reason, "Sort the grid and give each x once", index
+        )
     blind = np.flatnonzero(~weights.any(axis=1))
     if blind.size:
         index = int(blind[0])

@@ -5,40 +5,51 @@ from django.db import migrations, models
 
 
 class Migration(migrations.Migration):
-
     dependencies = [
-        ('measurements', '0002_initial'),
+        ("measurements", "0002_initial"),
         migrations.swappable_dependency(settings.AUTH_USER_MODEL),
     ]
 
     operations = [
         migrations.AddField(
-            model_name='release',
-            name='calibration',
+            model_name="release",
+            name="calibration",
             field=models.FloatField(default=0.0),
         ),
         migrations.AddField(
-            model_name='release',
-            name='error_source',
-            field=models.CharField(choices=[('given', 'given'), ('estimate', 'of unknown size'), ('counts', 'those of counts'), ('profile', 'changing along x')], default='given', max_length=8),
+            model_name="release",
+            name="error_source",
+            field=models.CharField(
+                choices=[
+                    ("given", "given"),
+                    ("estimate", "of unknown size"),
+                    ("counts", "those of counts"),
+                    ("profile", "changing along x"),
+                ],
+                default="given",
+                max_length=8,
+            ),
         ),
         migrations.AddField(
-            model_name='release',
-            name='windows',
+            model_name="release",
+            name="windows",
             field=models.BinaryField(blank=True, null=True),
         ),
         migrations.AddField(
-            model_name='release',
-            name='windows_name',
+            model_name="release",
+            name="windows_name",
             field=models.CharField(blank=True, max_length=200),
         ),
         migrations.AddField(
-            model_name='release',
-            name='windows_sha256',
+            model_name="release",
+            name="windows_sha256",
             field=models.CharField(blank=True, max_length=64),
         ),
         migrations.AddConstraint(
-            model_name='release',
-            constraint=models.CheckConstraint(condition=models.Q(('calibration__gte', 0.0), ('calibration__lt', 1.0)), name='calibration_is_a_fraction'),
+            model_name="release",
+            constraint=models.CheckConstraint(
+                condition=models.Q(("calibration__gte", 0.0), ("calibration__lt", 1.0)),
+                name="calibration_is_a_fraction",
+            ),
         ),
     ]

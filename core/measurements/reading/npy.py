@@ -33,10 +33,12 @@ class NpyMatrix:
         found = len(self._content) - self._start
         if expected != found:
             reason = f"its header announces {expected} bytes of numbers and {found} follow"
-            raise UserError("npy-broken", reason, "Upload it again; it may have been cut off", self._file_name)
+            raise UserError(
+                "npy-broken", reason, "Upload it again; it may have been cut off", self._file_name
+            )
         numbers = np.frombuffer(self._content, dtype=self._dtype, offset=self._start)
-        order = "F" if self._fortran_order else "C"
-        matrix = numbers.reshape(self.shape, order=order).astype(np.float64, order="C")
+        given = numbers.reshape(self.shape, order="F" if self._fortran_order else "C")
+        matrix: NDArray[np.float64] = given.astype(np.float64, order="C")
         _refuse_not_finite(matrix, self._file_name)
         return matrix
 

@@ -52,7 +52,9 @@ def _placed(refusal: InputRefused, file_name: str, lines: NDArray[np.int64] | No
 def _refuse_shape(shape: tuple[int, ...], file_name: str, points: int) -> None:
     if len(shape) != 2 or shape[0] != points + 1 or shape[1] < 2:
         reason = f"has shape {shape_in_words(shape)} for {points} points"
-        remedy = f"Give a first row with the x of the grid and then {points} rows of weights, one for each point"
+        remedy = (
+            f"Give a first row with the x of the grid and then {points} rows of weights, one for each point"
+        )
         raise UserError("windows-shape", reason, remedy, file_name)
     if shape[1] > MAXIMUM_WINDOW_GRID or shape[0] * shape[1] > MAXIMUM_WINDOW_WEIGHTS:
         reason = (
