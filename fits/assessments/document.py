@@ -54,7 +54,7 @@ def result_document(result: Result, *, seed: int) -> dict[str, Any]:
             for radius in result.ball.radii
         ],
         "curves": [_curve(result, index, rank) for rank, index in enumerate(result.ranking.order, start=1)],
-        "notes": [{"code": note.code, "message": note.message} for note in notes_on(result)],
+        "notes": [{"code": note.code.value, "message": note.message} for note in notes_on(result)],
     }
 
 

@@ -1,12 +1,22 @@
-"""What a reader must know beside the numbers, each with a stable code."""
+"""What a reader must know beside the numbers, each with a stable code.
+
+Every code is explained under its own anchor on the page "reports:explained".
+"""
 
 import math
 from collections.abc import Iterator
 from dataclasses import dataclass
+from enum import StrEnum
 
-from fits.engine.data import Axis
+import numpy as np
+
+from fits.engine.counts import relative_change
+from fits.engine.data import Axis, ErrorSource, FloatArray
+from fits.engine.error_size import ErrorSize, SizeSource
 from fits.engine.resolution import feature_width
-from fits.engine.result import Result
+from fits.engine.result import CurveVerdict, Result
+from fits.engine.settings import RadiusKind
+from fits.engine.whitening import SharedErrors
 
 # A leftover p-value beyond these is worth a word.
 LEFTOVER_TOO_LARGE = 0.01
@@ -15,19 +25,44 @@ LEFTOVER_TOO_SMALL = 0.99
 GRID_TOO_COARSE = 0.05
 FINER_THAN_RESOLUTION = 0.1
 # … and only where it would show in the leftover: more than one standard deviation of its χ².
+# Estimates of one error size may differ by this share of the smaller.
+ESTIMATES_DISAGREE = 0.2
+
+
+class NoteCode(StrEnum):
+    """Stable names of the notes."""
+
+    RESOLUTION_REDUCED = "resolution-reduced"
+    LEFTOVER_LARGE = "leftover-large"
+    LEFTOVER_SMALL = "leftover-small"
+    NO_LEFTOVER = "no-leftover"
+    ERRORS_ESTIMATED = "errors-estimated"
+    ESTIMATES_DISAGREE = "estimates-disagree"
+    PROFILE_ESTIMATED = "profile-estimated"
+    COUNTS_TRANSFORMED = "counts-transformed"
+    SHARED_LARGER = "shared-larger"
+    RADIUS_ZERO = "radius-zero"
+    CURVE_FINER = "curve-finer"
+    GRID_COARSE = "grid-coarse"
 
 
 @dataclass(frozen=True)
 class Note:
     """One remark."""
 
-    code: str
+    code: NoteCode
     message: str
 
 
 def notes_on(result: Result) -> tuple[Note, ...]:
     """All remarks on an assessment, those on the data first."""
-    return (*_on_the_data(result), *_on_the_curves(result))
+    return (
+        *_on_the_resolution(result),
+        *_on_the_leftover(result),
+        *_on_the_errors(result),
+        *_on_the_radii(result),
+        *_on_the_curves(result),
+    )
 
 
 def narrowest(result: Result) -> str:
@@ -41,43 +76,28 @@ def width_in_words(width: float, axis: Axis) -> str:
     return f"{width:.3g} in ln x" if axis is Axis.LOG else f"{width:.3g} in x"
 
 
-def _on_the_data(result: Result) -> Iterator[Note]:
+def _on_the_resolution(result: Result) -> Iterator[Note]:
     fit = result.fit
     if fit.coordinates.functions < result.asked_functions:
         yield Note(
-            "resolution-reduced",
+            NoteCode.RESOLUTION_REDUCED,
             f"Of {result.asked_functions} basis functions {fit.coordinates.functions} are independent at these x "
             "and were kept: the points are too few or too uneven for more.",
         )
     if result.settings.resolution is not None and result.asked_functions < result.settings.resolution:
         yield Note(
-            "resolution-reduced",
+            NoteCode.RESOLUTION_REDUCED,
             f"{result.settings.resolution} basis functions were asked for; {result.data.points} points allow "
             f"no more than {result.asked_functions}.",
-        )
-    yield from _on_the_leftover(result)
-    empty = [f"{100 * r.level:g} %" for r in result.ball.radii if r.calibrated_squared <= 0.0]
-    if empty:
-        yield Note(
-            "radius-zero",
-            f"The data lie closer to the fit than their errors allow: the radius at {', '.join(empty)} is 0 and "
-            "nothing is inside. Check the errors; they are probably overstated.",
         )
 
 
 def _on_the_leftover(result: Result) -> Iterator[Note]:
     leftover = result.fit.leftover
     if leftover is None:
-        if result.sigma is not None:
+        if result.sigma is None:
             yield Note(
-                "errors-estimated",
-                f"The errors are estimated from what the {result.fit.coordinates.functions} functions leave over "
-                f"({result.fit.freedom:g} degrees of freedom). The leftover can then no longer check them, and "
-                "structure finer than the resolution passes for error.",
-            )
-        else:
-            yield Note(
-                "no-leftover",
+                NoteCode.NO_LEFTOVER,
                 "With as many functions as points nothing is left over to check the errors by, and errors that "
                 "are 10 % off move the ball by its own size.",
             )
@@ -85,34 +105,152 @@ def _on_the_leftover(result: Result) -> Iterator[Note]:
     numbers = f"χ² = {leftover.chi2:.4g} on {leftover.dof} degrees of freedom, p = {leftover.p_value:.2g}"
     if leftover.p_value < LEFTOVER_TOO_LARGE:
         yield Note(
-            "leftover-large",
+            NoteCode.LEFTOVER_LARGE,
             f"The data scatter more than their errors allow ({numbers}). Either there is structure narrower than "
             f"{narrowest(result)}, the resolution, or the errors are understated.",
         )
     elif leftover.p_value > LEFTOVER_TOO_SMALL:
         yield Note(
-            "leftover-small",
-            f"The data scatter less than their errors say ({numbers}). The errors are probably overstated, or "
-            "correlated between points in a way that they do not say; verdicts are then too lenient.",
+            NoteCode.LEFTOVER_SMALL,
+            f"The data scatter less than their errors say ({numbers}). Either the errors are overstated, or "
+            "they are correlated between points in a way that they do not say. Overstated errors let wrong curves in.",
+        )
+
+
+def _on_the_errors(result: Result) -> Iterator[Note]:
+    if result.sigma is not None:
+        yield Note(
+            NoteCode.ERRORS_ESTIMATED,
+            f"The errors are estimated from what the {result.fit.coordinates.functions} functions leave over "
+            f"({result.fit.freedom:g} degrees of freedom). The leftover can then no longer check them, and "
+            "structure finer than the resolution passes for error.",
+        )
+    if result.data.source is ErrorSource.PROFILE:
+        smallest, largest = _ends(result.fit.whitening.standard_errors)
+        yield Note(
+            NoteCode.PROFILE_ESTIMATED,
+            f"The errors are estimated along x, from {smallest:.3g} to {largest:.3g}, by how neighbouring points "
+            f"differ ({result.fit.freedom:.3g} degrees of freedom). A profile this smooth misses errors that change "
+            "abruptly, and errors that neighbours share do not show in it.",
+        )
+    if result.data.source is ErrorSource.COUNTS:
+        yield Note(
+            NoteCode.COUNTS_TRANSFORMED,
+            "The data are judged as 2√(v + 3/8) of the counts v, where every count has an error of 1. With few counts "
+            "this is not quite so: the mean lies lower than the curve by 1/(4√v) error bars, 0.08 at 10 counts.",
+        )
+    yield from _on_the_estimates(result.error_sizes)
+    yield from _on_shared_errors(result)
+
+
+_IN_WORDS = {
+    SizeSource.LEFTOVER: "the leftover",
+    SizeSource.FIRST_DIFFERENCES: "differences of neighbours",
+    SizeSource.SECOND_DIFFERENCES: "second differences",
+}
+
+
+def _on_the_estimates(sizes: tuple[ErrorSize, ...]) -> Iterator[Note]:
+    """Estimates of one σ that look at different things."""
+    if not sizes:
+        return
+    ordered = sorted(sizes, key=lambda size: size.sigma)
+    if ordered[-1].sigma <= (1.0 + ESTIMATES_DISAGREE) * ordered[0].sigma:
+        return
+    found = ", ".join(
+        f"{size.sigma:.3g} ± {size.standard_error:.2g} from {_IN_WORDS[size.source]}" for size in sizes
+    )
+    if ordered[-1].source is SizeSource.LEFTOVER:
+        reading = (
+            "Neighbouring points differ by less than the leftover: there is structure finer than the resolution, or "
+            "neighbours share part of their errors"
+        )
+    else:
+        reading = (
+            "Neighbouring points differ by more than the leftover: the curve changes much from one point to the "
+            "next, or a few points are far off"
+        )
+    yield Note(
+        NoteCode.ESTIMATES_DISAGREE,
+        f"Estimates of the error size differ by more than {100 * ESTIMATES_DISAGREE:g} %: {found}. {reading}.",
+    )
+
+
+def _on_shared_errors(result: Result) -> Iterator[Note]:
+    whitening = result.fit.whitening
+    if not isinstance(whitening, SharedErrors):
+        return
+    own = _root_mean_square(whitening.own.standard_errors)
+    columns = {f"The shared error {name}": column for name, column in result.data.shared.items()}
+    if result.data.calibration:
+        fraction = result.data.calibration
+        columns[f"The calibration, known to {100 * fraction:g} %,"] = fraction * relative_change(
+            result.seen, result.data
+        )
+    for name, column in columns.items():
+        size = _root_mean_square(column)
+        if size > own:
+            yield Note(
+                NoteCode.SHARED_LARGER,
+                f"{name} is larger than the errors of the points ({size:.3g} against {own:.3g}, root-mean-square). It "
+                "moves all points together: curves that differ by such a move are hardly told apart, while residuals "
+                "scatter less than the bars drawn at the points.",
+            )
+
+
+def _on_the_radii(result: Result) -> Iterator[Note]:
+    cautious = result.settings.radius is RadiusKind.CAUTIOUS
+    squares = {r.level: r.cautious_squared if cautious else r.calibrated_squared for r in result.ball.radii}
+    empty = [level for level, squared in squares.items() if squared <= 0.0]
+    if empty:
+        levels = ", ".join(f"{100 * level:g} %" for level in empty)
+        share = f"{100 * (1 - max(empty)):.2g} %"
+        yield Note(
+            NoteCode.RADIUS_ZERO,
+            f"The data lie closer to the fit than their errors allow: the radius at {levels} is 0 and that ball "
+            f"holds nothing. With right errors that happens in about {share} of repeats at most; "
+            "otherwise the errors are overstated.",
         )
 
 
 def _on_the_curves(result: Result) -> Iterator[Note]:
-    for index in result.ranking.order:
-        verdict = result.verdicts[index]
-        name = verdict.curve.name
-        if verdict.leftover is not None:
-            unjudged = verdict.leftover.root_mean_square(result.data.points)
-            shows = verdict.leftover.chi2 > math.sqrt(2.0 * verdict.leftover.dof)
-            if unjudged > FINER_THAN_RESOLUTION and shows:
-                yield Note(
-                    "curve-finer",
-                    f"{name} has structure narrower than {narrowest(result)}: {unjudged:.2g} error bars of it "
-                    "(root-mean-square) were not judged.",
-                )
-        if verdict.interpolation_error > GRID_TOO_COARSE:
-            yield Note(
-                "grid-coarse",
-                f"The grid of {name} is too coarse: two ways of interpolating it differ by "
-                f"{verdict.interpolation_error:.2g} error bars (root-mean-square). Give it on a finer grid.",
-            )
+    verdicts = [result.verdicts[index] for index in result.ranking.order]
+    finer = {verdict.curve.name: size for verdict in verdicts if (size := _unjudged(verdict, result))}
+    if finer:
+        yield Note(
+            NoteCode.CURVE_FINER,
+            f"Structure narrower than {narrowest(result)} was not judged. In error bars (root-mean-square) there is of "
+            f"it: {_each(finer)}.",
+        )
+    coarse = {
+        verdict.curve.name: verdict.interpolation_error
+        for verdict in verdicts
+        if verdict.interpolation_error > GRID_TOO_COARSE
+    }
+    if coarse:
+        yield Note(
+            NoteCode.GRID_COARSE,
+            "The grid of a curve is too coarse where two ways of interpolating it differ. In error bars "
+            f"(root-mean-square) they do by: {_each(coarse)}. Give it on a finer grid.",
+        )
+
+
+def _unjudged(verdict: CurveVerdict, result: Result) -> float:
+    """A curve's structure finer than the resolution, in error bars; 0 where it does not matter."""
+    leftover = verdict.leftover
+    if leftover is None or leftover.chi2 <= math.sqrt(2.0 * leftover.dof):
+        return 0.0
+    size = leftover.root_mean_square(result.data.points)
+    return size if size > FINER_THAN_RESOLUTION else 0.0
+
+
+def _each(sizes: dict[str, float]) -> str:
+    return "; ".join(f"{name}, {size:.2g}" for name, size in sizes.items())
+
+
+def _root_mean_square(values: FloatArray) -> float:
+    return float(np.sqrt(np.mean(values**2)))
+
+
+def _ends(values: FloatArray) -> tuple[float, float]:
+    return float(values.min()), float(values.max())

@@ -16,7 +16,7 @@ from fits.assessments.document import result_document
 from fits.assessments.models import Assessment
 from fits.engine.assess import assess
 from fits.engine.refusal import InputRefused
-from fits.engine.settings import Settings, Shrinkage
+from fits.engine.settings import RadiusKind, Settings, Shrinkage
 
 
 @dataclass(frozen=True)
@@ -63,4 +63,6 @@ def settings_of(chosen: Mapping[str, Any]) -> Settings:
         full=chosen["full"],
         shrinkage=Shrinkage(chosen["shrinkage"]),
         draws=chosen["draws"],
+        # Older rows were made before there was a choice.
+        radius=RadiusKind(chosen.get("radius", RadiusKind.CALIBRATED)),
     )

@@ -11,6 +11,7 @@ from core.people.access import Action, load
 from core.people.forms import explain
 from core.people.signed_in import SignedInRequest
 from core.user_error import UserError
+from fits.assessments.coordinates_form import CoordinatesForm
 from fits.assessments.forms import AssessmentForm
 from fits.assessments.models import Assessment
 from fits.assessments.services import cancel_assessment, request_assessment
@@ -21,12 +22,7 @@ from fits.assessments.stages import stages_of
 @require_http_methods(["GET", "POST"])
 def new_assessment(request: SignedInRequest, pk: int) -> HttpResponse:
     """Choose curves and settings for a release."""
-    releases = Release.objects.select_related("measurement__collaboration").defer(
-        "table", "lines", "covariance"
-    )
-    release = load(releases, request.user, Action.ASSESS, pk)
-    if release.state != Release.State.PUBLISHED:
-        raise Http404
+    release = _release_to_assess(request, pk)
     form = AssessmentForm(request.POST or None, release=release)
     if form.is_valid():
         try:
@@ -43,11 +39,28 @@ def new_assessment(request: SignedInRequest, pk: int) -> HttpResponse:
             explain(form, error)
     context = {
         "form": form,
+        "counted": form if form.is_bound else CoordinatesForm.with_defaults(release),
         "release": release,
         "measurement": release.measurement,
         "collaboration": release.measurement.collaboration,
     }
     return render(request, "assessments/new.html", context)
+
+
+@login_required
+@require_GET
+def coordinates(request: SignedInRequest, pk: int) -> HttpResponse:
+    """What the resolution chosen so far comes to, or why it is refused; fetched while it is chosen."""
+    form = CoordinatesForm(request.GET, release=_release_to_assess(request, pk))
+    return render(request, "assessments/coordinates.html", {"counted": form, "faults": form.errors.values()})
+
+
+def _release_to_assess(request: SignedInRequest, pk: int) -> Release:
+    releases = Release.objects.select_related("measurement__collaboration").defer("table", "lines")
+    release = load(releases, request.user, Action.ASSESS, pk)
+    if release.state != Release.State.PUBLISHED:
+        raise Http404
+    return release
 
 
 @login_required

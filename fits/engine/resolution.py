@@ -27,7 +27,7 @@ def functions_for(settings: Settings, *, points: int, span: float) -> int:
     if settings.resolution is not None:
         asked = settings.resolution
     elif settings.feature_width is not None:
-        asked = max(MINIMUM_FUNCTIONS, math.ceil(2.0 * span / settings.feature_width - 1e-9))
+        asked = max(MINIMUM_FUNCTIONS, math.ceil(min(2.0 * span / settings.feature_width - 1e-9, points)))
     else:
         asked = max(MINIMUM_FUNCTIONS, min(DEFAULT_FUNCTIONS, points // 2))
     return min(asked, points)

@@ -20,13 +20,21 @@ class Shrinkage(StrEnum):
     NESTED = "nested"
 
 
+class RadiusKind(StrEnum):
+    """The radius that bands and rings are drawn with."""
+
+    CALIBRATED = "calibrated"
+    CAUTIOUS = "cautious"
+
+
 @dataclass(frozen=True)
 class Settings:
-    """Levels, resolution, shrinkage and number of draws. At most one of the three resolution choices is set.
+    """Levels, resolution, shrinkage, radius and number of draws. At most one of the three resolution choices is set.
 
     resolution     number of basis functions J
     feature_width  narrowest feature to be judged, in units of x (of ln x on a log axis); J = 2 (b − a)/width
     full           J = n
+    radius         what is drawn and cut at; verdicts are those of the exact p-value under either
     """
 
     levels: tuple[float, ...] = DEFAULT_LEVELS
@@ -35,6 +43,7 @@ class Settings:
     full: bool = False
     shrinkage: Shrinkage = Shrinkage.MONOTONE
     draws: int = DEFAULT_DRAWS
+    radius: RadiusKind = RadiusKind.CALIBRATED
 
     def __post_init__(self) -> None:
         if not self.levels or any(not 0.0 < level < 1.0 for level in self.levels):

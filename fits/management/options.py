@@ -20,7 +20,7 @@ from core.measurements.reading.windows import read_windows
 from core.user_error import UserError
 from fits.engine import VERSION
 from fits.engine.data import Axis, CurveTable, Data, ErrorSource
-from fits.engine.settings import DEFAULT_DRAWS, DEFAULT_LEVELS, Settings, Shrinkage
+from fits.engine.settings import DEFAULT_DRAWS, DEFAULT_LEVELS, RadiusKind, Settings, Shrinkage
 
 
 @dataclass(frozen=True, eq=False)
@@ -67,6 +67,11 @@ def add_options(parser: ArgumentParser) -> None:
     parser.add_argument(
         "--shrinkage", choices=[kind.value for kind in Shrinkage], default=Shrinkage.MONOTONE.value
     )
+    parser.add_argument(
+        "--cautious",
+        action="store_true",
+        help="draw band and rings with the cautious radius, not the calibrated one; verdicts stay the same",
+    )
     parser.add_argument("--axis", choices=[axis.value for axis in Axis], default=Axis.LINEAR.value)
     parser.add_argument(
         "--errors",
@@ -102,6 +107,7 @@ def read_inputs(options: Mapping[str, Any], curve_paths: Sequence[str], *, comma
         full=options["full"],
         shrinkage=Shrinkage(options["shrinkage"]),
         draws=options["draws"],
+        radius=RadiusKind.CAUTIOUS if options["cautious"] else RadiusKind.CALIBRATED,
     )
     table_file = _read(options["data"])
     table = read_table(table_file.content, table_file.name)
@@ -222,6 +228,7 @@ def _settings_context(settings: Settings) -> dict[str, Any]:
         "full": settings.full,
         "shrinkage": settings.shrinkage.value,
         "draws": settings.draws,
+        "radius": settings.radius.value,
     }
 
 
@@ -237,8 +244,7 @@ def _command_line(command: str, options: Mapping[str, Any], curve_paths: Sequenc
             words += [f"--{name.replace('_', '-')}", repr(options[name])]
     if options["calibration"]:
         words += ["--calibration", repr(options["calibration"])]
-    if options["full"]:
-        words.append("--full")
+    words += [f"--{flag}" for flag in ("full", "cautious") if options[flag]]
     for name in ("shrinkage", "axis", "errors", "draws", "seed"):
         words += [f"--{name}", str(options[name])]
     return shlex.join(words)

@@ -27,3 +27,7 @@ class RouteAddresses:
     def ranking_csv(self) -> str:
         """The ranking table."""
         return reverse(f"reports:{self.kind}_csv", args=[self.key])
+
+    def explained(self) -> str:
+        """The page that explains words and notes."""
+        return reverse("reports:explained")

@@ -32,6 +32,9 @@ class Addresses(Protocol):
     def ranking_csv(self) -> str:
         """The ranking table."""
 
+    def explained(self) -> str:
+        """The page that explains words and notes; empty where it stands on the same page."""
+
 
 @dataclass(frozen=True)
 class Chart:
@@ -138,6 +141,7 @@ def result_page(
         "settings": _settings(snapshot),
         "result_json": addresses.result_json(),
         "ranking_csv": addresses.ranking_csv(),
+        "explained": addresses.explained(),
         "nouns": words.nouns(snapshot),
         "heading": _heading(snapshot),
     }
@@ -224,18 +228,38 @@ def _radii(snapshot: Snapshot, level: str) -> list[dict[str, Any]]:
     ]
 
 
+ERRORS = {
+    "given": "given with the data",
+    "covariance": "given as a covariance",
+    "estimate": "their size estimated from the data",
+    "counts": "those of counts",
+    "profile": "changing along x, estimated from the data",
+}
+
+
+def _errors(snapshot: Snapshot) -> list[tuple[str, str]]:
+    """Where they come from, every estimate of their size, and how well the scale of the data is known."""
+    source = snapshot.result["release"]["errors"]
+    calibration = (snapshot.context.get("release") or {}).get("calibration")
+    facts = [("errors", ERRORS.get(source, source))]
+    facts += [
+        (
+            f"error size from {size['source']}",
+            f"{numbers.significant(size['sigma'])} ± {numbers.significant(size['standard_error'], 2)}",
+        )
+        for size in snapshot.detail.get("error_sizes", ())
+    ]
+    if calibration:
+        facts.append(("scale of the data", f"known to {100.0 * calibration:g} %"))
+    return facts
+
+
 def _trust(snapshot: Snapshot) -> list[tuple[str, str]]:
     fit, release = snapshot.result["fit"], snapshot.result["release"]
-    errors = {
-        "given": "given with the data",
-        "covariance": "given as a covariance",
-        "estimate": "estimated from the data",
-        "counts": "those of counts",
-    }
     draws = snapshot.result["draws"]
     return [
         ("points", f"{release['points']}"),
-        ("errors", errors.get(release["errors"], release["errors"])),
+        *_errors(snapshot),
         (
             "resolution",
             f"{fit['resolution']} functions: features wider than {words.resolution_width(snapshot)}",
@@ -265,6 +289,7 @@ def _settings(snapshot: Snapshot) -> list[tuple[str, str]]:
         ("levels", levels),
         ("resolution", resolution),
         ("shrinkage", snapshot.result["fit"]["shrinkage"]),
+        ("radius drawn", snapshot.radius_kind),
         ("draws", str(snapshot.result["draws"])),
         ("seed", str(snapshot.result["seed"])),
         ("engine", str(snapshot.result["engine"])),

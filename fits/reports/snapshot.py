@@ -38,9 +38,16 @@ class Snapshot:
             return str(asked)
         return min(self.levels, key=lambda level: (abs(float(level) - DEFAULT_LEVEL), -float(level)))
 
-    def radius(self, level: str, kind: str = "calibrated") -> float:
-        """The radius of a level."""
-        return next(float(r[kind]) for r in self.result["radii"] if level_key(r["level"]) == level)
+    @property
+    def radius_kind(self) -> str:
+        """The radius that was chosen to be drawn: "calibrated", as in all older results, or "cautious"."""
+        return (self.context.get("settings") or {}).get("radius") or "calibrated"
+
+    def radius(self, level: str) -> float:
+        """The radius of a level, of the kind that was chosen."""
+        return next(
+            float(r[self.radius_kind]) for r in self.result["radii"] if level_key(r["level"]) == level
+        )
 
     @property
     def curves(self) -> tuple[dict[str, Any], ...]:

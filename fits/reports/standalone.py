@@ -39,6 +39,10 @@ class InsideThePage:
         """The ranking as a data: address."""
         return data_address("text/csv", ranking_csv(self.snapshot))
 
+    def explained(self) -> str:
+        """Words and notes are explained at the end of the page itself."""
+        return ""
+
 
 def render_standalone(result: Document, detail: Document, context: Document) -> str:
     """The page. Reads static files only: no database, no request, no network."""

@@ -3,9 +3,11 @@
 from django.urls import path
 
 from fits.reports.views import assessment, report, shared
+from fits.reports.views.explained import explained
 
 app_name = "reports"
 urlpatterns = [
+    path("explained/", explained, name="explained"),
     path("assessments/<int:pk>/", assessment.assessment, name="assessment"),
     path("assessments/<int:pk>/charts/<slug:name>.<str:form>", assessment.chart, name="assessment_chart"),
     path("assessments/<int:pk>/result.json", assessment.result_json, name="assessment_json"),

@@ -15,10 +15,10 @@ def sided(is_inside: bool) -> str:
 
 def explanations(snapshot: Snapshot, curve: Document, level: str) -> tuple[str, ...]:
     """Each disagreement of the published, calibrated, exact and scale sets at a level, and why."""
-    return (*_balls(curve, level), *_scales(snapshot, curve, level), *_borderline(curve, level))
+    return (*_balls(snapshot, curve, level), *_scales(snapshot, curve, level), *_borderline(curve, level))
 
 
-def _balls(curve: Document, level: str) -> Iterator[str]:
+def _balls(snapshot: Snapshot, curve: Document, level: str) -> Iterator[str]:
     sets, at = curve["inside"], numbers.level_words(level)
     exact = sets["exact"][level]
     if sets["published"][level] is not exact:
@@ -26,7 +26,13 @@ def _balls(curve: Document, level: str) -> Iterator[str]:
             f"The published ball says {sided(not exact)} at {at}, the exact p-value {sided(exact)}: the published "
             "radius is right for large n only."
         )
-    if sets["calibrated"][level] is not exact:
+    if snapshot.radius_kind == "cautious":
+        if (curve["distance"] <= snapshot.radius(level)) is not exact:
+            yield (
+                f"The cautious ball says {sided(not exact)} at {at}, the exact p-value {sided(exact)}: the radius is "
+                "drawn large on purpose, for any curve, the p-value is simulated around this one, and it counts."
+            )
+    elif sets["calibrated"][level] is not exact:
         yield (
             f"The calibrated ball says {sided(not exact)} at {at}, the exact p-value {sided(exact)}: the radius is "
             "calibrated around the fit, the p-value around this curve itself, and the p-value counts."

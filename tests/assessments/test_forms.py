@@ -13,6 +13,7 @@ def asked(release: Release, curve: Curve, **changes: Any) -> AssessmentForm:
         "levels": "67, 90, 95, 99",
         "resolution_choice": "default",
         "shrinkage": "monotone",
+        "radius": "calibrated",
         "draws": "2000",
         "seed": "7",
     }
@@ -28,6 +29,7 @@ def test_the_defaults_are_those_of_the_engine(release: Release, curve: Curve) ->
         "feature_width": None,
         "full": False,
         "shrinkage": "monotone",
+        "radius": "calibrated",
         "draws": 2000,
     }
 

@@ -15,6 +15,7 @@ FORM = {
     "levels": "67, 90, 95, 99",
     "resolution_choice": "default",
     "shrinkage": "monotone",
+    "radius": "calibrated",
     "draws": "500",
     "seed": "7",
 }

@@ -80,6 +80,7 @@ PAGES = [
     Row("sign-out", "account_logout"),
     Row("password-change", "account_change_password"),
     Row("reauthenticate", "account_reauthenticate"),
+    Row("explained", "reports:explained", who="nobody"),
     Row("home", "overviews:home"),
     Row("home-of-a-stranger", "overviews:home", who="stranger"),
     Row("collaboration", "overviews:collaboration", lambda survey: survey.collaboration.pk),

@@ -29,7 +29,7 @@ SERIOUS = {"serious", "critical"}
 NO_PAGES = {
     *("account_confirm_login_code", "account_confirm_reauthentication_code", "account_set_password"),
     *("account_request_reauthentication_code", "account_email", "account_email_verification_sent"),
-    *("account_confirm_email", "assessments:cancel", "assessments:progress"),
+    *("account_confirm_email", "assessments:cancel", "assessments:progress", "assessments:coordinates"),
     *("measurements:discard", "measurements:download", "measurements:publish"),
     *("people:change_role", "people:remove"),
     *("reports:assessment_chart", "reports:assessment_csv", "reports:assessment_json"),

@@ -163,3 +163,14 @@ def test_the_page_stands_alone(tmp_path: Path, capsys: Output, inputs: list[str]
     assert "Of 2 theories" in page or "Of 2 curves" in page
     assert 'src="http' not in page
     assert 'href="/' not in page
+
+
+def test_a_cautious_radius_changes_what_is_drawn_and_no_verdict(
+    capsys: Output, inputs: list[str], tmp_path: Path
+) -> None:
+    page = tmp_path / "page.html"
+    plain = ranked(capsys, *inputs)
+    assert ranked(capsys, *inputs, "--cautious", f"--page={page}") == plain
+    text = page.read_text(encoding="utf-8")
+    assert "Rings are the cautious radii" in text
+    assert "--cautious" in text

@@ -15,7 +15,7 @@ LETTERS_HIGH = 2.5
 
 
 def ball(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
-    """Rings at the calibrated radii, curves at their distances."""
+    """Rings at the radii that were chosen, curves at their distances."""
     largest = max(snapshot.radius(key) for key in snapshot.levels)
     places = {name: _position(snapshot, name) for name in snapshot.names}
     reach = max((math.hypot(a, b) for a, b in places.values()), default=0.0)
@@ -44,9 +44,9 @@ def ball(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
         name="ball",
         title="The ball seen from above",
         caption=(
-            "The centre is the fit. Rings are the calibrated radii; each curve stands at its exact distance from "
-            "the fit, in error bars (root-mean-square). Circles are inside and crosses outside, by the exact "
-            "p-value, which near a ring can differ from the ring. Angles are only a guide: curves in the same "
+            f"The centre is the fit. Rings are the {snapshot.radius_kind} radii; each curve stands at its exact "
+            "distance from the fit, in error bars (root-mean-square). Circles are inside and crosses outside, by the "
+            "exact p-value, which near a ring can differ from the ring. Angles are only a guide: curves in the same "
             "direction err alike. Curves too far out to be drawn are named at the edge, with their distance."
         ),
         x=Axis("distance, in error bars", range=(-edge, edge)),

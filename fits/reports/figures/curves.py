@@ -42,9 +42,11 @@ def curves(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
         name="curves",
         title="Data, fit and theory curves",
         caption=(
-            "Above: data with their errors, the fit, and the band in which every curve of the calibrated ball at the "
-            "chosen level lies, for all x at once. Solid curves are inside, dashed ones outside. Below, in error "
-            "bars: data minus fit (grey) and data minus the curve looked at." + thinned
+            f"Above: data with their errors, the fit, and the band in which every curve of the {snapshot.radius_kind} "
+            "ball at the chosen level lies, for all x at once. Solid curves are inside, dashed ones outside. Below, in "
+            "error bars: data minus fit (grey) and data minus the curve looked at."
+            + _scale(snapshot)
+            + thinned
         ),
         x=log_axis(snapshot.x_label, x) if snapshot.on_log_axis else Axis(snapshot.x_label),
         panels=(Panel(Axis(snapshot.y_label), 0.7), Panel(Axis("in error bars"), 0.3)),
@@ -54,6 +56,15 @@ def curves(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
         curve=curve,
         switched_on=snapshot.names[:CURVES_SHOWN],
         height=5.4,
+    )
+
+
+def _scale(snapshot: Snapshot) -> str:
+    if snapshot.detail["data"].get("scale") != "stabilised counts":
+        return ""
+    return (
+        " Counts v, the fit and the curves are drawn as 2√(v + 3/8), the scale on which they are judged: there every "
+        "count has an error of 1."
     )
 
 
