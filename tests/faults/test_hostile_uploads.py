@@ -1,22 +1,12 @@
 """Hostile uploads to the web server as it runs: refused with a reason, and the server goes on, of modest size."""
 
-import html
 import io
-import secrets
-import subprocess
-import urllib.error
-import urllib.request
 import zipfile
 from collections.abc import Callable, Iterator
-from dataclasses import dataclass
-from pathlib import Path
 
 import numpy as np
-import psutil
 import pytest
 import yaml
-from django.conf import settings
-from django.test import Client
 from django.urls import reverse
 
 from core.measurements.models import Measurement, Release
@@ -24,8 +14,8 @@ from core.measurements.reading.limits import CHILD_WALL_SECONDS, MAXIMUM_ROWS
 from core.people.models import User
 from core.single_machine import web_server
 from core.theories.models import Curve, Theory
-from tests.real_processes import BASE_DIR, database_url, free_port, kill_group
-from tests.waiting import wait_until
+from tests.real_processes import BASE_DIR
+from tests.real_web_server import Server, real_web_server
 
 pytestmark = pytest.mark.django_db(transaction=True)
 
@@ -37,101 +27,11 @@ NAME = "../../../etc/cron.d/tide\x07\x1b[2J.csv"
 SHOWN_NAME = "tide[2J.csv"
 
 
-@dataclass(frozen=True)
-class Answer:
-    """Status and page, as text."""
-
-    status: int
-    page: str
-
-
-class NoRedirect(urllib.request.HTTPRedirectHandler):
-    """Leaves a redirect as the answer that it is."""
-
-    def redirect_request(self, *arguments: object, **more: object) -> None:
-        return None
-
-
-@dataclass(frozen=True)
-class Server:
-    """The running web server."""
-
-    process: subprocess.Popen[bytes]
-    address: str
-
-    def ask(
-        self, path: str, user: User | None = None, files: dict[str, bytes] | None = None, **fields: str
-    ) -> Answer:
-        """Get a page, or post a form with files under a hostile name, signed in as the user."""
-        headers, body = {}, None
-        token = secrets.token_hex(16)
-        cookies = [f"{settings.CSRF_COOKIE_NAME}={token}"]
-        if user is not None:
-            client = Client()
-            client.force_login(user)
-            cookies.append(
-                f"{settings.SESSION_COOKIE_NAME}={client.cookies[settings.SESSION_COOKIE_NAME].value}"
-            )
-        if files is not None:
-            headers["Content-Type"] = "multipart/form-data; boundary=edge"
-            body = multipart({"csrfmiddlewaretoken": token, **fields}, files)
-        headers["Cookie"] = "; ".join(cookies)
-        request = urllib.request.Request(self.address + path, body, headers)
-        try:
-            with urllib.request.build_opener(NoRedirect).open(request, timeout=60.0) as answer:
-                return Answer(answer.status, html.unescape(answer.read().decode()))
-        except urllib.error.HTTPError as error:
-            return Answer(error.code, html.unescape(error.read().decode()))
-
-    def is_up(self) -> bool:
-        """Whether it answers."""
-        assert self.process.poll() is None
-        try:
-            return self.ask("/accounts/login/").status == 200
-        except urllib.error.URLError:
-            return False
-
-    def workers(self) -> list[psutil.Process]:
-        """The processes that answer."""
-        return psutil.Process(self.process.pid).children()
-
-    def largest(self) -> int:
-        """The most memory that any process of it ever held, in bytes."""
-        pids = [self.process.pid, *(worker.pid for worker in self.workers())]
-        status = [Path(f"/proc/{pid}/status").read_text() for pid in pids]
-        peaks = [text.split("VmHWM:")[1].split()[0] for text in status]
-        return max(int(peak) for peak in peaks) * 1024
-
-
-def multipart(fields: dict[str, str], files: dict[str, bytes]) -> bytes:
-    """A form as it goes over the wire, with NAME as the name of each file."""
-    parts = [
-        f'--edge\r\nContent-Disposition: form-data; name="{name}"\r\n\r\n{value}\r\n'.encode()
-        for name, value in fields.items()
-    ]
-    for name, content in files.items():
-        disposition = f'form-data; name="{name}"; filename="{NAME}"'
-        head = f"--edge\r\nContent-Disposition: {disposition}\r\nContent-Type: text/csv\r\n\r\n"
-        parts += [head.encode(), content, b"\r\n"]
-    return b"".join([*parts, b"--edge--\r\n"])
-
-
 @pytest.fixture(scope="module")
 def server(django_db_setup: None, tmp_path_factory: pytest.TempPathFactory) -> Iterator[Server]:
-    """The web server with the command that `serve` gives it, on the tests' database."""
-    port = free_port()
-    log = tmp_path_factory.mktemp("web") / "web.log"
-    with log.open("wb") as out, pytest.MonkeyPatch.context() as patch:
-        patch.setenv("DATABASE_URL", database_url())
-        process = subprocess.Popen(
-            web_server(port), cwd=BASE_DIR, stdout=out, stderr=subprocess.STDOUT, start_new_session=True
-        )
-    found = Server(process, f"http://127.0.0.1:{port}")
-    try:
-        wait_until(found.is_up, seconds=60.0, what="the web server answers")
+    """The web server, which is sent every file under NAME."""
+    with real_web_server(tmp_path_factory.mktemp("web") / "web.log", file_name=NAME) as found:
         yield found
-    finally:
-        kill_group(process)
 
 
 @pytest.fixture

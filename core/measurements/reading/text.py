@@ -48,12 +48,23 @@ def text_lines(content: bytes, file_name: str, limits: TableLimits) -> TextLines
     _refuse_other_encoding(content, file_name)
     if b"#" in content:
         content = re.sub(rb"#[^\n]*", b"", content)
-    every_line = content.decode("utf-8").split("\n")
+    content = content.rstrip(b"\n")
+    lines = content.decode("utf-8").split("\n")
     stray = content.translate(None, NUMERIC)
-    kept = [index for index, line in enumerate(every_line) if line and not line.isspace()]
-    numbers = np.array(kept, dtype=np.int64) + 1
-    lines = every_line if len(kept) == len(every_line) else [every_line[index] for index in kept]
+    blank = _blank_lines(content, lines)
+    numbers = np.delete(np.arange(1, len(lines) + 1, dtype=np.int64), blank)
+    if blank:
+        lines = [lines[number - 1] for number in numbers.tolist()]
     return TextLines(lines, numbers, stray)
+
+
+def _blank_lines(content: bytes, lines: list[str]) -> list[int]:
+    """Indices of the lines that hold nothing. Only those are looked at that start as such a line may."""
+    characters = np.frombuffer(content + b"\n", dtype=np.uint8)
+    starts = np.concatenate([[0], np.flatnonzero(characters[:-1] == ord("\n")) + 1])
+    first = characters[starts]
+    suspects = np.flatnonzero((first <= ord(" ")) | (first >= 128))
+    return [index for index in suspects.tolist() if not lines[index] or lines[index].isspace()]
 
 
 def too_many_rows(file_name: str, rows: int, limits: TableLimits) -> UserError:
