@@ -46,9 +46,14 @@ class CoordinatesForm(forms.Form):
         label="Number of functions",
         min_value=4,
         required=False,
+        widget=forms.NumberInput(attrs={"data-chooses": "id_resolution_choice_1"}),
         help_text="Only with “a number of functions”. Half as many functions see features twice as wide.",
     )
-    feature_width = forms.FloatField(label="Narrowest feature", required=False)
+    feature_width = forms.FloatField(
+        label="Narrowest feature",
+        required=False,
+        widget=forms.NumberInput(attrs={"data-chooses": "id_resolution_choice_2", "step": "any"}),
+    )
     draws = forms.IntegerField(
         initial=DEFAULT_DRAWS,
         min_value=100,

@@ -26,6 +26,11 @@ window.addEventListener("pageshow", () => {
   for (const form of document.querySelectorAll("form[data-sent]")) delete form.dataset.sent;
 });
 
+// Who fills in the number of a choice has made that choice.
+for (const input of document.querySelectorAll("[data-chooses]")) {
+  input.addEventListener("input", () => { document.getElementById(input.dataset.chooses).checked = true; });
+}
+
 // A name for a shared error is asked for only where a column is one.
 for (const select of document.querySelectorAll("select[data-names]")) {
   const named = document.getElementById(select.dataset.names);
