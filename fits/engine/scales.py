@@ -16,7 +16,9 @@ import scipy.special
 
 from fits.engine.data import FloatArray
 
-TABLE_DRAWS = 20_000
+# So many that the error of the table itself moves no coverage by more than a tenth of a percent or two: with 20 000 the
+# 99 % set at J = 40 held 98.85 %.
+TABLE_DRAWS = 100_000
 # One table serves every assessment, so that scale p-values of different ones compare exactly.
 TABLE_SEED = 20_000
 _BATCH_VALUES = 2_000_000

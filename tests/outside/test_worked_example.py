@@ -95,7 +95,7 @@ def test_misfit_by_scale(monotone: Result) -> None:
 
 def test_scale_p_values_and_worst_scales(monotone: Result) -> None:
     a, b = (verdict.scales for verdict in monotone.verdicts)
-    # 20 000 simulated minima: three standard errors.
+    # 20 000 minima were simulated for these numbers: three standard errors.
     assert a.p_value == pytest.approx(0.989, abs=0.003)
     assert b.p_value == pytest.approx(0.150, abs=0.008)
     assert (a.functions[a.worst], b.functions[b.worst]) == (1, 6)
