@@ -136,8 +136,8 @@ def _on_the_errors(result: Result) -> Iterator[Note]:
     if result.data.source is ErrorSource.COUNTS:
         yield Note(
             NoteCode.COUNTS_TRANSFORMED,
-            "The data are judged as 2√(v + 3/8) of the counts v, where every count has an error of 1. With few counts "
-            "this is not quite so: the mean lies lower than the curve by 1/(4√v) error bars, 0.08 at 10 counts.",
+            "The counts v are judged as 2√(v + 3/8), whose error is 1, or a little less below 4 expected counts; each "
+            "curve by the mean of that over the counts that it expects.",
         )
     yield from _on_the_estimates(result.error_sizes)
     yield from _on_shared_errors(result)
