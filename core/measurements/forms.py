@@ -57,15 +57,22 @@ class MeasurementForm(forms.ModelForm):  # type: ignore[type-arg]
         }
 
 
-def errors_field(has_covariance: bool | None = None) -> forms.ChoiceField:
+class ErrorsField(forms.ChoiceField):
+    """Where the errors come from. Without a choice it is what it was."""
+
+    def clean(self, value: Any) -> Any:
+        """What was chosen, else what is shown as chosen."""
+        return super().clean(value or self.initial)
+
+
+def errors_field(has_covariance: bool | None = None) -> ErrorsField:
     """Where the errors come from; whether there is a covariance is not known yet, or narrows the choice."""
     left_out = {None: (), True: (SaidOfErrors.COLUMN,), False: (SaidOfErrors.COVARIANCE,)}[has_covariance]
-    return forms.ChoiceField(
+    return ErrorsField(
         label="Where the errors come from",
         choices=[(said.value, words) for said, words in SENTENCES.items() if said not in left_out],
         widget=forms.RadioSelect,
         initial=SaidOfErrors.COLUMN.value,
-        required=False,
     )
 
 
@@ -92,10 +99,9 @@ class SaidForm(forms.Form):
     """What forms that speak of errors have in common; their fields are `errors_from` and `scale_percent`."""
 
     @property
-    def said(self) -> SaidOfErrors | None:
-        """Where the errors come from; None where nothing was said."""
-        chosen = self.cleaned_data["errors_from"]
-        return SaidOfErrors(chosen) if chosen else None
+    def said(self) -> SaidOfErrors:
+        """Where the errors come from."""
+        return SaidOfErrors(self.cleaned_data["errors_from"])
 
     @property
     def calibration(self) -> float:
@@ -162,7 +168,9 @@ class ColumnsForm(SaidForm):
         self.fields["errors_from"] = errors_field(has_covariance)
         self.fields["errors_from"].initial = said_of(release).value
         self.fields["scale_percent"] = calibration_field()
-        self.fields["scale_percent"].initial = round(100.0 * release.calibration, 10) or None
+        self.fields["scale_percent"].initial = (
+            f"{100.0 * release.calibration:.10g}" if release.calibration else None
+        )
         for index, column in enumerate(release.columns):
             title = column["header"] or f"column {index + 1}"
             is_shared = column["role"].startswith(SHARED)

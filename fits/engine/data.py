@@ -251,7 +251,7 @@ def _errors(
             raise InputRefused(
                 "no-errors",
                 "errors",
-                "there are none",
+                "no errors are given",
                 "Add an error column or a covariance, or have them estimated",
             )
         return None

@@ -124,6 +124,30 @@ def test_a_hostile_covariance_is_refused_on_the_page_and_nothing_is_kept(
 
 
 @pytest.mark.usefixtures("unharmed")
+@pytest.mark.parametrize(
+    ("content", "words"),
+    [
+        (npy_header((11, 2**29), "<f8"), "at most 20000 columns"),
+        (npy_header((11, 20000), "<f8"), "announces 1760000 bytes of numbers and 0"),
+        (pickled(), "holds Python objects, not numbers"),
+        (zip_bomb(), "is not text"),
+        (b"1 " * (20 * MEGABYTE), "a line may have"),
+    ],
+    ids=["header asking for 44 GiB", "header asking for more than follows", "pickle", "zip bomb", "one line"],
+)
+def test_hostile_windows_are_refused_on_the_page_and_nothing_is_kept(
+    content: bytes, words: str, server: Server, measurement: Measurement, lead: User
+) -> None:
+    files = {"table": GOOD, "windows": content}
+    answer = server.ask(reverse("measurements:upload", args=[measurement.pk]), lead, files)
+    assert answer.status == 400
+    told = facts(answer.page)
+    assert words in told
+    assert f"File{SHOWN_NAME}" in told
+    assert not Release.objects.exists()
+
+
+@pytest.mark.usefixtures("unharmed")
 def test_a_file_over_the_limit_is_refused_before_it_is_read(
     server: Server, measurement: Measurement, lead: User
 ) -> None:
