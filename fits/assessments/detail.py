@@ -7,8 +7,9 @@ import numpy as np
 import scipy.special
 from numpy.typing import NDArray
 
-from fits.assessments.document import drawing_grid
-from fits.engine.counts import stabilised
+from fits.assessments.document import drawing_grid, error_model
+from fits.assessments.known_coverage import nearest
+from fits.engine.counts import mean_stabilised
 from fits.engine.data import Data, ErrorSource, FloatArray
 from fits.engine.interpolation import curve_on_grid
 from fits.engine.leftover import leftover_residuals
@@ -66,6 +67,7 @@ def detail_document(result: Result) -> dict[str, Any]:
             }
             for pair in result.ranking.neighbours
         ],
+        "known_coverage": nearest(result.data.points, error_model(result.data)).document(),
     }
 
 
@@ -105,7 +107,7 @@ def _curve(
     reached = np.isfinite(values)
     if result.data.source is ErrorSource.COUNTS:
         # Between its own points the interpolated line may dip below 0 where nothing was judged.
-        values = stabilised(np.maximum(values, 0.0))
+        values = mean_stabilised(np.maximum(values, 0.0))
     return {
         "name": verdict.curve.name,
         "at_data": verdict.at_data[drawn].tolist(),

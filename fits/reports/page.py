@@ -13,6 +13,7 @@ from fits.reports.figures.curves import CURVES_SHOWN
 from fits.reports.figures.figure import Cell, Figure
 from fits.reports.figures.palette import curve_colour
 from fits.reports.figures.plotly import plotly_json
+from fits.reports.known_coverage_words import known_coverage_table
 from fits.reports.snapshot import Document, Snapshot
 
 # Longer tables are shown in part; the CSV has all rows.
@@ -138,6 +139,7 @@ def result_page(
         "meaning": words.meaning(snapshot),
         "caution": words.CAUTION,
         "trust": _trust(snapshot),
+        "known_coverage": known_coverage_table(snapshot),
         "settings": _settings(snapshot),
         "result_json": addresses.result_json(),
         "ranking_csv": addresses.ranking_csv(),
