@@ -25,13 +25,11 @@ from fits.management.bench.case import (
 )
 
 DRAWS = 2000
-# The loop takes ten seconds for all 2000; a fifth of them, on both sides, tells the same ratio.
-COMPARED_DRAWS = 400
 
 
 def exact_verdicts(scale: int) -> Case:
     """The same draws of the same curves, one compiled loop against one call a draw."""
-    draws = COMPARED_DRAWS // scale
+    draws = DRAWS // scale
     x, y, errors = made_up(1000)
     fit = fitted(validated_data(x, y, errors=errors))
     curves = [fit.coordinates.of(fit.whitening.apply(two_peaks(x) * (1.0 + 0.002 * k))) for k in range(50)]
