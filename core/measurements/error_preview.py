@@ -1,11 +1,13 @@
 """What is made of what was said of the errors: their sizes as they are drawn, and what is doubtful about them."""
 
+from collections.abc import Iterator
 from dataclasses import dataclass
 
 import numpy as np
 
+from core.measurements.error_doubts import doubt_of_estimates, doubt_of_shared
 from fits.engine.data import Data, ErrorSource, FloatArray
-from fits.engine.error_checks import shared_sizes, sizes_disagree
+from fits.engine.error_checks import root_mean_square
 from fits.engine.error_size import MINIMUM_FREEDOM, ErrorSize
 from fits.engine.errors import error_model_of
 from fits.engine.observation import interval_of
@@ -51,8 +53,10 @@ def error_preview(data: Data) -> ErrorPreview:
     variance = own**2
     for column in data.shared.values():
         variance = variance + column**2
-    shared = shared_sizes(data.shared, own)
-    return ErrorPreview(np.sqrt(variance), sizes, shared, (*_on_sizes(sizes), *_on_shared(shared)))
+    shared = {name: root_mean_square(column) for name, column in data.shared.items()}
+    typical = root_mean_square(own)
+    ratios = {name: size / typical for name, size in shared.items()}
+    return ErrorPreview(np.sqrt(variance), sizes, ratios, tuple(_doubts(sizes, shared, typical)))
 
 
 def _estimated(data: Data) -> tuple[FloatArray, tuple[ErrorSize, ...]]:
@@ -65,26 +69,9 @@ def _estimated(data: Data) -> tuple[FloatArray, tuple[ErrorSize, ...]]:
     return own.standard_errors, model.sizes
 
 
-def _on_sizes(sizes: tuple[ErrorSize, ...]) -> tuple[Doubt, ...]:
-    if not sizes_disagree(sizes):
-        return ()
-    return (
-        Doubt(
-            "sizes-differ",
-            "The estimates of the error size differ by more than 20 %. If that from the leftover is the largest, the "
-            "data hold structure finer than the resolution, or errors of neighbouring points are correlated; if that "
-            "from first differences is, the curve changes too much from point to point for it.",
-        ),
-    )
-
-
-def _on_shared(shared: dict[str, float]) -> tuple[Doubt, ...]:
-    return tuple(
-        Doubt(
-            "shared-larger",
-            f"The shared error “{name}” is {ratio:.3g} times as large as the errors of the points "
-            "(root-mean-square): along its shape the data will hardly tell curves apart.",
-        )
-        for name, ratio in shared.items()
-        if ratio > 1.0
-    )
+def _doubts(sizes: tuple[ErrorSize, ...], shared: dict[str, float], own: float) -> Iterator[Doubt]:
+    if said := doubt_of_estimates(sizes):
+        yield Doubt("estimates-disagree", said)
+    for name, size in shared.items():
+        if said := doubt_of_shared(f"The shared error {name}", size, own):
+            yield Doubt("shared-larger", said)

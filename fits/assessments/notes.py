@@ -8,11 +8,11 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from enum import StrEnum
 
-import numpy as np
-
+from core.measurements.error_doubts import doubt_of_estimates, doubt_of_shared
 from fits.engine.counts import relative_change
 from fits.engine.data import Axis, ErrorSource, FloatArray
-from fits.engine.error_size import ErrorSize, SizeSource
+from fits.engine.error_checks import root_mean_square
+from fits.engine.error_size import ErrorSize
 from fits.engine.resolution import feature_width
 from fits.engine.result import CurveVerdict, Result
 from fits.engine.settings import RadiusKind
@@ -25,8 +25,6 @@ LEFTOVER_TOO_SMALL = 0.99
 GRID_TOO_COARSE = 0.05
 FINER_THAN_RESOLUTION = 0.1
 # … and only where it would show in the leftover: more than one standard deviation of its χ².
-# Estimates of one error size may differ by this share of the smaller.
-ESTIMATES_DISAGREE = 0.2
 
 
 class NoteCode(StrEnum):
@@ -143,44 +141,17 @@ def _on_the_errors(result: Result) -> Iterator[Note]:
     yield from _on_shared_errors(result)
 
 
-_IN_WORDS = {
-    SizeSource.LEFTOVER: "the leftover",
-    SizeSource.FIRST_DIFFERENCES: "differences of neighbours",
-    SizeSource.SECOND_DIFFERENCES: "second differences",
-}
-
-
 def _on_the_estimates(sizes: tuple[ErrorSize, ...]) -> Iterator[Note]:
     """Estimates of one σ that look at different things."""
-    if not sizes:
-        return
-    ordered = sorted(sizes, key=lambda size: size.sigma)
-    if ordered[-1].sigma <= (1.0 + ESTIMATES_DISAGREE) * ordered[0].sigma:
-        return
-    found = ", ".join(
-        f"{size.sigma:.3g} ± {size.standard_error:.2g} from {_IN_WORDS[size.source]}" for size in sizes
-    )
-    if ordered[-1].source is SizeSource.LEFTOVER:
-        reading = (
-            "Neighbouring points differ by less than the leftover: there is structure finer than the resolution, or "
-            "neighbours share part of their errors"
-        )
-    else:
-        reading = (
-            "Neighbouring points differ by more than the leftover: the curve changes much from one point to the "
-            "next, or a few points are far off"
-        )
-    yield Note(
-        NoteCode.ESTIMATES_DISAGREE,
-        f"Estimates of the error size differ by more than {100 * ESTIMATES_DISAGREE:g} %: {found}. {reading}.",
-    )
+    if said := doubt_of_estimates(sizes):
+        yield Note(NoteCode.ESTIMATES_DISAGREE, said)
 
 
 def _on_shared_errors(result: Result) -> Iterator[Note]:
     whitening = result.fit.whitening
     if not isinstance(whitening, SharedErrors):
         return
-    own = _root_mean_square(whitening.own.standard_errors)
+    own = root_mean_square(whitening.own.standard_errors)
     columns = {f"The shared error {name}": column for name, column in result.data.shared.items()}
     if result.data.calibration:
         fraction = result.data.calibration
@@ -188,14 +159,8 @@ def _on_shared_errors(result: Result) -> Iterator[Note]:
             result.seen, result.data
         )
     for name, column in columns.items():
-        size = _root_mean_square(column)
-        if size > own:
-            yield Note(
-                NoteCode.SHARED_LARGER,
-                f"{name} is larger than the errors of the points ({size:.3g} against {own:.3g}, root-mean-square). It "
-                "moves all points together: curves that differ by such a move are hardly told apart, while residuals "
-                "scatter less than the bars drawn at the points.",
-            )
+        if said := doubt_of_shared(name, root_mean_square(column), own):
+            yield Note(NoteCode.SHARED_LARGER, said)
 
 
 def _on_the_radii(result: Result) -> Iterator[Note]:
@@ -246,10 +211,6 @@ def _unjudged(verdict: CurveVerdict, result: Result) -> float:
 
 def _each(sizes: dict[str, float]) -> str:
     return "; ".join(f"{name}, {size:.2g}" for name, size in sizes.items())
-
-
-def _root_mean_square(values: FloatArray) -> float:
-    return float(np.sqrt(np.mean(values**2)))
 
 
 def _ends(values: FloatArray) -> tuple[float, float]:

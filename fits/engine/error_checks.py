@@ -1,6 +1,6 @@
 """What makes stated or estimated errors doubtful, as numbers; words are made of them elsewhere."""
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Sequence
 
 import numpy as np
 
@@ -17,11 +17,6 @@ def sizes_disagree(sizes: Sequence[ErrorSize]) -> bool:
     return len(found) > 1 and max(found) > (1.0 + SIZES_AGREE_WITHIN) * min(found)
 
 
-def shared_sizes(shared: Mapping[str, FloatArray], own: FloatArray) -> dict[str, float]:
-    """Each shared error over the points' own errors, shape (n,), both root-mean-square."""
-    size = _root_mean_square(own)
-    return {name: _root_mean_square(column) / size for name, column in shared.items()}
-
-
-def _root_mean_square(values: FloatArray) -> float:
+def root_mean_square(values: FloatArray) -> float:
+    """Of errors along x: their typical size."""
     return float(np.sqrt(np.mean(values**2)))

@@ -21,6 +21,7 @@ from core.theories.models import Theory
 from core.theories.services import draft_curve, submit_curve
 from fits.assessments.pipeline import compute
 from fits.assessments.services import request_assessment
+from fits.engine.counts import mean_stabilised
 from tests.assessments.conftest import SETTINGS
 from tests.conftest import npy, power
 
@@ -179,8 +180,8 @@ def test_curves_are_drawn_on_the_scale_of_stabilised_counts(
     assessment = request_assessment(user=lead, release=release, curves=[curve], settings=SETTINGS, seed=1)
     detail = compute(assessment, lambda stage, fraction: None).detail
     drawn = detail["curves"][0]["on_grid"]
-    expected = 2.0 * np.sqrt(50.0 * power(np.array(drawn["x"])) + 0.375)
-    assert drawn["y"] == pytest.approx(expected, rel=1e-3)
+    expected = mean_stabilised(50.0 * power(np.array(drawn["x"])))
+    assert drawn["y"] == pytest.approx(expected, rel=1e-4)
     assert detail["data"]["y"] == pytest.approx(2.0 * np.sqrt(COUNTS["y"] + 0.375))
     assert detail["data"]["error"] == pytest.approx(np.ones(POINTS))
 

@@ -3,8 +3,8 @@
 import numpy as np
 import pytest
 
-from core.measurements.reading.limits import WINDOWS_TABLE
 from core.measurements.reading.apart import read_windows_apart
+from core.measurements.reading.limits import WINDOWS_TABLE
 from core.measurements.reading.windows import read_windows, windows_of
 from core.user_error import UserError
 from tests.measurements.test_reading_covariance import npy, npy_with_header, text

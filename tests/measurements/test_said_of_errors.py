@@ -277,7 +277,7 @@ def test_the_preview_shows_three_estimates_with_their_errors(
     page = page_of(drafted(measurement, lead, PLAIN, said=SaidOfErrors.ONE_SIZE), signed_in(lead))
     for words in ("leftover", "first differences", "second differences", "standard error"):
         assert words in page
-    assert "sizes-differ" not in page
+    assert "estimates-disagree" not in page
 
 
 def test_the_preview_warns_of_shared_errors_above_those_of_the_points(
@@ -285,8 +285,8 @@ def test_the_preview_warns_of_shared_errors_above_those_of_the_points(
 ) -> None:
     content = table(x=X, y=Y, error=0.5, shared_baseline=2.0)
     page = page_of(drafted(measurement, lead, content), signed_in(lead))
-    assert 'data-code="shared-larger"' in page
-    assert "4 times as large" in page
+    assert f"{reverse('reports:explained')}#shared-larger" in page
+    assert "2 against 0.5" in page
 
 
 def test_the_preview_says_how_counts_are_judged(

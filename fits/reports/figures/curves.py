@@ -63,8 +63,8 @@ def _scale(snapshot: Snapshot) -> str:
     if snapshot.detail["data"].get("scale") != "stabilised counts":
         return ""
     return (
-        " Counts v, the fit and the curves are drawn as 2√(v + 3/8), the scale on which they are judged: there every "
-        "count has an error of 1."
+        " Counts v are drawn as 2√(v + 3/8), the scale on which they are judged and have errors of 1, and the fit and "
+        "the curves as the mean of that."
     )
 
 
