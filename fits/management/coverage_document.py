@@ -22,7 +22,7 @@ NOTES = (
     "have finer structure as well, which an estimate of the errors takes for error: the sets come out too large, "
     "not too small. They stand below the others and count in no average.",
     f"Wrong curves are wrong about the three peaks. Sizes, for {STATED_FOR_POINTS} points; they go with 1/√n, so that "
-    "the misfit is about 12 in χ² at every n: "
+    "the misfit is about 12 in χ² at every n (about 4 where errors are correlated): "
     + "; ".join(f"{kind.value}: {words}" for kind, words in WRONG_IN_WORDS.items())
     + ".",
     "Default resolution, monotone shrinkage, errors of 1. Estimated: σ from the leftover. Correlated: 0.5 to the power "

@@ -30,14 +30,14 @@ def test_the_table_is_that_of_this_engine_and_whole() -> None:
 
 @pytest.mark.parametrize("name", ["exact", "scales"])
 def test_the_exact_sets_hold_the_truth_as_often_as_they_say(name: str) -> None:
-    """In each setting within three simulation errors, but for the one or two of 216 that chance throws further."""
+    """In each setting within three simulation errors, but for the one of 216 that chance may throw further."""
     off = []
     for cell in RESOLVED:
         for level, share in zip(TABLE["levels"], cell["held"][name], strict=True):
             deviation = (share - level) / simulation_error(level, TABLE["repeats"])
             if abs(deviation) > 3.0:
                 off.append((cell["errors"], cell["points"], cell["truth"], level, round(deviation, 2)))
-    assert len(off) <= 2, off
+    assert len(off) <= 1, off
     assert all(abs(deviation) < 4.0 for *_, deviation in off), off
 
 
