@@ -2,6 +2,7 @@
 
 import multiprocessing
 import os
+import signal
 from collections.abc import Callable, Iterator, Sequence
 from concurrent.futures import ProcessPoolExecutor, as_completed
 from typing import TypeVar
@@ -37,9 +38,16 @@ def in_parallel(
         places = {pool.submit(work, piece): place for place, piece in enumerate(pieces)}
         for future in as_completed(places):
             yield places[future], future.result()
+    except BaseException:
+        # Whoever breaks off does not want to wait for what is begun.
+        for process in multiprocessing.active_children():
+            process.terminate()
+        raise
     finally:
         pool.shutdown(cancel_futures=True)
 
 
 def _one_thread() -> None:
+    # Ctrl-C reaches every process of a terminal; the first one ends the others.
+    signal.signal(signal.SIGINT, signal.SIG_IGN)
     threadpool_limits(limits=1)

@@ -106,3 +106,17 @@ def test_a_progress_bar_is_for_terminals_only(stream: Callable[[], io.StringIO],
     bar.close()
     assert ("1 of 2 settings" in out.getvalue()) is is_shown
     assert bool(out.getvalue()) is is_shown
+
+
+def test_breaking_off_ends_in_one_line_and_writes_nothing(
+    capsys: Output, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def break_off(*args: object, **options: object) -> None:
+        raise KeyboardInterrupt
+
+    monkeypatch.setattr("fits.management.in_parallel.threadpool_limits", break_off)
+    with pytest.raises(SystemExit) as end:
+        call_command("coverage", *FEW, f"--json={tmp_path / 'coverage.json'}")
+    assert end.value.code == 130
+    assert len(capsys.readouterr().err.strip().splitlines()) == 1
+    assert not list(tmp_path.iterdir())

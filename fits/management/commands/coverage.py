@@ -17,6 +17,8 @@ from fits.management.progress_bar import ProgressBar
 
 # Half of what an assessment draws by default: the quantiles are a little less certain, which flatters no set.
 DRAWS = 1000
+# What shells say of a command that Ctrl-C ended.
+INTERRUPTED = 130
 
 
 class Command(FileCommand):
@@ -44,7 +46,11 @@ class Command(FileCommand):
         if options["seed"] < 0:
             self.refuse("--seed: at least 0")
         settings = Settings(levels=DEFAULT_LEVELS, draws=options["draws"])
-        found = _run(_chosen(options), options, settings)
+        try:
+            found = _run(_chosen(options), options, settings)
+        except KeyboardInterrupt:
+            self.stderr.write("coverage: broken off, nothing is written")
+            sys.exit(INTERRUPTED)
         if options["json"]:
             text = coverage_json(coverage_document(found, seed=options["seed"], settings=settings))
             if options["json"] == "-":
