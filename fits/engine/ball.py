@@ -14,7 +14,8 @@ import numpy as np
 import scipy.special
 
 from fits.engine.data import FloatArray
-from fits.engine.draws import Noise, conditional_statistics, statistic_of, statistics
+from fits.engine.draws import Noise, conditional_statistics, statistics
+from fits.engine.kernels import statistic_of
 from fits.engine.settings import Shrinkage
 from fits.engine.shrinkage import Shrunk
 

@@ -4,10 +4,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from fits.engine.compiled import compiled
 from fits.engine.data import FloatArray
+from fits.engine.kernels import write_statistics
 from fits.engine.settings import Shrinkage
-from fits.engine.shrinkage import WORK_ROWS, loss_risk_and_tau_squared, minimise_risk
 
 
 @dataclass(frozen=True, eq=False)
@@ -70,41 +69,8 @@ def _run(
 ) -> FloatArray:
     found = np.empty(noise.draws)
     nested = shrinkage is Shrinkage.NESTED
-    _statistics(truth, noise.normal, scales, variances, noise.freedom, nested, found)
+    write_statistics(truth, noise.normal, scales, variances, noise.freedom, nested, found)
     return found
-
-
-@compiled
-def statistic_of(loss: float, risk: float, tau_squared: float) -> float:
-    """(loss − R)/τ; where τ vanishes, its limit."""
-    if tau_squared > 0.0:
-        return float((loss - risk) / np.sqrt(tau_squared))
-    if loss > risk:
-        return np.inf
-    return -np.inf if loss < risk else 0.0
-
-
-@compiled
-def _statistics(
-    truth: FloatArray,
-    normal: FloatArray,
-    scales: FloatArray,
-    variances: FloatArray,
-    freedom: float,
-    nested: bool,
-    found: FloatArray,
-) -> None:
-    functions = truth.size
-    z = np.empty(functions)
-    factors = np.empty(functions)
-    work = np.empty((WORK_ROWS, functions))
-    for draw in range(normal.shape[0]):
-        v = variances[draw]
-        for j in range(functions):
-            z[j] = truth[j] + scales[draw] * normal[draw, j]
-        minimise_risk(z, v, nested, factors, work)
-        loss, risk, tau_squared = loss_risk_and_tau_squared(z, truth, v, freedom, factors)
-        found[draw] = statistic_of(loss, risk, tau_squared)
 
 
 def warm_up() -> None:
