@@ -9,6 +9,8 @@ from django.core.files import File
 from core.measurements.models import Measurement, Release
 from core.measurements.reading.limits import MAXIMUM_HEADER_LENGTH
 from core.measurements.reading.roles import SHARED, UNUSED
+from core.measurements.said_of_errors import SENTENCES, SaidOfErrors
+from core.measurements.stored_release import said_of
 
 SHARED_CHOICE = "shared"
 ROLE_CHOICES = (
@@ -49,34 +51,118 @@ class MeasurementForm(forms.ModelForm):  # type: ignore[type-arg]
             "name": "For example: surface seiche power against frequency.",
             "x_name": "For example: frequency.",
             "x_unit": "For example: cycles per hour.",
-            "axis": "What the resolution is even on. It is settled with the first release.",
+            "axis": "What the resolution is even on. Linear: a feature is as wide, in units of x, wherever it stands. "
+            "Logarithmic: it spans the same ratio of x, as in spectra over decades; every x must be above 0. "
+            "It is settled with the first release.",
         }
 
 
-class UploadForm(forms.Form):
-    """A data table, and a covariance where there is one."""
+def errors_field(has_covariance: bool | None = None) -> forms.ChoiceField:
+    """Where the errors come from; whether there is a covariance is not known yet, or narrows the choice."""
+    left_out = {None: (), True: (SaidOfErrors.COLUMN,), False: (SaidOfErrors.COVARIANCE,)}[has_covariance]
+    return forms.ChoiceField(
+        label="Where the errors come from",
+        choices=[(said.value, words) for said, words in SENTENCES.items() if said not in left_out],
+        widget=forms.RadioSelect,
+        initial=SaidOfErrors.COLUMN.value,
+        required=False,
+    )
+
+
+def calibration_field() -> forms.FloatField:
+    """How well the scale of y is known, in percent."""
+    return forms.FloatField(
+        label="Scale known to, in %",
+        required=False,
+        min_value=0.0,
+        validators=[_below_100],
+        widget=forms.NumberInput(attrs={"step": "any"}),
+        help_text="A common factor on all of y that is known only so well, as the gain of an instrument. It is taken "
+        "of each curve that is judged, never of the data. Empty: exact.",
+        error_messages={"invalid": "Give a number, as 5 for 5 %."},
+    )
+
+
+def _below_100(percent: float) -> None:
+    if not percent < 100.0:
+        raise forms.ValidationError("Give less than 100 %.")
+
+
+class SaidForm(forms.Form):
+    """What forms that speak of errors have in common; their fields are `errors_from` and `scale_percent`."""
+
+    @property
+    def said(self) -> SaidOfErrors | None:
+        """Where the errors come from; None where nothing was said."""
+        chosen = self.cleaned_data["errors_from"]
+        return SaidOfErrors(chosen) if chosen else None
+
+    @property
+    def calibration(self) -> float:
+        """As a fraction."""
+        return float(self.cleaned_data["scale_percent"] or 0.0) / 100.0
+
+
+class UploadForm(SaidForm):
+    """A data table, what is to be said of its errors, and the files that go with it."""
 
     table = UploadField(
         label="Data table",
-        help_text="Text with columns x, y and error (or lo and hi for bins), separated by commas, semicolons, "
+        help_text="Text with columns x, y and error (lo and hi for bins, shared:name for a shared error), separated "
+        "by commas, semicolons, "
         "tabs or blanks; lines that start with # are skipped. Up to 50 MB and a million rows.",
     )
+    errors_from = errors_field()
+    scale_percent = calibration_field()
     covariance = UploadField(
         label="Covariance",
         required=False,
         help_text="n × n numbers as .npy or text, where errors are correlated. It replaces the error column.",
     )
+    windows = UploadField(
+        label="Windows",
+        required=False,
+        help_text="Where each point sees a weighted stretch of the curve: numbers as .npy or text, the first row the "
+        "x of a grid, then a row of weights on it for each point.",
+    )
     note = forms.CharField(
         label="What is new in it", required=False, max_length=2000, widget=forms.Textarea(attrs={"rows": 3})
     )
 
+    @property
+    def has_more(self) -> bool:
+        """Whether the fields that few need are to be seen: they were used, or a fault lies in them."""
+        return self.is_bound and (
+            any(name in self.errors for name in ("covariance", "scale_percent", "windows"))
+            or bool(self.data.get("scale_percent"))
+        )
 
-class ColumnsForm(forms.Form):
-    """What each column of a draft is."""
+    def clean(self) -> dict[str, Any]:
+        """A covariance that is spoken of must be there; a file that is there speaks for itself."""
+        cleaned = super().clean() or self.cleaned_data
+        has_file = bool(cleaned.get("covariance"))
+        if (
+            cleaned.get("errors_from") == SaidOfErrors.COVARIANCE
+            and not has_file
+            and "covariance" not in self.errors
+        ):
+            self.add_error("covariance", "Choose the file that holds it.")
+        if cleaned.get("errors_from") == SaidOfErrors.COLUMN and has_file:
+            cleaned["errors_from"] = SaidOfErrors.COVARIANCE.value
+        return cleaned
+
+
+class ColumnsForm(SaidForm):
+    """What each column of a draft is, and where its errors come from."""
 
     def __init__(self, release: Release, *args: Any, **kwargs: Any) -> None:
         super().__init__(*args, **kwargs)
         self.release = release
+        has_covariance = release.variances is not None
+        self.fields["errors_from"] = errors_field(has_covariance)
+        self.fields["errors_from"].initial = said_of(release).value
+        self.fields["scale_percent"] = calibration_field()
+        self.fields["scale_percent"].initial = round(100.0 * release.calibration, 10) or None
         for index, column in enumerate(release.columns):
             title = column["header"] or f"column {index + 1}"
             is_shared = column["role"].startswith(SHARED)

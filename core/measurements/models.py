@@ -53,10 +53,10 @@ class Measurement(models.Model):
 
 
 class ReleaseManager(models.Manager["Release"]):
-    """Leaves a covariance, which can be 200 MB, in the database until it is asked for."""
+    """Leaves covariances and windows, of up to 200 MB, in the database until they are asked for."""
 
     def get_queryset(self) -> models.QuerySet["Release"]:
-        return super().get_queryset().defer("covariance")
+        return super().get_queryset().defer("covariance", "windows")
 
 
 class Release(models.Model):
@@ -67,6 +67,12 @@ class Release(models.Model):
     class State(models.TextChoices):
         DRAFT = "draft", "draft"
         PUBLISHED = "published", "published"
+
+    class ErrorSource(models.TextChoices):
+        GIVEN = "given", "given"
+        ESTIMATE = "estimate", "of unknown size"
+        COUNTS = "counts", "those of counts"
+        PROFILE = "profile", "changing along x"
 
     measurement = models.ForeignKey(Measurement, on_delete=models.CASCADE, related_name="releases")
     number = models.PositiveIntegerField(null=True, blank=True)
@@ -80,6 +86,14 @@ class Release(models.Model):
     covariance = models.BinaryField(null=True, blank=True)
     # Its diagonal, for drawing.
     variances = models.BinaryField(null=True, blank=True)
+    # Where the errors come from; an error column is relative where their size is to be estimated.
+    error_source = models.CharField(max_length=8, choices=ErrorSource.choices, default=ErrorSource.GIVEN)
+    # The fraction to which the scale of y is known, 0 where it is exact.
+    calibration = models.FloatField(default=0.0)
+    # How the points see the curve, as one .npy of shape (points + 1, grid): the grid of x, then weights point by point.
+    windows = models.BinaryField(null=True, blank=True)
+    windows_name = models.CharField(max_length=200, blank=True)
+    windows_sha256 = models.CharField(max_length=64, blank=True)
     file_name = models.CharField(max_length=200)
     file_sha256 = models.CharField(max_length=64)
     covariance_name = models.CharField(max_length=200, blank=True)
@@ -104,6 +118,10 @@ class Release(models.Model):
                 | models.Q(covariance__isnull=False, variances__isnull=False),
                 name="variances_are_those_of_the_covariance",
             ),
+            models.CheckConstraint(
+                condition=models.Q(calibration__gte=0.0, calibration__lt=1.0),
+                name="calibration_is_a_fraction",
+            ),
         )
 
     def __str__(self) -> str:
@@ -111,6 +129,11 @@ class Release(models.Model):
 
     def get_absolute_url(self) -> str:
         return reverse("measurements:release", args=[self.pk])
+
+    @property
+    def has_windows(self) -> bool:
+        """Whether the points see the curve through windows, told without fetching them."""
+        return bool(self.windows_sha256)
 
     def save(self, *args: Any, **kwargs: Any) -> None:
         """Refuse to change what has been published."""

@@ -14,6 +14,7 @@ from fits.engine.data import Data, FloatArray
 MAXIMUM_DRAWN = 2000
 INK, DATA, ERROR, GRID = "#17212b", "#3b444d", "#9aa3ab", "#e4e7ea"
 CURVES = ("#175c8f", "#a8450b", "#2f6b3c", "#7a3d7a")
+BAR = {"color": ERROR, "thickness": 1, "width": 0}
 FONT = {"family": "system-ui, -apple-system, 'Segoe UI', Roboto, sans-serif", "size": 13, "color": INK}
 
 
@@ -28,14 +29,21 @@ class Series:
 
 @dataclass(frozen=True, eq=False)
 class PreviewFigure:
-    """What is drawn: points with standard errors where there are data, and a line for each curve."""
+    """What is drawn: points with standard errors, or bars over bins [low, high], and a line for each curve."""
 
     x_label: str
     y_label: str
     log_x: bool
     data: Series | None = None
     error: FloatArray | None = None
+    bins: tuple[FloatArray, FloatArray] | None = None
     curves: Sequence[Series] = field(default_factory=tuple)
+
+    @property
+    def bars(self) -> str:
+        """What its bars are, in words."""
+        words = "bars of one standard error."
+        return words if self.bins is None else f"{words} Each point is the mean over its horizontal bar."
 
     @property
     def is_thinned(self) -> bool:
@@ -44,7 +52,12 @@ class PreviewFigure:
 
 
 def preview_figure(
-    measurement: Measurement, data: Data | None, *, data_name: str = "data", curves: Sequence[Series] = ()
+    measurement: Measurement,
+    data: Data | None,
+    errors: FloatArray | None = None,
+    *,
+    data_name: str = "data",
+    curves: Sequence[Series] = (),
 ) -> PreviewFigure:
     """The figure of a release, a draft or curves of this measurement."""
     return PreviewFigure(
@@ -52,26 +65,17 @@ def preview_figure(
         y_label=measurement.y_label,
         log_x=measurement.axis == Axis.LOG,
         data=None if data is None else Series(data_name, data.x, data.y),
-        error=None if data is None else standard_errors(data),
+        error=errors,
+        bins=None if data is None or data.low is None or data.high is None else (data.low, data.high),
         curves=curves,
     )
-
-
-def standard_errors(data: Data) -> FloatArray | None:
-    """One standard error for each point, all causes together; None where none is given."""
-    if data.errors is None:
-        return None
-    variance = data.errors**2
-    for shared in data.shared.values():
-        variance = variance + shared**2
-    return np.asarray(np.sqrt(variance), dtype=np.float64)
 
 
 def plotly_json(figure: PreviewFigure) -> dict[str, Any]:
     """The figure as plotly.js takes it."""
     traces = [_line(curve, CURVES[index % len(CURVES)]) for index, curve in enumerate(figure.curves)]
     if figure.data is not None:
-        traces.insert(0, _points(figure.data, figure.error))
+        traces.insert(0, _points(figure.data, figure.error, figure.bins))
     return {
         "data": traces,
         "layout": {
@@ -100,7 +104,9 @@ def _axis(label: str) -> dict[str, Any]:
     }
 
 
-def _points(data: Series, error: FloatArray | None) -> dict[str, Any]:
+def _points(
+    data: Series, error: FloatArray | None, bins: tuple[FloatArray, FloatArray] | None
+) -> dict[str, Any]:
     kept = drawn(data.x.size)
     trace: dict[str, Any] = {
         "type": "scatter",
@@ -112,7 +118,11 @@ def _points(data: Series, error: FloatArray | None) -> dict[str, Any]:
     }
     if error is not None:
         bars = {"type": "data", "array": error[kept].tolist()}
-        trace["error_y"] = bars | {"color": ERROR, "thickness": 1, "width": 0}
+        trace["error_y"] = bars | BAR
+    if bins is not None:
+        low, high = (edge[kept] for edge in bins)
+        reach = {"array": (high - data.x[kept]).tolist(), "arrayminus": (data.x[kept] - low).tolist()}
+        trace["error_x"] = {"type": "data", "symmetric": False} | reach | BAR | {"color": DATA}
     return trace
 
 

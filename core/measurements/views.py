@@ -66,15 +66,19 @@ def upload(request: SignedInRequest, pk: int) -> HttpResponse:
     form = UploadForm(request.POST or None, request.FILES or None)
     fault = None
     if form.is_valid():
-        table, covariance = form.cleaned_data["table"], form.cleaned_data["covariance"]
+        table, covariance, windows = (form.cleaned_data[name] for name in ("table", "covariance", "windows"))
         try:
             release = services.draft_release(
                 user=request.user,
                 measurement=measurement,
                 content=table.read(),
                 file_name=table.name,
+                said=form.said,
+                calibration=form.calibration,
                 covariance_content=covariance.read() if covariance else None,
                 covariance_name=covariance.name if covariance else "",
+                windows_content=windows.read() if windows else None,
+                windows_name=windows.name if windows else "",
                 note=form.cleaned_data["note"],
             )
         except UserError as error:
@@ -101,7 +105,7 @@ def release(request: SignedInRequest, pk: int) -> HttpResponse:
     fault = None
     if form.is_valid():
         try:
-            services.map_columns(row, form.roles)
+            services.map_columns(row, form.roles, said=form.said, calibration=form.calibration)
         except UserError as error:
             fault = error
         else:

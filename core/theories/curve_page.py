@@ -2,6 +2,7 @@
 
 from dataclasses import dataclass
 
+from core.measurements.error_preview import error_preview
 from core.measurements.models import Release
 from core.measurements.preview_figure import PreviewFigure, Series, preview_figure
 from core.measurements.preview_table import PreviewTable, preview_table
@@ -29,9 +30,11 @@ def curve_page(curve: Curve) -> CurvePage:
     published = measurement.releases.filter(state=Release.State.PUBLISHED)
     release = published.select_related("measurement").order_by("-number").first()
     data = None if release is None else data_to_draw(release)
+    errors = None if data is None else error_preview(data).standard_errors
     figure = preview_figure(
         measurement,
         data,
+        errors,
         data_name=str(release) if release else "",
         curves=[Series(str(curve), line.x, line.y)],
     )
@@ -40,5 +43,5 @@ def curve_page(curve: Curve) -> CurvePage:
         figure=figure,
         table=preview_table(titles, from_bytes(curve.table)),
         release=release,
-        doubts=() if data is None else tuple(doubts(line, data)),
+        doubts=() if data is None else tuple(doubts(line, data, errors)),
     )

@@ -2,7 +2,6 @@
 
 import numpy as np
 
-from core.measurements.preview_figure import standard_errors
 from fits.engine.data import CurveTable, Data, FloatArray
 from fits.engine.interpolation import curve_at_data
 from fits.engine.observation import observation_of
@@ -15,15 +14,15 @@ COARSE = 0.05
 ROUNDING = 1e-9
 
 
-def doubts(curve: CurveTable, data: Data) -> list[str]:
-    """One sentence for each doubt: range, size, grid."""
+def doubts(curve: CurveTable, data: Data, errors: FloatArray | None) -> list[str]:
+    """One sentence for each doubt: range, size, grid. errors: in units of y, shape (n,)."""
     low, high = observation_of(data).reach
     if curve.x[-1] < low or curve.x[0] > high:
         return [
             f"Your curve covers {_stretch(curve.x[0], curve.x[-1])}, the data {_stretch(low, high)}: "
             "they have no x in common. Check the unit of x."
         ]
-    return [*_missing(curve, low, high), *_odd_size(curve, data), *_coarse_grid(curve, data)]
+    return [*_missing(curve, low, high), *_odd_size(curve, data), *_coarse_grid(curve, data, errors)]
 
 
 def _missing(curve: CurveTable, low: float, high: float) -> list[str]:
@@ -58,8 +57,7 @@ def _odd_size(curve: CurveTable, data: Data) -> list[str]:
     return [f"Your curve is typically {_times(1.0 / ratio)} times as small as the data. Check the unit of y."]
 
 
-def _coarse_grid(curve: CurveTable, data: Data) -> list[str]:
-    errors = standard_errors(data)
+def _coarse_grid(curve: CurveTable, data: Data, errors: FloatArray | None) -> list[str]:
     try:
         at_data = curve_at_data(curve, observation_of(data), data.axis)
     except InputRefused:

@@ -8,7 +8,8 @@ import scipy.special
 from numpy.typing import NDArray
 
 from fits.assessments.document import drawing_grid
-from fits.engine.data import FloatArray
+from fits.engine.counts import stabilised
+from fits.engine.data import Data, ErrorSource, FloatArray
 from fits.engine.interpolation import curve_on_grid
 from fits.engine.leftover import leftover_residuals
 from fits.engine.ranking import positions
@@ -39,7 +40,9 @@ def detail_document(result: Result) -> dict[str, Any]:
             "error": fit.whitening.standard_errors[drawn].tolist(),
             "fit": result.seen[drawn].tolist(),
             "thinned": drawn.size < result.data.points,
+            "scale": scale_of(result.data),
         },
+        "error_sizes": error_sizes(result),
         "grid": {
             "x": grid.tolist(),
             "fit": (functions_on_grid @ fit.estimate).tolist(),
@@ -66,6 +69,24 @@ def detail_document(result: Result) -> dict[str, Any]:
     }
 
 
+def scale_of(data: Data) -> str:
+    """The scale on which data, fit and curves are judged and drawn."""
+    return "stabilised counts" if data.source is ErrorSource.COUNTS else "given"
+
+
+def error_sizes(result: Result) -> list[dict[str, Any]]:
+    """Every estimate of σ, that which is used first; empty where the errors are known."""
+    return [
+        {
+            "source": size.source.value,
+            "sigma": size.sigma,
+            "standard_error": size.standard_error,
+            "freedom": size.freedom,
+        }
+        for size in result.error_sizes
+    ]
+
+
 def _curve(
     result: Result,
     verdict: CurveVerdict,
@@ -82,6 +103,9 @@ def _curve(
     )[:, :worst]
     values = curve_on_grid(verdict.curve, grid, result.data.axis)
     reached = np.isfinite(values)
+    if result.data.source is ErrorSource.COUNTS:
+        # Between its own points the interpolated line may dip below 0 where nothing was judged.
+        values = stabilised(np.maximum(values, 0.0))
     return {
         "name": verdict.curve.name,
         "at_data": verdict.at_data[drawn].tolist(),

@@ -6,7 +6,7 @@ from typing import Any
 
 from fits.assessments.notes import notes_on
 from fits.engine import VERSION
-from fits.engine.ball import is_inside
+from fits.engine.ball import is_above, is_inside
 from fits.engine.basis import Interval
 from fits.engine.data import Data, ErrorSource, FloatArray
 from fits.engine.leftover import Leftover
@@ -120,11 +120,6 @@ def _inside(result: Result, verdict: CurveVerdict) -> Mapping[str, Mapping[str, 
         sets["exact"][key] = is_above(verdict.p_value.value, radius.level)
         sets["scales"][key] = is_above(verdict.scales.p_value, radius.level)
     return sets
-
-
-def is_above(p_value: float, level: float) -> bool:
-    """p > 1 − α, with α as written: 1 − 0.95 is not 0.05 in floating point."""
-    return p_value > round(1.0 - level, 12)
 
 
 def _leftover(leftover: Leftover | None) -> dict[str, Any] | None:

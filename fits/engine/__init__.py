@@ -6,4 +6,4 @@ standard deviation of (loss − R), T = (d² − R)/τ.
 """
 
 # Part of every fingerprint and result. Raise it with any change that moves a number.
-VERSION = "1.0"
+VERSION = "1.1"

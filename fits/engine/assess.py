@@ -6,11 +6,12 @@ from enum import StrEnum
 
 import numpy as np
 
-from fits.engine.ball import Ball, ball_of, exact_p_value, statistic_at
+from fits.engine.ball import Ball, ball_of
 from fits.engine.counts import on_scale, relative_change, stabilised
 from fits.engine.data import CurveTable, Data, ErrorSource, FloatArray
 from fits.engine.draws import Noise, draw_noise
 from fits.engine.errors import ErrorModel, error_model_of
+from fits.engine.exact import exact_verdict
 from fits.engine.fit import fit_of
 from fits.engine.interpolation import curve_at_data
 from fits.engine.leftover import leftover_of
@@ -141,13 +142,13 @@ def _judge(curve: CurveTable, court: _Court) -> CurveVerdict:
             settings=court.settings,
         )
     own_coordinates = coordinates if own is fit else own.coordinates.of(own.whitening.apply(at_data))
-    squares = (own.z - own_coordinates) ** 2 / own.variance
-    table = court.table if own is fit else scale_table(own.coordinates.functions, own.freedom)
-    statistic = statistic_at(float(np.linalg.norm(own_coordinates - own.estimate)), own.shrunk)
-    scale_free = court.errors.is_one_size and not data.calibration
-    total = own.freedom + float(squares.sum()) if scale_free else None
-    p_value = exact_p_value(
-        own_coordinates, statistic, court.noise, shrinkage=court.settings.shrinkage, total=total
+    exact = exact_verdict(
+        own,
+        own_coordinates,
+        court.noise,
+        court.table if own is fit else scale_table(own.coordinates.functions, own.freedom),
+        shrinkage=court.settings.shrinkage,
+        one_size=court.errors.is_one_size and not data.calibration,
     )
     return CurveVerdict(
         curve=curve,
@@ -156,8 +157,8 @@ def _judge(curve: CurveTable, court: _Court) -> CurveVerdict:
         distance=distance,
         published_entry_level=ball.published_entry_level(distance),
         calibrated_entry_level=ball.calibrated_entry_level(distance),
-        p_value=p_value,
-        scales=table.misfit(squares),
+        p_value=exact.p_value,
+        scales=exact.scales,
         own_basis=own.coordinates.basis,
         own_misfit=own.z - own_coordinates,
         leftover=leftover_of(fit.coordinates, whitened, coordinates),

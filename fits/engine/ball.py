@@ -2,7 +2,8 @@
 
 Published: s² = max(0, R + z_α τ)  (R. Beran, L. Dümbgen, Ann. Statist. 26, 1998). Right for large n only.
 Calibrated: the normal quantile is replaced by that of T' simulated around the centre λ^{1/4} Z; cautious: by the
-larger of that and the quantile around Z. Exact p-value of a curve: T' simulated around the curve itself.
+larger of the quantiles around that centre and around Z, both with three quarters of the chance to miss. Exact p-value
+of a curve: T' simulated around the curve itself.
 """
 
 import math
@@ -20,6 +21,10 @@ from fits.engine.shrinkage import Shrunk
 # λ to this power times Z is what the calibration simulates around: λ Z is too smooth (it misses bias that the
 # truth has), Z too rough. Found by trial.
 CENTRE_POWER = 0.25
+# Truths that fill their coordinates unevenly (one peak as narrow as the resolution) give T' a longer tail than any
+# centre made of Z, in which noise evens them out: there the larger of the two quantiles held the truth in 93 of 100
+# repeats where 95 were due. The cautious ball makes up for that by a smaller chance to miss.
+CAUTIOUS_MISS = 0.75
 
 
 @dataclass(frozen=True)
@@ -86,7 +91,8 @@ def ball_of(
     radii = []
     for level in levels:
         quantile = empirical_quantile(calibration, level)
-        cautious = max(quantile, empirical_quantile(rough, level))
+        higher = 1.0 - CAUTIOUS_MISS * (1.0 - level)
+        cautious = max(empirical_quantile(calibration, higher), empirical_quantile(rough, higher))
         normal = float(scipy.special.ndtri(level))
         radii.append(
             Radius(
@@ -137,3 +143,8 @@ def statistic_at(distance: float, shrunk: Shrunk) -> float:
 def is_inside(distance: float, radius_squared: float) -> bool:
     """Whether a curve at this distance is in a ball; an empty ball (s² ≤ 0) holds nothing."""
     return radius_squared > 0.0 and distance**2 <= radius_squared
+
+
+def is_above(p_value: float, level: float) -> bool:
+    """p > 1 − α, with α as written: 1 − 0.95 is not 0.05 in floating point."""
+    return p_value > round(1.0 - level, 12)

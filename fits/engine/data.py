@@ -6,15 +6,16 @@ from enum import StrEnum
 import numpy as np
 from numpy.typing import NDArray
 
+from fits.engine.covariance import validated_covariance
 from fits.engine.refusal import InputRefused
+from fits.engine.windows import Windows, validated_windows
 
 FloatArray = NDArray[np.float64]
 
 MINIMUM_POINTS = 8
-MAXIMUM_COVARIANCE_POINTS = 5000
-# Rounding may differ between a matrix and its mirror image by this share of the largest entry.
-SYMMETRY_TOLERANCE = 1e-9
-_ROWS_AT_A_TIME = 256
+# At the default resolution these leave 10 degrees of freedom to estimate one size of error from.
+MINIMUM_POINTS_TO_ESTIMATE = 19
+MINIMUM_POINTS_FOR_A_PROFILE = 60
 
 
 class Axis(StrEnum):
@@ -31,14 +32,6 @@ class ErrorSource(StrEnum):
     ESTIMATE = "estimate"  # Σ = σ² diag(r²), σ unknown, r = 1 where no relative errors are given
     COUNTS = "counts"  # y are Poisson counts
     PROFILE = "profile"  # Σ = diag(σ(x)²), a smooth σ(x) estimated from local differences
-
-
-@dataclass(frozen=True, eq=False)
-class Windows:
-    """Each point sees Σ_k weights_ik f(grid_k): grid of shape (g,), increasing; weights of shape (n, g)."""
-
-    grid: FloatArray
-    weights: FloatArray
 
 
 @dataclass(frozen=True, eq=False)
@@ -98,8 +91,8 @@ def validated_data(
 ) -> Data:
     """Check every rule once and return arrays that the kernels can trust.
 
-    Raises InputRefused with field "x", "y", "errors", "covariance", "low" or "shared:NAME" and the index of
-    the first offending point.
+    Raises InputRefused with field "x", "y", "errors", "covariance", "low", "high", "shared:NAME", "windows",
+    "windows:grid" or "calibration", and the index of the first offending point.
     """
     x = _clean("x", x)
     n = x.size
@@ -108,13 +101,22 @@ def validated_data(
             "too-few-points", "x", f"{n} points, at least {MINIMUM_POINTS} are needed", "Add points"
         )
     y = _clean("y", y, n)
+    shared = shared or {}
+    _combined(source, errors=errors, covariance=covariance, shared=shared)
+    _enough_to_estimate(source, n)
     if low is not None or high is not None:
         low, high = _bins(low, high, n)
     if windows is not None:
-        windows = _windows(windows, n, binned=low is not None)
+        if low is not None:
+            remedy = "Give bins or windows, not both"
+            raise InputRefused("bins-and-windows", "windows", "there are bins as well", remedy)
+        windows = validated_windows(windows, n)
     if not 0.0 <= calibration < 1.0:
         raise InputRefused(
-            "calibration", "calibration", "a calibration is a fraction from 0 to 1", "Give 0.02 for 2 %"
+            "calibration",
+            "calibration",
+            f"a calibration of {calibration:g} is no fraction from 0 to below 1",
+            "Give 0.05 for 5 %",
         )
     if float(x.min()) == float(x.max()):
         raise InputRefused("all-x-equal", "x", "all x are equal", "A curve needs at least two different x")
@@ -128,8 +130,8 @@ def validated_data(
         axis=axis,
         source=source,
         errors=_errors(source, errors, covariance, y),
-        covariance=_covariance(covariance, n),
-        shared={name: _clean(f"shared:{name}", column, n) for name, column in (shared or {}).items()},
+        covariance=None if covariance is None else validated_covariance(covariance, n),
+        shared={name: _clean(f"shared:{name}", column, n) for name, column in shared.items()},
         calibration=calibration,
         low=low,
         high=high,
@@ -188,6 +190,50 @@ def _positive(code: str, name: str, values: FloatArray, what: str) -> None:
         )
 
 
+def _combined(
+    source: ErrorSource,
+    *,
+    errors: FloatArray | None,
+    covariance: FloatArray | None,
+    shared: dict[str, FloatArray],
+) -> None:
+    """Refuse whatever is given beside errors that do not take it: it would be ignored in silence."""
+    if source not in (ErrorSource.COUNTS, ErrorSource.PROFILE):
+        return
+    what = (
+        "counts bring their errors with them"
+        if source is ErrorSource.COUNTS
+        else "the errors are estimated along x"
+    )
+    if covariance is not None:
+        remedy = "Leave the covariance out, or say that the errors are given"
+        raise InputRefused(
+            "covariance-unused", "covariance", f"{what}: the covariance would be ignored", remedy
+        )
+    if errors is not None:
+        remedy = "Leave the column out, mark it as not used, or say that the errors are given"
+        raise InputRefused("errors-unused", "errors", f"{what}: the error column would be ignored", remedy)
+    if shared and source is ErrorSource.COUNTS:
+        name = next(iter(shared))
+        reason = f"{what}, and a shared error ({name}) has no place on the scale on which counts are judged"
+        remedy = "Leave the column out; for a scale that is known to a fraction give a calibration"
+        raise InputRefused("shared-unused", f"shared:{name}", reason, remedy)
+
+
+def _enough_to_estimate(source: ErrorSource, n: int) -> None:
+    needed = {
+        ErrorSource.ESTIMATE: (MINIMUM_POINTS_TO_ESTIMATE, "the size of the errors"),
+        ErrorSource.PROFILE: (MINIMUM_POINTS_FOR_A_PROFILE, "a profile of errors along x"),
+    }
+    least, what = needed.get(source, (0, ""))
+    if n < least:
+        reason = f"{what} cannot be estimated from {n} points; {least} are needed"
+        remedy = "Give the errors" + (
+            ", or have one size of error estimated" if source is ErrorSource.PROFILE else ""
+        )
+        raise InputRefused("too-few-points", "x", reason, remedy)
+
+
 def _errors(
     source: ErrorSource, errors: FloatArray | None, covariance: FloatArray | None, y: FloatArray
 ) -> FloatArray | None:
@@ -225,72 +271,3 @@ def _bins(low: FloatArray | None, high: FloatArray | None, n: int) -> tuple[Floa
         reason = f"lo = {low[index]:g} is not below hi = {high[index]:g}"
         raise InputRefused("bin-reversed", "low", reason, "Give lo < hi", index)
     return low, high
-
-
-def _windows(windows: Windows, n: int, *, binned: bool) -> Windows:
-    grid = _clean("windows", windows.grid)
-    weights = np.asarray(windows.weights, dtype=np.float64)
-    if binned:
-        raise InputRefused(
-            "bins-and-windows", "windows", "there are bins as well", "Give bins or windows, not both"
-        )
-    if grid.size < 2 or (np.diff(grid) <= 0.0).any():
-        raise InputRefused("window-grid", "windows", "the grid does not increase", "Sort it, each x once")
-    if weights.shape != (n, grid.size):
-        shape = " × ".join(map(str, weights.shape))
-        reason = f"has shape {shape} for {n} points and a grid of {grid.size}"
-        raise InputRefused("wrong-shape", "windows", reason, f"Give {n} × {grid.size} weights")
-    if not np.isfinite(weights).all():
-        index = int(np.flatnonzero(~np.isfinite(weights).all(axis=1))[0])
-        raise InputRefused("not-finite", "windows", "holds a weight that is not finite", "Correct it", index)
-    empty = np.flatnonzero(~weights.any(axis=1))
-    if empty.size:
-        reason = "all weights of this point are 0: it sees nothing"
-        raise InputRefused("window-empty", "windows", reason, "Leave the point out", int(empty[0]))
-    weights = weights.copy()
-    weights.flags.writeable = False
-    return Windows(grid, weights)
-
-
-def _covariance(covariance: FloatArray | None, n: int) -> FloatArray | None:
-    """Shape, finiteness and symmetry; positive definiteness shows when it is factorised."""
-    if covariance is None:
-        return None
-    matrix = np.asarray(covariance, dtype=np.float64)
-    if matrix.shape != (n, n):
-        reason = f"has shape {' × '.join(map(str, matrix.shape))} for {n} points"
-        raise InputRefused("covariance-shape", "covariance", reason, f"Give {n} × {n} numbers")
-    if n > MAXIMUM_COVARIANCE_POINTS:
-        reason = f"{n} points are more than the {MAXIMUM_COVARIANCE_POINTS} that a covariance may have"
-        raise InputRefused(
-            "covariance-too-large", "covariance", reason, "Thin the data or give an error column"
-        )
-    if not np.isfinite(matrix).all():
-        index = int(np.flatnonzero(~np.isfinite(matrix).all(axis=1))[0])
-        raise InputRefused("not-finite", "covariance", f"row {index + 1} holds a value that is not finite")
-    matrix = matrix.copy()
-    asymmetry = _symmetrise(matrix)
-    if asymmetry > SYMMETRY_TOLERANCE * max(float(matrix.max()), -float(matrix.min())):
-        reason = f"not symmetric: entries differ from their mirror image by up to {asymmetry:.3g}"
-        raise InputRefused("covariance-asymmetric", "covariance", reason, "Give a symmetric matrix")
-    matrix.flags.writeable = False
-    return matrix
-
-
-def _symmetrise(matrix: FloatArray) -> float:
-    """Replace the matrix by its symmetric part; returns the largest asymmetry that it had.
-
-    A block of rows at a time, so that a large matrix is not held several times over.
-    """
-    largest = 0.0
-    for start in range(0, len(matrix), _ROWS_AT_A_TIME):
-        rows, columns = (
-            matrix[start : start + _ROWS_AT_A_TIME, start:],
-            matrix[start:, start : start + _ROWS_AT_A_TIME],
-        )
-        mirrored = columns.T.copy()
-        largest = max(largest, float(np.abs(rows - mirrored).max()))
-        mean = (rows + mirrored) / 2.0
-        rows[:] = mean
-        columns[:] = mean.T
-    return largest

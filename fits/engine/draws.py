@@ -7,7 +7,7 @@ import numpy as np
 from fits.engine.compiled import compiled
 from fits.engine.data import FloatArray
 from fits.engine.settings import Shrinkage
-from fits.engine.shrinkage import minimise_risk, risk_of, tau_squared_of
+from fits.engine.shrinkage import WORK_ROWS, loss_risk_and_tau_squared, minimise_risk
 
 
 @dataclass(frozen=True, eq=False)
@@ -97,17 +97,14 @@ def _statistics(
     functions = truth.size
     z = np.empty(functions)
     factors = np.empty(functions)
-    work = np.empty((3, functions))
+    work = np.empty((WORK_ROWS, functions))
     for draw in range(normal.shape[0]):
         v = variances[draw]
         for j in range(functions):
             z[j] = truth[j] + scales[draw] * normal[draw, j]
         minimise_risk(z, v, nested, factors, work)
-        loss = 0.0
-        for j in range(functions):
-            difference = factors[j] * z[j] - truth[j]
-            loss += difference * difference
-        found[draw] = statistic_of(loss, risk_of(z, v, factors), tau_squared_of(z, v, freedom, factors))
+        loss, risk, tau_squared = loss_risk_and_tau_squared(z, truth, v, freedom, factors)
+        found[draw] = statistic_of(loss, risk, tau_squared)
 
 
 def warm_up() -> None:

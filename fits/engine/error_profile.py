@@ -17,7 +17,6 @@ from fits.engine.error_size import SECOND_DIFFERENCES_FACTOR, second_differences
 from fits.engine.refusal import InputRefused
 
 PARAMETERS = 3
-MINIMUM_POINTS = 60
 _STEPS = 100
 _TOLERANCE = 1e-10
 # A step changes σ by no more than this factor's logarithm, so that scoring cannot run away.
@@ -33,14 +32,7 @@ class ErrorProfile:
 
 
 def error_profile(x: FloatArray, y: FloatArray, interval: Interval) -> ErrorProfile:
-    """Estimate σ(x). Raises InputRefused for fewer than 60 points, and for data without scatter."""
-    if x.size < MINIMUM_POINTS:
-        raise InputRefused(
-            "too-few-points",
-            "errors",
-            f"a profile of errors cannot be estimated from {x.size} points; {MINIMUM_POINTS} are needed",
-            "Give the errors, or have one size of error estimated",
-        )
+    """Estimate σ(x). Raises InputRefused for data without scatter."""
     differences = second_differences(x, y)
     squares = differences.residuals**2
     mean = float(squares.mean())

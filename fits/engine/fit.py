@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from fits.engine.coordinates import coordinates_of
+from fits.engine.coordinates import Coordinates, coordinates_of
 from fits.engine.data import Data, FloatArray
 from fits.engine.leftover import leftover_of
 from fits.engine.result import Fit
@@ -22,9 +22,20 @@ def fit_of(
 ) -> Fit:
     """Coordinates, shrinkage factors and fit of values observed with these errors, shape (n,)."""
     coordinates = coordinates_of(data, whitening, functions=functions)
-    whitened = whitening.apply(observed)
+    return fit_in(coordinates, whitening, whitening.apply(observed), freedom, settings=settings)
+
+
+def fit_in(
+    coordinates: Coordinates,
+    whitening: Whitening,
+    whitened: FloatArray,
+    freedom: float,
+    *,
+    settings: Settings,
+) -> Fit:
+    """The fit of whitened values, shape (n,), in coordinates that are there already."""
     z = coordinates.of(whitened)
-    variance = 1.0 / data.points
+    variance = 1.0 / coordinates.points
     shrunk = shrink(z, variance=variance, freedom=freedom, shrinkage=settings.shrinkage)
     return Fit(
         whitening=whitening,

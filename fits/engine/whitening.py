@@ -23,6 +23,9 @@ class Whitening(Protocol):
     def apply(self, values: FloatArray) -> FloatArray:
         """L⁻¹ values, for shape (n,) or (n, k)."""
 
+    def apply_transposed(self, values: FloatArray) -> FloatArray:
+        """L⁻ᵀ values, for shape (n,) or (n, k)."""
+
     def scaled(self, factor: float) -> "Whitening":
         """The whitening of factor² Σ."""
 
@@ -39,6 +42,9 @@ class IndependentErrors:
     def apply(self, values: FloatArray) -> FloatArray:
         sigma = self.standard_errors
         return np.asarray(values / (sigma if values.ndim == 1 else sigma[:, None]))
+
+    def apply_transposed(self, values: FloatArray) -> FloatArray:
+        return self.apply(values)
 
     def scaled(self, factor: float) -> "IndependentErrors":
         return IndependentErrors(self.standard_errors * factor)
@@ -59,6 +65,10 @@ class CorrelatedErrors:
 
     def apply(self, values: FloatArray) -> FloatArray:
         solved = scipy.linalg.solve_triangular(self.lower, values, lower=True, check_finite=False)
+        return np.asarray(solved, dtype=np.float64)
+
+    def apply_transposed(self, values: FloatArray) -> FloatArray:
+        solved = scipy.linalg.solve_triangular(self.lower, values, trans="T", lower=True, check_finite=False)
         return np.asarray(solved, dtype=np.float64)
 
     def scaled(self, factor: float) -> "CorrelatedErrors":
@@ -88,6 +98,9 @@ class SharedErrors:
 
     def apply(self, values: FloatArray) -> FloatArray:
         return self.correct(self.own.apply(values))
+
+    def apply_transposed(self, values: FloatArray) -> FloatArray:
+        return self.own.apply_transposed(self.correct(values))
 
     def correct(self, values: FloatArray) -> FloatArray:
         """(I + A Aᵀ)^(−1/2) values; the matrix is symmetric."""

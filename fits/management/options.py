@@ -1,8 +1,9 @@
 """The options that commands which compute from files have in common, and what they name, read and checked."""
 
 import hashlib
+import math
 import shlex
-from argparse import ArgumentParser
+from argparse import ArgumentParser, ArgumentTypeError
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
@@ -15,6 +16,7 @@ from core.measurements.reading.names import safe_name
 from core.measurements.reading.release import release_data
 from core.measurements.reading.roles import guess_roles
 from core.measurements.reading.table import Table, read_table
+from core.measurements.reading.windows import read_windows
 from core.user_error import UserError
 from fits.engine import VERSION
 from fits.engine.data import Axis, CurveTable, Data, ErrorSource
@@ -70,7 +72,21 @@ def add_options(parser: ArgumentParser) -> None:
         "--errors",
         choices=[source.value for source in ErrorSource],
         default=ErrorSource.GIVEN.value,
-        help="given; estimate: an error column is relative; counts: y are Poisson counts",
+        help="given: by an error column or a covariance; estimate: one unknown size, to which an error column is "
+        "relative; counts: y are Poisson counts; profile: changing along x, estimated",
+    )
+    parser.add_argument(
+        "--calibration",
+        type=_calibration,
+        default=0.0,
+        metavar="FRACTION",
+        help="fraction to which the scale of y is known, as 0.05; default 0, exact",
+    )
+    parser.add_argument(
+        "--windows",
+        metavar="FILE",
+        help="matrix through which the points see a curve, .npy or text: a row with the x of its grid, then a row of "
+        "weights for each point",
     )
     parser.add_argument("--draws", type=int, default=DEFAULT_DRAWS, help=f"default {DEFAULT_DRAWS}")
     parser.add_argument("--seed", type=_seed, default=1, help="default 1")
@@ -90,7 +106,8 @@ def read_inputs(options: Mapping[str, Any], curve_paths: Sequence[str], *, comma
     table_file = _read(options["data"])
     table = read_table(table_file.content, table_file.name)
     covariance_file = _read(options["covariance"]) if options["covariance"] else None
-    data = _data(table, covariance_file, options)
+    windows_file = _read(options["windows"]) if options["windows"] else None
+    data = _data(table, covariance_file, windows_file, options)
     files = [_read(path) for path in curve_paths]
     curves = tuple(
         read_curve(file.content, file.name, name)
@@ -106,6 +123,9 @@ def read_inputs(options: Mapping[str, Any], curve_paths: Sequence[str], *, comma
             "file_sha256": table_file.sha256,
             "covariance_name": covariance_file.name if covariance_file else "",
             "covariance_sha256": covariance_file.sha256 if covariance_file else "",
+            "windows_name": windows_file.name if windows_file else "",
+            "windows_sha256": windows_file.sha256 if windows_file else "",
+            "calibration": data.calibration,
             "points": data.points,
             "published_at": None,
         },
@@ -123,11 +143,13 @@ def read_inputs(options: Mapping[str, Any], curve_paths: Sequence[str], *, comma
     return Inputs(data, curves, settings, options["seed"], context)
 
 
-def _data(table: Table, covariance: _File | None, options: Mapping[str, Any]) -> Data:
-    matrix = None
+def _data(table: Table, covariance: _File | None, windows: _File | None, options: Mapping[str, Any]) -> Data:
+    matrix = weights = None
     if covariance is not None:
         matrix = read_covariance(covariance.content, covariance.name, len(table.values))
         check_positive_definite(matrix, covariance.name)
+    if windows is not None:
+        weights = read_windows(windows.content, windows.name, len(table.values))
     return release_data(
         table,
         guess_roles(table),
@@ -135,6 +157,9 @@ def _data(table: Table, covariance: _File | None, options: Mapping[str, Any]) ->
         source=ErrorSource(options["errors"]),
         covariance=matrix,
         covariance_name=covariance.name if covariance else "",
+        calibration=options["calibration"],
+        windows=weights,
+        windows_name=windows.name if windows else "",
     )
 
 
@@ -203,12 +228,15 @@ def _settings_context(settings: Settings) -> dict[str, Any]:
 def _command_line(command: str, options: Mapping[str, Any], curve_paths: Sequence[str]) -> str:
     """A command that computes the same again; files by name, since paths are this machine's."""
     words = ["python", "manage.py", command, safe_name(options["data"]), *map(safe_name, curve_paths)]
-    if options["covariance"]:
-        words += ["--covariance", safe_name(options["covariance"])]
+    for name in ("covariance", "windows"):
+        if options[name]:
+            words += [f"--{name}", safe_name(options[name])]
     words += ["--levels", ",".join(f"{level:g}" for level in options["levels"])]
     for name in ("resolution", "feature_width"):
         if options[name] is not None:
             words += [f"--{name.replace('_', '-')}", repr(options[name])]
+    if options["calibration"]:
+        words += ["--calibration", repr(options["calibration"])]
     if options["full"]:
         words.append("--full")
     for name in ("shrinkage", "axis", "errors", "draws", "seed"):
@@ -218,6 +246,16 @@ def _command_line(command: str, options: Mapping[str, Any], curve_paths: Sequenc
 
 def _levels(text: str) -> tuple[float, ...]:
     return tuple(float(part) for part in text.split(","))
+
+
+def _calibration(text: str) -> float:
+    try:
+        calibration = float(text)
+    except ValueError:
+        calibration = math.nan
+    if not 0.0 <= calibration < 1.0:
+        raise ArgumentTypeError(f"{text!r} is no fraction from 0 to below 1; give 0.05 for 5 %")
+    return calibration
 
 
 def _seed(text: str) -> int:

@@ -59,10 +59,14 @@ def make_a_link(page: BrowserPage) -> None:
     page.get_by_role("button", name="Make a link").click()
 
 
-def unfold_everything(page: BrowserPage) -> None:
-    """Open all that is folded."""
-    for fold in page.locator("details").all():
-        fold.evaluate("fold => { fold.open = true; }")
+def unfold_the_numbers(page: BrowserPage) -> None:
+    """Open the table behind a plot."""
+    page.get_by_text("The curve’s numbers").click()
+
+
+def unfold_the_ball(page: BrowserPage) -> None:
+    """Open the shortest of the tables behind a result's charts, which are all made alike."""
+    page.get_by_text("Table: The ball seen from above").click()
 
 
 PAGES = [
@@ -94,7 +98,7 @@ PAGES = [
     Row("new-theory", "theories:new_theory", lambda survey: survey.collaboration.pk),
     Row("edit-theory", "theories:edit_theory", lambda survey: survey.theory.pk),
     Row("new-curve", "theories:new_curve", lambda survey: survey.theory.pk),
-    Row("draft-curve", "theories:curve", lambda survey: survey.draft_curve.pk, then=unfold_everything),
+    Row("draft-curve", "theories:curve", lambda survey: survey.draft_curve.pk, then=unfold_the_numbers),
     Row("curve", "theories:curve", lambda survey: survey.curve.pk),
     Row("assess", "assessments:new", lambda survey: survey.release.pk),
     Row("assess-with-faults", "assessments:new", lambda survey: survey.release.pk, then=ask_for_too_much),
@@ -102,7 +106,7 @@ PAGES = [
     Row("assessment-running", "reports:assessment", lambda survey: survey.running.pk),
     Row("assessment-failed", "reports:assessment", lambda survey: survey.failed.pk),
     Row("assessment-cancelled", "reports:assessment", lambda survey: survey.cancelled.pk),
-    Row("result", "reports:assessment", lambda survey: survey.done.pk, then=unfold_everything),
+    Row("result", "reports:assessment", lambda survey: survey.done.pk, then=unfold_the_ball),
     Row("new-report", "reports:new", lambda survey: survey.done.pk),
     Row("report", "reports:report", lambda survey: survey.report.pk),
     Row("report-with-new-link", "reports:report", lambda survey: survey.report.pk, then=make_a_link),

@@ -89,6 +89,7 @@ def picture(page: Page, row: Row, width: int) -> None:
     if SCREENSHOTS:
         folder = Path(SCREENSHOTS)
         folder.mkdir(parents=True, exist_ok=True)
+        page.evaluate("window.scrollTo(0, 0)")
         page.screenshot(path=folder / f"{row.name}-{width}.png", full_page=True)
 
 
@@ -181,6 +182,20 @@ def test_a_result_can_be_read_without_scripts(survey: Survey, browsing: Browsing
     page = browsing.page(survey.lead, scripts=False)
     page.goto(f"{survey.done.get_absolute_url()}?level=0.99")
     expect(page.locator(".finding:visible")).to_contain_text("99 % set")
+    stills = page.locator("img.drawn")
+    assert stills.count() > 5
+    for still in stills.all():
+        expect(still).to_be_visible()
+        assert still.evaluate("still => still.complete && still.naturalWidth > 0")
+
+
+def test_on_paper_every_chart_is_its_still_drawing(survey: Survey, browsing: Browsing) -> None:
+    page = browsing.page(survey.lead)
+    page.goto(survey.done.get_absolute_url())
+    expect(page.locator(".js-plotly-plot .main-svg").first).to_be_visible()
+    page.emulate_media(media="print")
+    page.pdf()
+    expect(page.locator(".js-plotly-plot:visible")).to_have_count(0)
     stills = page.locator("img.drawn")
     assert stills.count() > 5
     for still in stills.all():

@@ -124,10 +124,10 @@ def test_a_profile_of_even_errors_is_flat_within_its_error() -> None:
 
 
 def test_a_profile_needs_sixty_points_and_scatter() -> None:
-    for x, y in ((X[:50], peaks(X[:50])), (X, np.zeros(X.size))):
-        data = validated_data(x, y, source=ErrorSource.PROFILE)
-        with pytest.raises(InputRefused):
-            run(data, curve(peaks(X)))
+    with pytest.raises(InputRefused, match="60 are needed"):
+        validated_data(X[:59], peaks(X[:59]), source=ErrorSource.PROFILE)
+    with pytest.raises(InputRefused, match="no scatter"):
+        run(validated_data(X, np.zeros(X.size), source=ErrorSource.PROFILE), curve(peaks(X)))
 
 
 def test_a_calibration_column_is_made_of_the_curve_that_is_judged() -> None:

@@ -6,13 +6,14 @@ import pytest
 from fits.engine import coordinates as coordinates_module
 from fits.engine.assess import assess
 from fits.engine.coordinates import coordinates_of
-from fits.engine.data import Axis, Data, FloatArray, Windows, validated_curve, validated_data
+from fits.engine.data import Axis, Data, FloatArray, validated_curve, validated_data
 from fits.engine.design import StoredDesign, StreamedDesign
 from fits.engine.interpolation import curve_at_data
 from fits.engine.observation import interval_of, observation_of
 from fits.engine.refusal import InputRefused
 from fits.engine.settings import Settings
 from fits.engine.whitening import whitening_of
+from fits.engine.windows import Windows
 
 RNG = np.random.default_rng(2)
 EDGES = np.linspace(1.0, 4.0, 61)
@@ -91,10 +92,10 @@ def test_a_curve_must_reach_as_far_as_the_windows_look() -> None:
 @pytest.mark.parametrize(
     ("grid", "weights", "code"),
     [
-        (np.array([0.0, 0.0, 1.0]), np.ones((10, 3)), "window-grid"),
-        (np.array([0.0, 1.0]), np.ones((9, 2)), "wrong-shape"),
+        (np.array([0.0, 0.0, 1.0]), np.ones((10, 3)), "windows-grid"),
+        (np.array([0.0, 1.0]), np.ones((9, 2)), "windows-shape"),
         (np.array([0.0, 1.0]), np.full((10, 2), np.nan), "not-finite"),
-        (np.array([0.0, 1.0]), np.zeros((10, 2)), "window-empty"),
+        (np.array([0.0, 1.0]), np.zeros((10, 2)), "windows-blind"),
     ],
 )
 def test_windows_that_cannot_be_are_refused(grid: FloatArray, weights: FloatArray, code: str) -> None:

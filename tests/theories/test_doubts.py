@@ -15,7 +15,7 @@ def data() -> Data:
 
 
 def said(data: Data, x: FloatArray, y: FloatArray) -> str:
-    return " ".join(doubts(validated_curve("flat", x, y), data))
+    return " ".join(doubts(validated_curve("flat", x, y), data, data.errors))
 
 
 def test_a_curve_that_fits_raises_no_doubt(data: Data) -> None:

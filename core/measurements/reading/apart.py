@@ -56,6 +56,12 @@ def read_covariance_apart(content: bytes, file_name: str, points: int) -> NDArra
     return matrix
 
 
+def read_windows_apart(content: bytes, file_name: str, points: int) -> NDArray[np.float64]:
+    """`read_windows` in a child process."""
+    _, (matrix,) = _read("windows", content, file_name, points=points)
+    return matrix
+
+
 def _read(
     kind: str, content: bytes, file_name: str, **arguments: str | int
 ) -> tuple[dict[str, Any], list[NDArray[Any]]]:

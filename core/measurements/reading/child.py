@@ -47,6 +47,10 @@ def answer(kind: str, content: bytes, file_name: str, arguments: dict[str, Any])
         matrix = read_covariance(content, file_name, **arguments)
         check_positive_definite(matrix, file_name)
         return {}, [matrix]
+    if kind == "windows":
+        from core.measurements.reading.windows import read_windows
+
+        return {}, [read_windows(content, file_name, **arguments)]
     raise ValueError(f"nothing reads a {kind}")
 
 

@@ -5,6 +5,9 @@ from dataclasses import dataclass
 MAXIMUM_BYTES = 50 * 1024 * 1024
 MAXIMUM_ROWS = 1_000_000
 MAXIMUM_COVARIANCE_POINTS = 5000
+# Weights of a window matrix, 80 MB, and the x that it may look at.
+MAXIMUM_WINDOW_WEIGHTS = 10_000_000
+MAXIMUM_WINDOW_GRID = 20_000
 # Header, comments and blank lines that may stand beside the rows.
 SPARE_LINES = 10_000
 MAXIMUM_NAME_LENGTH = 200
@@ -25,10 +28,14 @@ class TableLimits:
     rows: int
     columns: int
     line_length: int
+    cells: int | None = None  # rows × columns
 
 
 DATA_TABLE = TableLimits(rows=MAXIMUM_ROWS, columns=200, line_length=20_000)
 # 5000 numbers of up to 30 characters each.
 COVARIANCE_TABLE = TableLimits(
     rows=MAXIMUM_COVARIANCE_POINTS, columns=MAXIMUM_COVARIANCE_POINTS, line_length=150_000
+)
+WINDOWS_TABLE = TableLimits(
+    rows=MAXIMUM_ROWS, columns=MAXIMUM_WINDOW_GRID, line_length=600_000, cells=MAXIMUM_WINDOW_WEIGHTS
 )

@@ -1,9 +1,10 @@
 """A table whose columns are known turned into data for the engine."""
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 
 from core.measurements.reading.roles import MAP_THEM, SHARED, problems_of_roles
 from core.measurements.reading.table import Table
+from core.measurements.reading.windows import windows_of
 from core.user_error import UserError
 from fits.engine.data import Axis, Data, ErrorSource, FloatArray, validated_data
 from fits.engine.refusal import InputRefused
@@ -20,10 +21,14 @@ def release_data(
     covariance: FloatArray | None = None,
     covariance_name: str = "",
     standard_errors: FloatArray | None = None,
+    calibration: float = 0.0,
+    windows: FloatArray | None = None,
+    windows_name: str = "",
 ) -> Data:
     """The release's points, every rule of them checked; a broken one is named by line and column.
 
     standard_errors  take the place of an error column
+    windows          grid and weights, shape (n + 1, g)
     """
     if len(roles) != len(table.headers):
         reason = f"{len(roles)} columns are marked of {len(table.headers)}"
@@ -49,19 +54,26 @@ def release_data(
             shared={
                 role[len(SHARED) :]: column for role, column in columns.items() if role.startswith(SHARED)
             },
+            calibration=calibration,
             low=low,
             high=high,
+            windows=None if windows is None else windows_of(windows),
         )
     except InputRefused as refusal:
-        raise refused_in_table(refusal, table, roles, covariance_name) from refusal
+        names = {"covariance": covariance_name, "windows": windows_name}
+        raise refused_in_table(refusal, table, roles, names) from refusal
 
 
 def refused_in_table(
-    refusal: InputRefused, table: Table, roles: Sequence[str], covariance_name: str = ""
+    refusal: InputRefused, table: Table, roles: Sequence[str], file_names: Mapping[str, str] | None = None
 ) -> UserError:
-    """The engine's refusal with the file, line and column that it stems from."""
-    if refusal.field == "covariance":
-        return UserError(refusal.code, refusal.reason, refusal.remedy, covariance_name or table.file_name)
+    """The engine's refusal with the file, line and column that it stems from.
+
+    file_names  field → the file of its own that it was given in
+    """
+    own_file = (file_names or {}).get(refusal.field.removesuffix(":grid"))
+    if own_file is not None:
+        return UserError(refusal.code, refusal.reason, refusal.remedy, own_file or table.file_name)
     line = None if refusal.index is None else int(table.lines[refusal.index])
     fault = UserError(refusal.code, refusal.reason, refusal.remedy, table.file_name, line)
     role = ROLE_OF_FIELD.get(refusal.field, refusal.field)

@@ -30,7 +30,7 @@ def guess_roles(table: Table) -> tuple[str, ...]:
         by_place = {2: ("x", "y"), 3: ("x", "y", "error")}
         columns = len(table.headers)
         return by_place.get(columns, (UNUSED,) * columns)
-    return tuple(_role_of(header) for header in table.headers)
+    return tuple(role_of_header(header) for header in table.headers)
 
 
 def problems_of_roles(roles: Sequence[str], file_name: str = "") -> list[UserError]:
@@ -61,7 +61,8 @@ def is_role(role: str) -> bool:
     return role in ROLES or (role.startswith(SHARED) and bool(role.removeprefix(SHARED).strip()))
 
 
-def _role_of(header: str) -> str:
+def role_of_header(header: str) -> str:
+    """The role that a header names, UNUSED where it names none."""
     folded = header.strip().casefold()
     if folded.startswith(SHARED):
         name = header.strip()[len(SHARED) :].strip()

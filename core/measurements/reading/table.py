@@ -68,6 +68,9 @@ def read_table(
     rows = len(text.lines) - has_header
     if rows > limits.rows:
         raise too_many_rows(file_name, rows, limits)
+    if limits.cells is not None and rows * len(headers) > limits.cells:
+        reason = f"{rows} × {len(headers)} numbers are more than the {limits.cells} allowed"
+        raise UserError("too-many-cells", reason, "Thin the rows or the columns", file_name)
     if rows == 0:
         reason = "holds a header and no rows"
         raise UserError("empty-file", reason, "Give a table with one row per point", file_name, first_line)

@@ -6,14 +6,15 @@ from collections.abc import Sequence
 import numpy as np
 
 from core.measurements.models import Measurement, Release
-from core.measurements.reading.apart import read_covariance_apart, read_table_apart
+from core.measurements.reading.apart import read_covariance_apart, read_table_apart, read_windows_apart
 from core.measurements.reading.names import safe_name
 from core.measurements.reading.release import release_data
 from core.measurements.reading.roles import UNUSED, guess_roles, problems_of_roles
 from core.measurements.reading.stored import to_bytes
 from core.measurements.reading.table import Table
+from core.measurements.said_of_errors import SaidOfErrors, refuse_contradiction, roles_under
 from core.people.models import User
-from fits.engine.data import Axis
+from fits.engine.data import Axis, ErrorSource
 
 
 def draft_release(
@@ -22,25 +23,48 @@ def draft_release(
     measurement: Measurement,
     content: bytes,
     file_name: str,
+    said: SaidOfErrors | None = None,
+    calibration: float = 0.0,
     covariance_content: bytes | None = None,
     covariance_name: str = "",
+    windows_content: bytes | None = None,
+    windows_name: str = "",
     note: str = "",
 ) -> Release:
-    """A draft to look at before it is published. A UserError for what cannot be read; nothing is kept then."""
+    """A draft to look at before it is published. A UserError for what cannot be read; nothing is kept then.
+
+    said  where the errors come from; without a word, from the covariance if there is one, else from a column
+    """
     table = read_table_apart(content, file_name)
-    roles = guess_roles(table)
-    covariance = None
+    has_covariance = covariance_content is not None
+    if said is None:
+        said = SaidOfErrors.COVARIANCE if has_covariance else SaidOfErrors.COLUMN
+    roles = roles_under(said, guess_roles(table))
+    points = len(table.lines)
+    covariance = windows = None
+    covariance_name = safe_name(covariance_name) if covariance_content is not None else ""
     if covariance_content is not None:
-        covariance_name = safe_name(covariance_name)
-        covariance = read_covariance_apart(covariance_content, covariance_name, len(table.lines))
-    if not _left_to_the_reader(table, roles, has_covariance=covariance is not None):
-        # Only the rules are of interest here: a table whose columns are plain is refused at once.
+        covariance = read_covariance_apart(covariance_content, covariance_name, points)
+    windows_name = safe_name(windows_name) if windows_content is not None else ""
+    if windows_content is not None:
+        windows = read_windows_apart(windows_content, windows_name, points)
+    if not _columns_are_left_open(table, roles):
+        lacks_errors = _lacks_errors(said, roles, has_covariance=has_covariance)
+        if not lacks_errors:
+            refuse_contradiction(said, roles, has_covariance=has_covariance)
+        # Only the rules are of interest here: what breaks one is refused at once. Where errors are still to be
+        # spoken of on the preview page, others stand in for them.
         release_data(
             table,
             roles,
             axis=Axis(measurement.axis),
+            source=ErrorSource.GIVEN if lacks_errors else said.source,
+            standard_errors=np.ones(points) if lacks_errors else None,
+            calibration=calibration,
             covariance=covariance,
             covariance_name=covariance_name,
+            windows=windows,
+            windows_name=windows_name,
         )
     return Release.objects.create(
         measurement=measurement,
@@ -48,22 +72,32 @@ def draft_release(
         table=to_bytes(table.values),
         lines=to_bytes(table.lines),
         columns=[{"header": header, "role": role} for header, role in zip(table.headers, roles, strict=True)],
+        error_source=said.source.value,
+        calibration=calibration,
         covariance=None if covariance is None else to_bytes(covariance),
         variances=None if covariance is None else to_bytes(np.diagonal(covariance)),
+        windows=None if windows is None else to_bytes(windows),
         file_name=table.file_name,
-        file_sha256=hashlib.sha256(content).hexdigest(),
-        covariance_name=covariance_name if covariance_content is not None else "",
-        covariance_sha256=""
-        if covariance_content is None
-        else hashlib.sha256(covariance_content).hexdigest(),
-        points=len(table.lines),
+        file_sha256=_sha256(content),
+        covariance_name=covariance_name,
+        covariance_sha256=_sha256(covariance_content),
+        windows_name=windows_name,
+        windows_sha256=_sha256(windows_content),
+        points=points,
         created_by=user,
     )
 
 
-def _left_to_the_reader(table: Table, roles: Sequence[str], *, has_covariance: bool) -> bool:
+def _sha256(content: bytes | None) -> str:
+    return "" if content is None else hashlib.sha256(content).hexdigest()
+
+
+def _columns_are_left_open(table: Table, roles: Sequence[str]) -> bool:
     """Whether the preview page must first ask which column is which."""
-    if UNUSED not in roles:
-        return False
-    lacks_errors = not has_covariance and "error" not in roles
-    return lacks_errors or bool(problems_of_roles(roles, table.file_name))
+    return UNUSED in roles and bool(problems_of_roles(roles, table.file_name))
+
+
+def _lacks_errors(said: SaidOfErrors, roles: Sequence[str], *, has_covariance: bool) -> bool:
+    """Whether the preview page must first ask for the errors."""
+    needs_column = said in (SaidOfErrors.COLUMN, SaidOfErrors.RELATIVE) and not has_covariance
+    return needs_column and "error" not in roles

@@ -5,9 +5,12 @@ from django.db.models import Max
 from django.utils import timezone
 
 from core.errors import UserError
+from core.measurements.error_preview import error_preview
 from core.measurements.models import Measurement, Release
 from core.measurements.stored_release import data_of
 from core.people.models import User
+from fits.engine.data import Data, ErrorSource
+from fits.engine.refusal import InputRefused
 
 
 @transaction.atomic
@@ -19,7 +22,7 @@ def publish_release(release: Release, user: User) -> Release:
     if draft is None:
         raise UserError("not-a-draft", "this release is a draft no more", "Look at the measurement's page")
     draft.measurement = measurement
-    data_of(draft)
+    _refuse_unestimable(data_of(draft))
     last = measurement.releases.aggregate(last=Max("number"))["last"] or 0
     draft.number = last + 1
     draft.state = Release.State.PUBLISHED
@@ -27,3 +30,13 @@ def publish_release(release: Release, user: User) -> Release:
     draft.created_by = user  # whoever publishes answers for it
     draft.save(update_fields=["number", "state", "published_at", "created_by"])
     return draft
+
+
+def _refuse_unestimable(data: Data) -> None:
+    """Errors that are to be estimated must be there to be found: nothing else could be assessed."""
+    if data.source not in (ErrorSource.ESTIMATE, ErrorSource.PROFILE):
+        return
+    try:
+        error_preview(data)
+    except InputRefused as refusal:
+        raise UserError(refusal.code, refusal.reason, refusal.remedy) from refusal

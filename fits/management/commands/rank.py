@@ -1,17 +1,19 @@
 """Ranks curves against a table of data, without database or broker."""
 
+from collections.abc import Sequence
 from typing import Any
 
 import numpy as np
 from django.core.management.base import CommandParser
 from threadpoolctl import threadpool_limits
 
-from fits.assessments.detail import detail_document
+from fits.assessments.detail import detail_document, error_sizes
 from fits.assessments.document import level_key, result_document
 from fits.engine.assess import assess
 from fits.engine.scales import TABLE_DRAWS
 from fits.management.base import FileCommand
 from fits.management.options import add_options, read_inputs
+from fits.management.text_table import aligned
 from fits.reports import numbers
 
 
@@ -41,11 +43,11 @@ class Command(FileCommand):
         if options["json"]:
             self.write_json(options["json"], result)
         if options["json"] != "-":
-            self.stdout.write(ranking_table(result))
+            self.stdout.write(ranking_table(result, error_sizes(found)))
 
 
-def ranking_table(result: dict[str, Any]) -> str:
-    """The result for people at a terminal."""
+def ranking_table(result: dict[str, Any], sizes: Sequence[dict[str, Any]] = ()) -> str:
+    """The result for people at a terminal; with the estimates of the error size where it is not known."""
     levels = [level_key(radius["level"]) for radius in result["radii"]]
     smallest = numbers.smallest_p_value(result["draws"])
     rows = [
@@ -66,12 +68,12 @@ def ranking_table(result: dict[str, Any]) -> str:
                 *marks,
             ]
         )
-    lines = _aligned(rows)
+    lines = aligned(rows)
     if not all(curve["order_settled"] for curve in result["curves"]):
         lines += ["", "~ the data do not settle the order of neighbours so marked"]
     if any("but off" in row[-k] for row in rows[1:] for k in range(1, len(levels) + 1)):
         lines += ["but off: inside the ball, rejected by the scale set; see its scale p and worst scale"]
-    lines += ["", *_aligned(_radii(result)), "", *_summary(result)]
+    lines += ["", *aligned(_radii(result)), "", *_summary(result, sizes)]
     return "\n".join(lines + [f"Note: {note['message']}" for note in result["notes"]])
 
 
@@ -89,7 +91,7 @@ def _radii(result: dict[str, Any]) -> list[list[str]]:
     ]
 
 
-def _summary(result: dict[str, Any]) -> list[str]:
+def _summary(result: dict[str, Any], sizes: Sequence[dict[str, Any]]) -> list[str]:
     fit, leftover = result["fit"], result["leftover"]
     lines = [
         f"{result['release']['points']} points, resolution {fit['resolution']}, "
@@ -99,14 +101,10 @@ def _summary(result: dict[str, Any]) -> list[str]:
         lines.append(
             f"leftover χ² {leftover['chi2']:.2f} on {leftover['dof']}, p = {leftover['p_value']:.3g}"
         )
-    if result["release"]["sigma"] is not None:
-        lines.append(f"estimated error size {result['release']['sigma']:.4g}")
+    for size in sizes:
+        used = ", which is used" if size is sizes[0] else ""
+        lines.append(
+            f"error size from {size['source']}: {size['sigma']:.4g} ± {size['standard_error']:.2g}{used}"
+        )
     lines.append("Inside means not ruled out at that level; it never means proved.")
     return lines
-
-
-def _aligned(rows: list[list[str]]) -> list[str]:
-    widths = [max(len(row[column]) for row in rows) for column in range(len(rows[0]))]
-    return [
-        "  ".join(cell.ljust(width) for cell, width in zip(row, widths, strict=True)).rstrip() for row in rows
-    ]

@@ -10,8 +10,8 @@ from fits.reports.snapshot import Document, Snapshot
 
 FAR = 2.0  # in radii of the largest ring: what stands further out is named at the edge
 MARGIN = 1.15
-LETTER = 0.0105  # width of a letter and height of a line, as parts of the width of the chart
-LETTERS_HIGH = 2.6
+LETTER = 0.019  # width of a letter as a part of the width of the chart, on a narrow screen
+LETTERS_HIGH = 2.5
 
 
 def ball(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
@@ -31,9 +31,15 @@ def ball(snapshot: Snapshot, *, level: str, curve: str) -> Figure:
     ]
     layers.append(Points(label="fit", colour=palette.INK, x=(0.0,), y=(0.0,), size=4.0))
     labels = _Labels(edge, list(places.values()))
-    for index, verdict in enumerate(snapshot.curves):
-        a, b = places[verdict["name"]]
-        layers += _curve(snapshot, verdict, palette.curve_colour(index), a, b, labels)
+    ranked = list(enumerate(snapshot.curves))
+    # Names at the edge have the fewest sides to choose from.
+    ranked.sort(key=lambda pair: not labels.is_far(*places[pair[1]["name"]]))
+    drawn = {
+        index: _curve(snapshot, verdict, palette.curve_colour(index), *places[verdict["name"]], labels)
+        for index, verdict in ranked
+    }
+    for index in sorted(drawn):
+        layers += drawn[index]
     return Figure(
         name="ball",
         title="The ball seen from above",
@@ -65,7 +71,7 @@ def _curve(
 ) -> list[Layer]:
     name, inside = verdict["name"], snapshot.inside(verdict)
     # At the edge names are written towards the middle, so that they stay in the chart.
-    is_far = max(abs(a), abs(b)) > labels.edge
+    is_far = labels.is_far(a, b)
     shrink = 0.96 * labels.edge / max(abs(a), abs(b)) if is_far else 1.0
     words = f"{name}, at {numbers.significant(verdict['distance'])}" if is_far else name
     at = (shrink * a, shrink * b)
@@ -97,9 +103,13 @@ class _Labels:
         dot = 0.025 * self.edge
         self.taken = [(x - dot, y - dot, x + dot, y + dot) for x, y in [*self.points, (0.0, 0.0)]]
 
+    def is_far(self, x: float, y: float) -> bool:
+        """Whether a point lies outside the chart."""
+        return max(abs(x), abs(y)) > self.edge
+
     def place_for(self, words: str, x: float, y: float) -> Place:
         """The first side on which the words stay inside the chart and clear of what is written already."""
-        width = LETTER * 2.0 * self.edge * len(words) * 1.6
+        width = LETTER * 2.0 * self.edge * len(words)
         height = LETTER * 2.0 * self.edge * LETTERS_HIGH
         gap = 0.03 * self.edge
         boxes = {
