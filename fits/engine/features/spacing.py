@@ -93,7 +93,7 @@ class _Search:
             return float("inf")
         equal = self.basis.slopes_at(places)
         targets = -(equal @ space.centre)
-        bound = float(np.abs(targets @ np.linalg.solve(equal @ equal.T, targets))) ** 0.5
+        bound = float(np.sqrt(np.abs(targets @ np.linalg.solve(equal @ equal.T, targets))))
         if bound > self.exact_below:
             return bound
         tops = self.basis.at(places)
