@@ -2,7 +2,7 @@ import numpy as np
 import pytest
 
 from fits.engine.assess import assess
-from fits.engine.data import FloatArray, Windows, validated_data
+from fits.engine.data import FloatArray, validated_data
 from fits.engine.features import points as points_module
 from fits.engine.features.count import peak_count
 from fits.engine.features.find import count_peaks, feature_case, find_spacing
@@ -10,6 +10,7 @@ from fits.engine.features.points import compared_points, correlation_bound
 from fits.engine.features.space import interior_peaks
 from fits.engine.settings import Settings
 from fits.engine.whitening import CorrelatedErrors, IndependentErrors, cholesky
+from fits.engine.windows import Windows
 from tests.engine.features.cases import case_of, lines, two_peaks
 
 
