@@ -18,6 +18,7 @@ from fits.engine.features.peak import (
     peak_profile,
 )
 from fits.engine.features.points import compared_points
+from fits.engine.features.programme import Look, no_look
 from fits.engine.features.samples import samples
 from fits.engine.features.space import (
     CurveSpace,
@@ -34,7 +35,7 @@ from fits.engine.result import Result
 MAP_COLUMNS, MAP_ROWS = 60, 40
 # Beyond this multiple of the largest radius the map need not be exact.
 _MAP_MARGIN = 1.15
-SAMPLES = 50_000
+SAMPLES, SAMPLES_SHOWN = 50_000, 400
 
 
 @dataclass(frozen=True)
@@ -65,11 +66,15 @@ class PeakFeature:
 
 @dataclass(frozen=True, eq=False)
 class SampleReach:
-    """How far 50 000 curves drawn from the ball of a level reach, against the exact range of the height in a window."""
+    """How far 50 000 curves drawn from the ball of a level reach, against the exact range of the height in a window.
+
+    tops  x and height of the highest (lowest) point in the window of the first 400 of them, shape (400, 2)
+    """
 
     level: float
     exact: Range
     sampled: Range
+    tops: FloatArray
 
     @property
     def share(self) -> float:
@@ -110,16 +115,19 @@ def windows_of(
     return windows_of_peaks(case.space, min(case.radii), sign=sign)
 
 
-def find_peak(case: FeatureCase, window: Window, *, sign: float = 1.0, with_map: bool = True) -> PeakFeature:
+def find_peak(
+    case: FeatureCase, window: Window, *, sign: float = 1.0, with_map: bool = True, look: Look = no_look
+) -> PeakFeature:
     """Location, height, map and absence of the peak in one window."""
     space = case.space
-    profile = peak_profile(space, window, sign=sign)
+    profile = peak_profile(space, window, sign=sign, look=look)
     location = tuple(
         tuple(Range(*interval) for interval in intervals_below(profile.x, profile.price, radius))
         for radius in case.radii
     )
     height = []
     for radius in case.radii:
+        look()
         ends = lowest_maximum(space, window, radius, sign=sign), highest(space, window, radius, sign=sign)
         height.append(Range(min(ends), max(ends)))
     return PeakFeature(
@@ -128,8 +136,8 @@ def find_peak(case: FeatureCase, window: Window, *, sign: float = 1.0, with_map:
         profile=profile,
         location=location,
         height=tuple(height),
-        map=_map(case, window, location[-1], height[-1], sign) if with_map else None,
-        no_peak=no_peak(space, window, sign=sign).price,
+        map=_map(case, window, location[-1], height[-1], sign, look) if with_map else None,
+        no_peak=no_peak(space, window, sign=sign, look=look).price,
     )
 
 
@@ -139,25 +147,36 @@ def count_peaks(case: FeatureCase, *, sign: float = 1.0) -> PeakCount:
     return peak_count(case.space, points, radii=case.radii, sign=sign)
 
 
-def find_spacing(case: FeatureCase, *, harmonic: bool = False) -> SpacingProfile | None:
+def find_spacing(case: FeatureCase, *, harmonic: bool = False, look: Look = no_look) -> SpacingProfile | None:
     """Even spacing of the fit's peaks that stand out; None for fewer than three."""
     windows = windows_of_peaks(case.space, min(case.radii))
     tops = [window.first + int(np.argmax(case.space.fit[window.points])) for window in windows]
     basis = case.result.fit.coordinates.basis
     exact_below = _MAP_MARGIN * case.largest_radius
     return spacing_profile(
-        case.space, basis, case.space.grid[tops], exact_below=exact_below, harmonic=harmonic
+        case.space, basis, case.space.grid[tops], exact_below=exact_below, harmonic=harmonic, look=look
     )
 
 
 def sample_reach(
-    case: FeatureCase, window: Window, exact: Range, *, level: float, rng: np.random.Generator
+    case: FeatureCase,
+    window: Window,
+    exact: Range,
+    *,
+    level: float,
+    rng: np.random.Generator,
+    sign: float = 1.0,
 ) -> SampleReach:
-    """What a cloud of samples would have said of the height in a window."""
+    """What a cloud of samples would have said of the height in a window. The same rng draws the same curves for every
+    window, so that the tops of one can be set against those of another."""
     radius = case.radii[case.levels.index(level)]
     drawn = samples(case.result.fit.estimate, radius, count=SAMPLES, rng=rng)
-    tops = (drawn @ case.space.values[window.points].T).max(axis=1)
-    return SampleReach(level, exact, Range(float(tops.min()), float(tops.max())))
+    on_window = sign * case.space.values[window.points]
+    shown = drawn[:SAMPLES_SHOWN] @ on_window.T
+    tops = np.column_stack([case.space.grid[window.points][shown.argmax(axis=1)], sign * shown.max(axis=1)])
+    # A thousand curves at a time: all of them on a wide window would take hundreds of megabytes.
+    heights = sign * np.concatenate([(some @ on_window.T).max(axis=1) for some in np.array_split(drawn, 50)])
+    return SampleReach(level, exact, Range(float(heights.min()), float(heights.max())), tops)
 
 
 def peaks_of_curve(case: FeatureCase, values: FloatArray, *, sign: float = 1.0) -> FloatArray:
@@ -166,7 +185,7 @@ def peaks_of_curve(case: FeatureCase, values: FloatArray, *, sign: float = 1.0) 
 
 
 def _map(
-    case: FeatureCase, window: Window, location: tuple[Range, ...], height: Range, sign: float
+    case: FeatureCase, window: Window, location: tuple[Range, ...], height: Range, sign: float, look: Look
 ) -> HeightMap | None:
     """Over all that the highest level allows."""
     if not location or not np.isfinite([height.low, height.high]).all():
@@ -182,4 +201,5 @@ def _map(
         heights=np.linspace(height.low, height.high, MAP_ROWS),
         exact_below=_MAP_MARGIN * case.largest_radius,
         sign=sign,
+        look=look,
     )

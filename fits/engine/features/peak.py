@@ -8,7 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from fits.engine.data import FloatArray
-from fits.engine.features.programme import Nearest, Outcome, Programme
+from fits.engine.features.programme import Look, Nearest, Outcome, Programme, no_look
 from fits.engine.features.space import CurveSpace, Window
 
 _HEIGHT_STEPS = 60
@@ -35,10 +35,13 @@ class HeightMap:
     exact_below: float
 
 
-def peak_profile(space: CurveSpace, window: Window, *, sign: float = 1.0) -> Profile:
+def peak_profile(space: CurveSpace, window: Window, *, sign: float = 1.0, look: Look = no_look) -> Profile:
     """The price of a peak at each inner grid point x0 of the window: f'(x0) = 0 and f(x0) ≥ f on the window's grid."""
     inner = range(window.first + 1, window.last)
-    prices = [_peak_programme(space, window, index, sign).price for index in inner]
+    prices = []
+    for index in inner:
+        look()
+        prices.append(_peak_programme(space, window, index, sign).price)
     return Profile(space.grid[window.first + 1 : window.last], np.array(prices))
 
 
@@ -64,6 +67,7 @@ def height_map(
     heights: FloatArray,
     exact_below: float,
     sign: float = 1.0,
+    look: Look = no_look,
 ) -> HeightMap:
     """price(x0, h): a peak at x0 with f(x0) = h.
 
@@ -75,6 +79,7 @@ def height_map(
     prices = np.empty((heights.size, x.size))
     on_window = space.values[window.points]
     for column in range(x.size):
+        look()
         equal = np.vstack([slopes[column], values[column]])
         below = sign * (on_window - values[column])
         # A grid point at x0 itself would be a row of zeros.
@@ -148,7 +153,7 @@ def lowest_maximum(space: CurveSpace, window: Window, radius: float, *, sign: fl
     return sign * high
 
 
-def no_peak(space: CurveSpace, window: Window, *, sign: float = 1.0) -> Nearest:
+def no_peak(space: CurveSpace, window: Window, *, sign: float = 1.0, look: Look = no_look) -> Nearest:
     """The cheapest curve without a peak inside the window: falling up to some point and rising after it.
 
     Monotone curves are those that turn at an end. A fall followed by a rise has no peak either, and is often cheaper:
@@ -158,6 +163,7 @@ def no_peak(space: CurveSpace, window: Window, *, sign: float = 1.0) -> Nearest:
     drops = steps @ space.centre
     best = Nearest(Outcome.IMPOSSIBLE, np.inf, np.zeros(steps.shape[1]))
     for turn in _turns_by_promise(drops, steps):
+        look()
         # Steps before the turn must not rise, steps after it must not fall.
         direction = np.where(np.arange(steps.shape[0]) < turn, 1.0, -1.0)
         if _least_price(direction * drops, steps) >= best.price:

@@ -4,6 +4,7 @@ min ‖δ‖ with A δ = b and G δ ≤ h, δ = β − β̂. Solved by an interi
 that fails the check is reported as unsolved, never as impossible.
 """
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from enum import StrEnum
 
@@ -15,6 +16,13 @@ from fits.engine.data import FloatArray
 _TOLERANCE = 1e-9
 # An answer may break a constraint by this much of the constraint's own size.
 _MOST_VIOLATION = 1e-6
+
+# Called again and again during long work; what it raises ends the work (a cancelled job).
+Look = Callable[[], None]
+
+
+def no_look() -> None:
+    """For callers who need no word in between."""
 
 
 class Outcome(StrEnum):

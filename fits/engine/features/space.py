@@ -55,19 +55,24 @@ def curve_space(fit: Fit) -> CurveSpace:
 
 def window_between(space: CurveSpace, low: float, high: float) -> Window:
     """The grid points in [low, high]. Raises InputRefused for windows that are reversed, outside or too narrow."""
+    return window_on(space.grid, low, high)
+
+
+def window_on(grid: FloatArray, low: float, high: float) -> Window:
+    """As window_between, for a caller who has the grid alone."""
     name = f"window {low:g}:{high:g}"
     if not low < high:
         raise InputRefused(
             "window-reversed", name, "its ends are reversed or equal", "Give the lower end first"
         )
-    if low < space.grid[0] or high > space.grid[-1]:
+    if low < grid[0] or high > grid[-1]:
         raise InputRefused(
             "window-outside",
             name,
-            f"reaches outside the data, {space.grid[0]:.6g} to {space.grid[-1]:.6g}",
+            f"reaches outside the data, {grid[0]:.6g} to {grid[-1]:.6g}",
             "Keep it inside",
         )
-    inside = np.flatnonzero((space.grid >= low) & (space.grid <= high))
+    inside = np.flatnonzero((grid >= low) & (grid <= high))
     if inside.size < FEWEST_WINDOW_POINTS:
         reason = f"holds {inside.size} grid points, {FEWEST_WINDOW_POINTS} are needed"
         raise InputRefused("window-narrow", name, reason, "Widen it or raise the resolution")

@@ -7,7 +7,7 @@ import numpy as np
 
 from fits.engine.coordinates import OrthonormalFunctions
 from fits.engine.data import FloatArray
-from fits.engine.features.programme import Programme
+from fits.engine.features.programme import Look, Programme, no_look
 from fits.engine.features.space import CurveSpace
 
 SPACINGS = 61
@@ -35,12 +35,13 @@ def spacing_profile(
     *,
     exact_below: float,
     harmonic: bool = False,
+    look: Look = no_look,
 ) -> SpacingProfile | None:
     """Over spacings around that of the fit's peaks, shape (K,), increasing; None for fewer than three peaks.
 
     Beyond `exact_below` a price is only a lower bound: that of the stationary points alone, which has a closed form.
     """
-    search = _Search(space, basis, peaks.size, exact_below)
+    search = _Search(space, basis, peaks.size, exact_below, look)
     count = peaks.size
     if count < FEWEST_PEAKS:
         return None
@@ -84,9 +85,11 @@ class _Search:
     basis: OrthonormalFunctions
     count: int
     exact_below: float
+    look: Look
 
     def price(self, first: float, spacing: float) -> float:
         """Each x_k is a stationary point and no lower than the grid within half a spacing of it."""
+        self.look()
         space = self.space
         places: FloatArray = first + spacing * np.arange(self.count, dtype=np.float64)
         if places[0] <= space.grid[0] or places[-1] >= space.grid[-1]:

@@ -80,6 +80,18 @@ def test_samples_reach_only_part_of_the_exact_range() -> None:
     assert 0.2 < reach.share < 0.98
 
 
+def test_samples_of_a_dip_are_those_of_the_peak_upside_down() -> None:
+    reach = sample_reach(CASE, FIRST, Range(-1.0, 1.0), level=0.95, rng=np.random.default_rng(3), sign=-1.0)
+    drawn = samples(SPACE.centre, CASE.radii[2], count=50_000, rng=np.random.default_rng(3))
+    on_window = drawn @ SPACE.values[FIRST.points].T
+    assert (reach.sampled.low, reach.sampled.high) == pytest.approx(
+        (on_window.min(axis=1).min(), on_window.min(axis=1).max())
+    )
+    assert reach.tops[7] == pytest.approx(
+        (SPACE.grid[FIRST.points][on_window[7].argmin()], on_window[7].min())
+    )
+
+
 def test_samples_fill_the_ball_evenly() -> None:
     drawn = samples(np.zeros(6), 2.0, count=20_000, rng=np.random.default_rng(1))
     lengths = np.linalg.norm(drawn, axis=1)
