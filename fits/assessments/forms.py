@@ -87,6 +87,12 @@ class AssessmentForm(forms.Form):
         max_value=MAXIMUM_DRAWS,
         help_text="Simulated repeats. Four times as many halve the simulation error of a p-value.",
     )
+    features = forms.BooleanField(
+        label="Find peaks and dips",
+        initial=True,
+        required=False,
+        help_text="Which peaks and dips the data demand, where and how high. The verdicts do not wait for them.",
+    )
     seed = forms.IntegerField(
         min_value=0,
         max_value=LARGEST_SEED,
@@ -146,6 +152,7 @@ class AssessmentForm(forms.Form):
             "full": choice == "full",
             "shrinkage": str(cleaned["shrinkage"]),
             "draws": cleaned["draws"],
+            "features": cleaned["features"],
         }
 
 

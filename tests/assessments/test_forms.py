@@ -14,6 +14,7 @@ def asked(release: Release, curve: Curve, **changes: Any) -> AssessmentForm:
         "resolution_choice": "default",
         "shrinkage": "monotone",
         "draws": "2000",
+        "features": "on",
         "seed": "7",
     }
     return AssessmentForm(data | changes, release=release)
@@ -29,6 +30,7 @@ def test_the_defaults_are_those_of_the_engine(release: Release, curve: Curve) ->
         "full": False,
         "shrinkage": "monotone",
         "draws": 2000,
+        "features": True,
     }
 
 
