@@ -51,18 +51,24 @@ _FINER = 10
 @threadpool_limits.wrap(limits=1)  # type: ignore[untyped-decorator]
 def compute(part: FeaturePart, look: Look) -> Any:
     """The part's result as JSON. Raises UserError for what its asker can mend."""
+    assessment = part.search.assessment
+    refuse_other_engine(assessment)
     try:
-        return part_result(feature_case_of(part.search.assessment), part, look)
+        return part_result(feature_case_of(assessment), part, look)
     except InputRefused as refusal:
         raise user_error(refusal) from refusal
+
+
+def refuse_other_engine(assessment: Assessment) -> None:
+    """Features must be those of the fit that stands on the page. Raises UserError where this engine makes another."""
+    if assessment.engine_version != VERSION:
+        reason = f"engine {assessment.engine_version} made this assessment, and this is engine {VERSION}"
+        raise UserError("other-engine", reason, "Assess the release again")
 
 
 @threadpool_limits.wrap(limits=1)  # type: ignore[untyped-decorator]
 def feature_case_of(assessment: Assessment) -> FeatureCase:
     """What all feature statements of an assessment are made with."""
-    if assessment.engine_version != VERSION:
-        reason = f"engine {assessment.engine_version} made this assessment, and this is engine {VERSION}"
-        raise UserError("other-engine", reason, "Assess the release again")
     case = feature_case(fit_and_ball(assessment))
     functions = case.space.centre.size
     if functions > MOST_FUNCTIONS:
@@ -83,15 +89,15 @@ def _plan(case: FeatureCase, part: FeaturePart, look: Look) -> dict[str, Any]:
     given = [(low, high) for low, high in part.search.windows]
     peaks, dips = windows_of(case, given), windows_of(case, (), sign=-1.0)
     if given:
-        # A dip is sought only in those of the given windows in which the fit has one.
-        dips = tuple(window for window in peaks if _turns_up_in(case, window))
+        # Most windows are drawn around a peak: a dip is sought only where the fit is lowest inside.
+        dips = tuple(window for window in peaks if _is_lowest_inside(case, window))
     return {
         "windows": {Kind.PEAK.value: _ends(case, peaks), Kind.DIP.value: _ends(case, dips)},
         "theories": _theories(case, part.search.assessment),
     }
 
 
-def _turns_up_in(case: FeatureCase, window: Window) -> bool:
+def _is_lowest_inside(case: FeatureCase, window: Window) -> bool:
     lowest = window.first + int(np.argmin(case.space.fit[window.points]))
     return window.first < lowest < window.last
 

@@ -11,6 +11,7 @@ from django.db import IntegrityError, transaction
 from core.people.models import User
 from core.user_error import UserError
 from fits.assessments import leases, searches
+from fits.assessments.feature_parts import refuse_other_engine
 from fits.assessments.models import Assessment, FeaturePart, FeatureSearch
 from fits.assessments.pipeline import user_error
 from fits.engine import VERSION
@@ -25,9 +26,7 @@ def request_features(*, user: User, assessment: Assessment, windows: Windows = (
     """The search in these windows, or in the fit's own: one that waits, runs or is done already, else a new one."""
     if assessment.status != Assessment.Status.DONE or assessment.result is None:
         raise UserError("assessment-not-done", "this assessment has no fit yet", "Wait until it is done")
-    if assessment.engine_version != VERSION:
-        reason = f"engine {assessment.engine_version} made this assessment, and this is engine {VERSION}"
-        raise UserError("other-engine", reason, "Assess the release again")
+    refuse_other_engine(assessment)
     _refuse_bad(windows, assessment.result)
     return _search(user, assessment, sorted({(float(low), float(high)) for low, high in windows}))
 

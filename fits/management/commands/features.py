@@ -20,7 +20,7 @@ class Command(FileCommand):
     help = "Find what every curve in the confidence ball must have: peaks, their places and heights, their spacing."
 
     def add_arguments(self, parser: CommandParser) -> None:
-        add_options(parser)
+        add_options(parser, matrix_option="--window-matrix")
         parser.add_argument(
             "--windows",
             default="",
