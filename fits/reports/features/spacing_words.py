@@ -43,11 +43,7 @@ def _sentence(features: Features, found: Document, level: str, unit: str, name: 
     searched = numbers.interval(found["spacing"][0], found["spacing"][-1])
     looked = f" (spacings looked at: {f'{searched} {unit}'.strip()})"
     missing = unsolved_places(found, level, "spacing")
-    unsolved = (
-        f" For {_spacings(missing)} the programme could not be solved; they are not ruled out."
-        if missing
-        else ""
-    )
+    unsolved = f" {_unsolved(missing)}" if missing else ""
     if stretches:
         return f"At {at} {name} is not ruled out, with a spacing of {in_words(stretches, unit)}{looked}.{unsolved}"
     if not known:
@@ -62,5 +58,6 @@ def _sentence(features: Features, found: Document, level: str, unit: str, name: 
     return f"At {at} {name} is rejected: the nearest {series}, {apart} apart, lies {outside}."
 
 
-def _spacings(count: int) -> str:
-    return "one spacing" if count == 1 else f"{count} spacings"
+def _unsolved(count: int) -> str:
+    spacings, them = ("one spacing", "it") if count == 1 else (f"{count} spacings", "them")
+    return f"For {spacings} the programme could not be solved, which does not rule {them} out."
