@@ -44,18 +44,23 @@ def result_document(result: Result, *, seed: int) -> dict[str, Any]:
             "y": fit.at(grid).tolist(),
         },
         "leftover": _leftover(fit.leftover),
-        "radii": [
-            {
-                "level": radius.level,
-                "published": radius.published,
-                "calibrated": radius.calibrated,
-                "cautious": radius.cautious,
-            }
-            for radius in result.ball.radii
-        ],
+        "radii": radii_document(result),
         "curves": [_curve(result, index, rank) for rank, index in enumerate(result.ranking.order, start=1)],
         "notes": [{"code": note.code.value, "message": note.message} for note in notes_on(result)],
     }
+
+
+def radii_document(result: Result) -> list[dict[str, float]]:
+    """Every radius at every level."""
+    return [
+        {
+            "level": radius.level,
+            "published": radius.published,
+            "calibrated": radius.calibrated,
+            "cautious": radius.cautious,
+        }
+        for radius in result.ball.radii
+    ]
 
 
 def level_key(level: float) -> str:

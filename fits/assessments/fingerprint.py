@@ -11,7 +11,8 @@ from fits.engine import VERSION
 
 
 def fingerprint(*, release: Release, curves: Iterable[Curve], settings: Mapping[str, Any], seed: int) -> str:
-    """SHA-256 over everything that the numbers depend on; the order of the curves is no part of it."""
+    """SHA-256 over everything that the numbers depend on; the order of the curves is no part of it, nor is whether
+    features are sought afterwards."""
     document = {
         "engine": VERSION,
         "release": {
@@ -25,7 +26,7 @@ def fingerprint(*, release: Release, curves: Iterable[Curve], settings: Mapping[
             "axis": release.measurement.axis,
         },
         "curves": sorted([curve.pk, curve.file_sha256] for curve in curves),
-        "settings": dict(settings),
+        "settings": {name: value for name, value in settings.items() if name != "features"},
         "seed": seed,
     }
     text = json.dumps(document, sort_keys=True, separators=(",", ":"), allow_nan=False)

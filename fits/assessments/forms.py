@@ -81,6 +81,12 @@ class AssessmentForm(CoordinatesForm):
         help_text="How wide the band and the rings are drawn. Inside or outside is decided by the exact p-value, which "
         "needs no radius.",
     )
+    features = forms.BooleanField(
+        label="Find peaks and dips",
+        initial=True,
+        required=False,
+        help_text="Which peaks and dips the data demand, where and how high. The verdicts do not wait for them.",
+    )
     seed = forms.IntegerField(
         min_value=0,
         max_value=LARGEST_SEED,
@@ -115,6 +121,8 @@ class AssessmentForm(CoordinatesForm):
             "levels": list(cleaned["levels"]),
             "shrinkage": str(cleaned["shrinkage"]),
             "radius": str(cleaned["radius"]),
+            "draws": cleaned["draws"],
+            "features": cleaned["features"],
         }
 
 

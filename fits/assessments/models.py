@@ -1,4 +1,6 @@
-"""Assessments: one computation each, as a row that lives from queue to end."""
+"""Assessments: one computation each, as a row that lives from queue to end; and searches for features in them."""
+
+from typing import Any, ClassVar
 
 from django.db import models
 from django.urls import reverse
@@ -6,19 +8,13 @@ from django.urls import reverse
 from core.measurements.models import Release
 from core.people.models import User
 from core.theories.models import Curve
+from fits.assessments.job import Job
 
 
-class Assessment(models.Model):
+class Assessment(Job):
     """A release, curves, settings and a seed → fit, balls and verdicts."""
 
     COLLABORATION_PATH = "release__measurement__collaboration"
-
-    class Status(models.TextChoices):
-        QUEUED = "queued", "queued"
-        RUNNING = "running", "running"
-        DONE = "done", "done"
-        FAILED = "failed", "failed"
-        CANCELLED = "cancelled", "cancelled"
 
     class Stage(models.TextChoices):
         WAITING = "waiting", "waiting for a worker"
@@ -29,7 +25,7 @@ class Assessment(models.Model):
         SAVING = "saving", "saving"
         ENDED = "ended", "ended"
 
-    ENDED = (Status.DONE, Status.FAILED, Status.CANCELLED)
+    AT_THE_END: ClassVar[dict[str, Any]] = {"stage": Stage.ENDED}
 
     release = models.ForeignKey(Release, on_delete=models.CASCADE, related_name="assessments")
     curves: "models.ManyToManyField[Curve, models.Model]" = models.ManyToManyField(
@@ -40,19 +36,9 @@ class Assessment(models.Model):
     # SHA-256 over inputs, settings, seed and engine version; equal ones are computed once.
     fingerprint = models.CharField(max_length=64)
     requested_by = models.ForeignKey(User, on_delete=models.PROTECT, related_name="assessments")
-    created_at = models.DateTimeField(auto_now_add=True)
 
-    status = models.CharField(max_length=10, choices=Status.choices, default=Status.QUEUED)
     stage = models.CharField(max_length=12, choices=Stage.choices, default=Stage.WAITING)
     progress = models.FloatField(default=0.0)  # 0 … 1
-    attempt = models.PositiveSmallIntegerField(default=0)
-    heartbeat_at = models.DateTimeField(null=True, blank=True)
-    cancel_requested = models.BooleanField(default=False)
-    started_at = models.DateTimeField(null=True, blank=True)
-    ended_at = models.DateTimeField(null=True, blank=True)
-    # Why it failed: a stable code and a sentence; for a fault of ours the sentence holds its id in the log.
-    failure_code = models.CharField(max_length=60, blank=True)
-    failure = models.TextField(blank=True)
 
     engine_version = models.CharField(max_length=20, blank=True)
     result = models.JSONField(null=True, blank=True)  # the document of `rank --json`
@@ -79,11 +65,6 @@ class Assessment(models.Model):
     def get_absolute_url(self) -> str:
         return reverse("reports:assessment", args=[self.pk])
 
-    @property
-    def has_ended(self) -> bool:
-        """Whether nothing more will happen to it."""
-        return self.status in self.ENDED
-
 
 class Verdict(models.Model):
     """What an assessment says of one curve; the numbers are those of its result, kept here for queries."""
@@ -105,3 +86,66 @@ class Verdict(models.Model):
 
     def __str__(self) -> str:
         return f"{self.curve} in {self.assessment}"
+
+
+class FeatureSearch(models.Model):
+    """What the data of an assessment demand of peaks and dips: sought in windows, in parts of their own."""
+
+    COLLABORATION_PATH = "assessment__release__measurement__collaboration"
+    Status = Job.Status
+
+    assessment = models.ForeignKey(Assessment, on_delete=models.CASCADE, related_name="feature_searches")
+    windows = models.JSONField(default=list)  # [[low, high], …] as asked for; [] = the fit's own
+    # SHA-256 over assessment, windows and engine version; equal ones are computed once.
+    fingerprint = models.CharField(max_length=64)
+    requested_by = models.ForeignKey(User, on_delete=models.PROTECT, related_name="feature_searches")
+    created_at = models.DateTimeField(auto_now_add=True)
+    # That of its parts together: queued until it is planned; failed when any part failed.
+    status = models.CharField(max_length=10, choices=Status.choices, default=Status.QUEUED)
+
+    class Meta:
+        ordering = ("-created_at", "-pk")
+        constraints = (
+            models.UniqueConstraint(
+                fields=["fingerprint"],
+                condition=models.Q(status__in=["queued", "running", "done"]),
+                name="features_found_once",
+            ),
+        )
+
+    def __str__(self) -> str:
+        return f"features of {self.assessment}"
+
+    @property
+    def has_ended(self) -> bool:
+        """Whether nothing more will happen to it."""
+        return self.status in Job.ENDED
+
+
+class FeaturePart(Job):
+    """One statement, or one family of them, computed apart so that the workers share a search."""
+
+    COLLABORATION_PATH = "search__assessment__release__measurement__collaboration"
+
+    class Kind(models.TextChoices):
+        PLAN = "plan", "which windows there are"
+        COUNT = "count", "how many peaks"
+        DIP_COUNT = "dip_count", "how many dips"
+        PEAK = "peak", "a peak in a window"
+        DIP = "dip", "a dip in a window"
+        SPACING = "spacing", "even spacing of the peaks"
+        HARMONIC = "harmonic", "whether the peaks are a harmonic series"
+
+    search = models.ForeignKey(FeatureSearch, on_delete=models.CASCADE, related_name="parts")
+    kind = models.CharField(max_length=10, choices=Kind.choices)
+    window = models.JSONField(null=True, blank=True)  # [low, high] for a peak or dip
+    order = models.PositiveIntegerField()
+    result = models.JSONField(null=True, blank=True)
+
+    class Meta:
+        ordering = ("search", "order")
+        indexes = (models.Index(fields=["status", "heartbeat_at"], name="feature_part_liveness"),)
+        constraints = (models.UniqueConstraint(fields=["search", "order"], name="planned_once"),)
+
+    def __str__(self) -> str:
+        return f"{self.kind} of {self.search}"

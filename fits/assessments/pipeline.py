@@ -1,6 +1,6 @@
 """From rows to the engine and back."""
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import Any
 
@@ -15,7 +15,9 @@ from fits.assessments.detail import detail_document
 from fits.assessments.document import result_document
 from fits.assessments.models import Assessment
 from fits.engine.assess import assess
+from fits.engine.data import CurveTable
 from fits.engine.refusal import InputRefused
+from fits.engine.result import Result
 from fits.engine.settings import RadiusKind, Settings, Shrinkage
 
 
@@ -35,9 +37,26 @@ def compute(assessment: Assessment, progress: Callable[[str, float], None]) -> O
     progress(Assessment.Stage.READING, 0.0)
     names = curve_names(assessment)
     curves = [replace(table_of(curve), name=names[curve.pk]) for curve in assessment.curves.order_by("pk")]
+    result = _assess(assessment, curves, progress)
+    progress(Assessment.Stage.SAVING, 0.0)
+    return Outcome(
+        result=result_document(result, seed=assessment.seed),
+        detail=detail_document(result),
+        curve_keys={name: key for key, name in names.items()},
+    )
+
+
+def fit_and_ball(assessment: Assessment) -> Result:
+    """The fit and the ball of an assessment again, to the bit, without judging its curves."""
+    return _assess(assessment, [], lambda stage, fraction: None)
+
+
+def _assess(
+    assessment: Assessment, curves: Sequence[CurveTable], progress: Callable[[str, float], None]
+) -> Result:
     data = data_of(assessment.release)
     try:
-        result = assess(
+        return assess(
             data,
             curves,
             settings_of(assessment.settings),
@@ -45,13 +64,12 @@ def compute(assessment: Assessment, progress: Callable[[str, float], None]) -> O
             progress=progress,
         )
     except InputRefused as refusal:
-        raise UserError(refusal.code, f"{refusal.field}: {refusal.reason}", refusal.remedy) from refusal
-    progress(Assessment.Stage.SAVING, 0.0)
-    return Outcome(
-        result=result_document(result, seed=assessment.seed),
-        detail=detail_document(result),
-        curve_keys={name: key for key, name in names.items()},
-    )
+        raise user_error(refusal) from refusal
+
+
+def user_error(refusal: InputRefused) -> UserError:
+    """The engine's refusal as the user's error."""
+    return UserError(refusal.code, f"{refusal.field}: {refusal.reason}", refusal.remedy)
 
 
 def settings_of(chosen: Mapping[str, Any]) -> Settings:

@@ -57,6 +57,16 @@ def raw_functions(t: FloatArray, functions: int) -> FloatArray:
     return values.T
 
 
+def raw_slopes(t: FloatArray, functions: int) -> FloatArray:
+    """dψ/dt at t, shape (len(t), J)."""
+    values = np.zeros((t.size, functions))
+    if functions > 1:
+        values[:, 1] = 1.0
+    angular = np.pi * np.arange(1, functions - 1)
+    values[:, 2:] = -angular * np.sin(np.outer(t, angular))
+    return values
+
+
 @compiled
 def _by_recurrence(t: FloatArray, cosine: FloatArray, values: FloatArray) -> None:
     """cos((k + 1) θ) = 2 cos θ cos(k θ) − cos((k − 1) θ): one cosine for each point instead of J."""

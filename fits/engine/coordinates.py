@@ -5,7 +5,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 import scipy.linalg
 
-from fits.engine.basis import Interval, raw_functions
+from fits.engine.basis import Interval, raw_functions, raw_slopes
 from fits.engine.data import Data, FloatArray
 from fits.engine.design import BLOCK_ROWS, Design, StoredDesign, StreamedDesign, can_stream
 from fits.engine.observation import Observation, interval_of, observation_of
@@ -43,8 +43,15 @@ class OrthonormalFunctions:
 
     def at(self, x: FloatArray) -> FloatArray:
         """u_j(x) = sqrt(n) R⁻ᵀ ψ(x), shape (len(x), J)."""
-        raw = raw_functions(self.interval.fraction(x), self.asked)[:, self.kept]
-        solved = scipy.linalg.solve_triangular(self.triangular, raw.T, trans="T", check_finite=False)
+        return self._orthonormalised(raw_functions(self.interval.fraction(x), self.asked))
+
+    def slopes_at(self, x: FloatArray) -> FloatArray:
+        """du_j/dt at x, shape (len(x), J)."""
+        return self._orthonormalised(raw_slopes(self.interval.fraction(x), self.asked))
+
+    def _orthonormalised(self, raw: FloatArray) -> FloatArray:
+        kept = raw[:, self.kept]
+        solved = scipy.linalg.solve_triangular(self.triangular, kept.T, trans="T", check_finite=False)
         return np.asarray(np.sqrt(self.points) * solved.T)
 
     def seen_by(self, observation: Observation, coordinates: FloatArray) -> FloatArray:

@@ -44,7 +44,7 @@ class _File:
         return hashlib.sha256(self.content).hexdigest()
 
 
-def add_options(parser: ArgumentParser) -> None:
+def add_options(parser: ArgumentParser, *, matrix_option: str = "--windows") -> None:
     """DATA and the options of a computation."""
     parser.add_argument("data", metavar="DATA", help="table with x, y and error (or lo, hi bins)")
     parser.add_argument("--covariance", metavar="FILE", help="n × n covariance, .npy or text")
@@ -88,7 +88,8 @@ def add_options(parser: ArgumentParser) -> None:
         help="fraction to which the scale of y is known, as 0.05; default 0, exact",
     )
     parser.add_argument(
-        "--windows",
+        matrix_option,
+        dest="matrix",
         metavar="FILE",
         help="matrix through which the points see a curve, .npy or text: a row with the x of its grid, then a row of "
         "weights for each point",
@@ -112,7 +113,7 @@ def read_inputs(options: Mapping[str, Any], curve_paths: Sequence[str], *, comma
     table_file = _read(options["data"])
     table = read_table(table_file.content, table_file.name)
     covariance_file = _read(options["covariance"]) if options["covariance"] else None
-    windows_file = _read(options["windows"]) if options["windows"] else None
+    windows_file = _read(options["matrix"]) if options["matrix"] else None
     data = _data(table, covariance_file, windows_file, options)
     files = [_read(path) for path in curve_paths]
     curves = tuple(

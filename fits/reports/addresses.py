@@ -14,11 +14,13 @@ class RouteAddresses:
 
     kind: str
     key: int | str
+    search: int | None = None  # the search for features that is shown, where there may be several
 
     def chart(self, figure: Figure, form: str) -> str:
         """The chart as "svg" or "csv", under the level and curve that it has chosen."""
         path = reverse(f"reports:{self.kind}_chart", args=[self.key, figure.name, form])
-        return f"{path}?{urlencode({'level': figure.level, 'curve': figure.curve})}"
+        asked = {"level": figure.level, "curve": figure.curve} | self._search()
+        return f"{path}?{urlencode(asked)}"
 
     def result_json(self) -> str:
         """The whole result."""
@@ -31,3 +33,11 @@ class RouteAddresses:
     def explained(self) -> str:
         """The page that explains words and notes."""
         return reverse("reports:explained")
+
+    def features(self, name: str) -> str:
+        """A file of the features."""
+        path = reverse(f"reports:{self.kind}_features", args=[self.key, name])
+        return f"{path}?{urlencode(self._search())}" if self.search else path
+
+    def _search(self) -> dict[str, int]:
+        return {"search": self.search} if self.search else {}

@@ -5,6 +5,7 @@ import json
 from django.http import Http404, HttpRequest, HttpResponse
 
 from fits.reports.exports import ranking_csv, table_csv
+from fits.reports.features.files import feature_file
 from fits.reports.figures import figure_of
 from fits.reports.figures.svg import svg
 from fits.reports.snapshot import Snapshot
@@ -18,6 +19,14 @@ def chart_file(request: HttpRequest, snapshot: Snapshot, name: str, form: str) -
     if form == "svg":
         return _file(svg(figure), "image/svg+xml", f"{name}.svg", shown=True)
     return _file(table_csv(figure.table), "text/csv", f"{name}.csv")
+
+
+def features_file(request: HttpRequest, snapshot: Snapshot, name: str) -> HttpResponse:
+    """A file of the features under the level and curve in the query."""
+    found = feature_file(snapshot, name, level=request.GET.get("level"), curve=request.GET.get("curve"))
+    if found is None:
+        raise Http404
+    return _file(found.text, found.kind, name)
 
 
 def result_file(snapshot: Snapshot) -> HttpResponse:

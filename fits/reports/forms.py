@@ -1,11 +1,14 @@
-"""What is asked for on the pages of reports."""
+"""What is asked for on the pages of results and reports."""
 
+import math
+import re
 from datetime import datetime, timedelta
 from typing import Any
 
 from django import forms
 from django.utils import timezone
 
+from fits.assessments.models import Assessment
 from fits.reports.models import Report
 
 
@@ -19,6 +22,53 @@ class ReportForm(forms.ModelForm):  # type: ignore[type-arg]
         help_texts = {  # noqa: RUF012
             "words": "Plain text, shown above the result: what was asked, and what you make of the answer."
         }
+
+
+class WindowsForm(forms.Form):
+    """Windows in which one peak or dip each is sought."""
+
+    windows = forms.CharField(
+        label="Windows",
+        required=False,
+        widget=forms.Textarea(attrs={"rows": 4, "spellcheck": "false", "data-windows": ""}),
+        help_text="One a line, as “0.4 to 1.1”: each is the stretch of x in which one peak and one dip are sought. "
+        "Without any, those between the fit’s own dips are taken.",
+    )
+
+    def __init__(self, *args: Any, assessment: Assessment, **kwargs: Any) -> None:
+        super().__init__(*args, **kwargs)
+        field = self.fields["windows"]
+        if unit := assessment.release.measurement.x_unit:
+            field.label = f"Windows, in {unit}"
+        # What is picked on the chart is kept within the data.
+        x = (assessment.result or {})["fit"]["x"]
+        field.widget.attrs |= {"data-low": repr(x[0]), "data-high": repr(x[-1])}
+
+    def clean_windows(self) -> list[tuple[float, float]]:
+        """Pairs of numbers; every line that is none is named."""
+        windows, faults = [], []
+        for number, line in enumerate(self.cleaned_data["windows"].splitlines(), start=1):
+            if not line.strip():
+                continue
+            ends = _ends(line)
+            if ends is None:
+                faults.append(
+                    f"Line {number}: “{line.strip()[:40]}” is not two numbers with “to” between them."
+                )
+            else:
+                windows.append(ends)
+        if faults:
+            raise forms.ValidationError(faults)
+        return windows
+
+
+def _ends(line: str) -> tuple[float, float] | None:
+    parts = [part for part in re.split(r"\s*(?:\bto\b|[:;,–]|\s)\s*", line.strip()) if part]
+    try:
+        low, high = (float(part.replace("−", "-")) for part in parts)
+    except ValueError:
+        return None
+    return (low, high) if math.isfinite(low) and math.isfinite(high) else None
 
 
 class LinkForm(forms.Form):

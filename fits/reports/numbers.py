@@ -69,3 +69,39 @@ def width(value: float, *, unit: str = "", log: bool = False) -> str:
     if log:
         return f"a factor of {significant(math.exp(value))}" if value < 20.0 else "the whole range"
     return f"{significant(value)} {unit}".strip()
+
+
+def interval(low: float, high: float) -> str:
+    """ "63.1 to 68.9": to a twentieth of its width or better, rounded outwards, so that it is never narrower."""
+    span = high - low
+    if not span > 0.0:
+        return significant(low, 4)
+    places = 1 - math.floor(math.log10(span / 2.0))
+    largest = max(abs(low), abs(high))
+    if places > 6 and largest < 1e-3:
+        digits = math.floor(math.log10(largest)) + places + 1
+        return f"{significant(low, digits)} to {significant(high, digits)}"
+    places = max(0, places)
+    unit = 10.0**places
+    bottom, top = math.floor(low * unit + 1e-9) / unit, math.ceil(high * unit - 1e-9) / unit
+    return f"{_fixed(bottom, places)} to {_fixed(top, places)}"
+
+
+def apart(first: float, second: float) -> tuple[str, str]:
+    """Two numbers with as many digits as it takes to tell them apart, three at least."""
+    for digits in range(3, 8):
+        written = significant(first, digits), significant(second, digits)
+        if written[0] != written[1]:
+            break
+    return written
+
+
+def ordinal(number: int) -> str:
+    """ "third", as it is said."""
+    words = ("first", "second", "third", "fourth", "fifth", "sixth", "seventh", "eighth", "ninth", "tenth")
+    return words[number - 1] if 1 <= number <= len(words) else f"{number}th"
+
+
+def _fixed(value: float, places: int) -> str:
+    # Adding 0 takes the sign off a zero.
+    return f"{value + 0.0:.{places}f}".replace("-", "−")

@@ -1,5 +1,6 @@
 """What templates/reports/result.html is filled with: one reading order for every page that shows a result."""
 
+import json
 from collections.abc import Mapping
 from dataclasses import dataclass
 from datetime import UTC, datetime
@@ -8,24 +9,23 @@ from typing import Any, Protocol
 from fits.assessments.document import level_key
 from fits.engine.scales import TABLE_DRAWS
 from fits.reports import numbers, verdict_words, words
-from fits.reports.figures import BUILDERS, figure_of
+from fits.reports.charts import ChartAddresses, chart_of
+from fits.reports.features.section import features_section
+from fits.reports.figures import BUILDERS, FEATURE_BUILDERS, figure_of
 from fits.reports.figures.curves import CURVES_SHOWN
-from fits.reports.figures.figure import Cell, Figure
+from fits.reports.figures.figure import Figure
 from fits.reports.figures.palette import curve_colour
 from fits.reports.figures.plotly import plotly_json
 from fits.reports.known_coverage_words import known_coverage_table
 from fits.reports.snapshot import Document, Snapshot
 
-# Longer tables are shown in part; the CSV has all rows.
-ROWS_SHOWN = 120
+# More than this many characters of charts are fetched when the reader comes near them.
+LARGEST_INLINE = 300_000
 SMALLEST_SCALE_P_VALUE = numbers.smallest_p_value(TABLE_DRAWS)
 
 
-class Addresses(Protocol):
+class Addresses(ChartAddresses, Protocol):
     """Where the files of a result are fetched from."""
-
-    def chart(self, figure: Figure, form: str) -> str:
-        """The chart as "svg" or "csv"."""
 
     def result_json(self) -> str:
         """The whole result."""
@@ -36,19 +36,8 @@ class Addresses(Protocol):
     def explained(self) -> str:
         """The page that explains words and notes; empty where it stands on the same page."""
 
-
-@dataclass(frozen=True)
-class Chart:
-    """One chart with what stands behind it."""
-
-    name: str
-    title: str
-    caption: str
-    svg: str
-    csv: str
-    columns: tuple[str, ...]
-    rows: tuple[tuple[str, ...], ...]
-    rows_left_out: str
+    def features(self, name: str) -> str:
+        """A file of the features: "features.json", "peaks.csv" or "plots.json"; empty where it cannot be fetched."""
 
 
 @dataclass(frozen=True)
@@ -115,7 +104,7 @@ def result_page(
     level, curve = snapshot.level_or_default(level), snapshot.name_or_first(curve)
     figures = {name: figure_of(name, snapshot, level=level, curve=curve) for name in BUILDERS}
     drawn = {name: figure for name, figure in figures.items() if figure is not None}
-    return {
+    return _features(snapshot, addresses, level=level, curve=curve) | {
         "snapshot": snapshot,
         "result": snapshot.result,
         "origin": _origin(snapshot.context),
@@ -133,7 +122,7 @@ def result_page(
         ],
         "rows": _rows(snapshot, level),
         "radii": _radii(snapshot, level),
-        "charts": {name: _chart(figure, addresses) for name, figure in drawn.items()},
+        "charts": {name: chart_of(figure, addresses) for name, figure in drawn.items()},
         "plots": {name: plotly_json(figure) for name, figure in drawn.items()},
         "leftover_words": verdict_words.leftover(snapshot),
         "meaning": words.meaning(snapshot),
@@ -146,6 +135,37 @@ def result_page(
         "explained": addresses.explained(),
         "nouns": words.nouns(snapshot),
         "heading": _heading(snapshot),
+    }
+
+
+def feature_plots(
+    snapshot: Snapshot, *, level: str | None = None, curve: str | None = None
+) -> dict[str, Any]:
+    """The charts of features for the screen."""
+    return {figure.name: plotly_json(figure) for figure in _feature_figures(snapshot, level, curve)}
+
+
+def _feature_figures(snapshot: Snapshot, level: str | None, curve: str | None) -> list[Figure]:
+    figures = (figure_of(name, snapshot, level=level, curve=curve) for name in FEATURE_BUILDERS)
+    return [figure for figure in figures if figure is not None]
+
+
+def _features(snapshot: Snapshot, addresses: Addresses, *, level: str, curve: str) -> dict[str, Any]:
+    """Part "Features"; its charts are left out where they are large and can be fetched later."""
+    section = features_section(snapshot, level)
+    if section is None:
+        return {"features": None}
+    drawn = _feature_figures(snapshot, level, curve)
+    plots = {figure.name: plotly_json(figure) for figure in drawn}
+    address = addresses.features("plots.json")
+    is_large = bool(address) and len(json.dumps(plots)) > LARGEST_INLINE
+    return {
+        "features": section,
+        "feature_charts": {figure.name: chart_of(figure, addresses) for figure in drawn},
+        "feature_plots": {} if is_large else plots,
+        "feature_plots_address": address if is_large else "",
+        "features_json": addresses.features("features.json"),
+        "peaks_csv": addresses.features("peaks.csv"),
     }
 
 
@@ -296,24 +316,3 @@ def _settings(snapshot: Snapshot) -> list[tuple[str, str]]:
         ("seed", str(snapshot.result["seed"])),
         ("engine", str(snapshot.result["engine"])),
     ]
-
-
-def _chart(figure: Figure, addresses: Addresses) -> Chart:
-    rows = figure.table.rows
-    stride = -(-len(rows) // ROWS_SHOWN)
-    return Chart(
-        name=figure.name,
-        title=figure.title,
-        caption=figure.caption,
-        svg=addresses.chart(figure, "svg"),
-        csv=addresses.chart(figure, "csv"),
-        columns=figure.table.columns,
-        rows=tuple(tuple(_cell(value) for value in row) for row in rows[:: max(1, stride)]),
-        rows_left_out=f"One row in {stride} of {len(rows)}; the CSV has all." if stride > 1 else "",
-    )
-
-
-def _cell(value: Cell) -> str:
-    if isinstance(value, float):
-        return numbers.significant(value, 4)
-    return "" if value is None else str(value)

@@ -1,4 +1,4 @@
-"""The three documents that a page of results is made from, and the questions asked of them again and again."""
+"""The documents that a page of results is made from, and the questions asked of them again and again."""
 
 from collections.abc import Mapping
 from dataclasses import dataclass
@@ -12,20 +12,27 @@ DEFAULT_LEVEL = 0.95
 
 @dataclass(frozen=True, eq=False)
 class Snapshot:
-    """result: what `rank --json` writes; detail: what the charts need beside it; context: where it came from."""
+    """result: what `rank --json` writes; detail: what the charts need beside it; context: where it came from;
+    features: what was found of peaks and dips, None where none were asked for."""
 
     result: Document
     detail: Document
     context: Document
+    features: Document | None = None
 
     @classmethod
     def of(cls, stored: Mapping[str, Any]) -> "Snapshot":
         """From the mapping that a report keeps."""
-        return cls(stored["result"], stored["detail"], stored["context"])
+        return cls(stored["result"], stored["detail"], stored["context"], stored.get("features"))
 
     def stored(self) -> dict[str, Any]:
         """The mapping that a report keeps."""
-        return {"result": self.result, "detail": self.detail, "context": self.context}
+        return {
+            "result": self.result,
+            "detail": self.detail,
+            "context": self.context,
+            "features": self.features,
+        }
 
     @property
     def levels(self) -> tuple[str, ...]:
@@ -93,6 +100,12 @@ class Snapshot:
     def x_unit(self) -> str:
         """Unit of x, empty where it has none."""
         return self.measurement.get("x_unit") or ""
+
+    @property
+    def y_unit(self) -> str:
+        """Unit of y, empty where it has none or where counts are judged on another scale."""
+        is_counted = self.result["release"]["errors"] == "counts"
+        return "" if is_counted else self.measurement.get("y_unit") or ""
 
     @property
     def on_log_axis(self) -> bool:

@@ -10,6 +10,7 @@ from django.template.loader import render_to_string
 from django.utils.safestring import SafeString, mark_safe
 
 from fits.reports.exports import ranking_csv, table_csv
+from fits.reports.features.files import feature_file
 from fits.reports.figures.figure import Figure
 from fits.reports.figures.svg import svg
 from fits.reports.page import result_page
@@ -43,10 +44,17 @@ class InsideThePage:
         """Words and notes are explained at the end of the page itself."""
         return ""
 
+    def features(self, name: str) -> str:
+        """A file of the features as a data: address; its charts are in the page already."""
+        found = feature_file(self.snapshot, name)
+        return "" if found is None or name == "plots.json" else data_address(found.kind, found.text)
 
-def render_standalone(result: Document, detail: Document, context: Document) -> str:
+
+def render_standalone(
+    result: Document, detail: Document, context: Document, features: Document | None = None
+) -> str:
     """The page. Reads static files only: no database, no request, no network."""
-    snapshot = Snapshot(result, detail, context)
+    snapshot = Snapshot(result, detail, context, features)
     page: dict[str, Any] = result_page(snapshot, InsideThePage(snapshot))
     page["styles"] = [_style(_static(name)) for name in STYLES]
     page["scripts"] = [_script(_static(name)) for name in SCRIPTS]

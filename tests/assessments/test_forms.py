@@ -15,6 +15,7 @@ def asked(release: Release, curve: Curve, **changes: Any) -> AssessmentForm:
         "shrinkage": "monotone",
         "radius": "calibrated",
         "draws": "2000",
+        "features": "on",
         "seed": "7",
     }
     return AssessmentForm(data | changes, release=release)
@@ -31,6 +32,7 @@ def test_the_defaults_are_those_of_the_engine(release: Release, curve: Curve) ->
         "shrinkage": "monotone",
         "radius": "calibrated",
         "draws": 2000,
+        "features": True,
     }
 
 

@@ -11,10 +11,10 @@ from core.measurements.models import Release
 from core.people.models import User
 from core.theories.models import Curve
 from fits.assessments import claims
+from fits.assessments.dispatch import enqueue
 from fits.assessments.fingerprint import fingerprint
 from fits.assessments.models import Assessment
 from fits.assessments.services import cancel_assessment, request, request_assessment
-from fits.assessments.tasks import enqueue
 from tests.assessments.conftest import SETTINGS
 
 Status = Assessment.Status

@@ -13,7 +13,8 @@ from pytest_django import DjangoAssertNumQueries
 from core import alive
 from core.errors import UserError
 from core.theories.models import Curve
-from fits.assessments import claims
+from fits.assessments import claims, leases
+from fits.assessments.leases import Lease
 from fits.assessments.models import Assessment
 from fits.assessments.pipeline import Outcome
 from fits.assessments.services import cancel_assessment
@@ -69,14 +70,14 @@ def test_a_second_delivery_during_the_first_computes_nothing(queued: Assessment,
 
 
 def test_a_claim_is_given_once(queued: Assessment) -> None:
-    assert claims.claim(queued.pk) == claims.Claim(queued.pk, 1)
+    assert claims.claim(queued.pk) == Lease(Assessment, queued.pk, 1)
     assert claims.claim(queued.pk) is None
 
 
 def test_an_assessment_whose_worker_was_lost_is_claimed_anew(queued: Assessment) -> None:
     claims.claim(queued.pk)
     let_the_lease_end(queued)
-    assert claims.claim(queued.pk) == claims.Claim(queued.pk, 2)
+    assert claims.claim(queued.pk) == Lease(Assessment, queued.pk, 2)
 
 
 def test_a_superseded_attempt_cannot_save(queued: Assessment, compute_as: Replace) -> None:
@@ -97,7 +98,7 @@ def test_a_superseded_attempt_ends_at_its_next_progress(queued: Assessment) -> N
     assert first is not None
     let_the_lease_end(queued)
     claims.claim(queued.pk)
-    with pytest.raises(claims.Superseded):
+    with pytest.raises(leases.Superseded):
         claims.Heartbeat(first)("fitting", 0.5)
 
 

@@ -12,9 +12,10 @@ from core import broker
 from core.measurements.models import Measurement, Release
 from core.people.models import User
 from core.theories.models import Curve, Theory
-from fits.assessments.models import Assessment
+from fits.assessments.models import Assessment, FeatureSearch
 from fits.assessments.services import request_assessment
 from tests.assessments.conftest import SETTINGS
+from tests.assessments.searching import COARSE, clear_release
 from tests.conftest import npy, power
 from tests.real_processes import real_worker, wait_until_ready
 from tests.waiting import wait_until
@@ -99,3 +100,26 @@ def test_a_thousand_points_and_twenty_curves_end_within_two_seconds(
     assert assessment.ended_at is not None
     taken = (assessment.ended_at - assessment.created_at).total_seconds()
     assert taken < 2.0, f"it took {taken:.2f} s"
+
+
+def test_features_follow_the_verdicts_part_by_part(
+    idle_worker: None, release: Release, curve: Curve, member: User
+) -> None:
+    assessment = request_assessment(
+        user=member, release=clear_release(release), curves=[curve], settings=COARSE, seed=1
+    )
+
+    def ended() -> bool:
+        search = assessment.feature_searches.first()
+        return search is not None and search.has_ended
+
+    wait_until(ended, seconds=60.0, what="the features are found")
+    search = assessment.feature_searches.get()
+    assert search.status == FeatureSearch.Status.DONE, [part.failure for part in search.parts.all()]
+    assert search.parts.count() == 9
+    assessment.refresh_from_db()
+    assert assessment.ended_at is not None
+    for part in search.parts.all():
+        assert part.attempt == 1
+        assert part.started_at is not None
+        assert part.started_at >= assessment.ended_at

@@ -9,6 +9,7 @@ from core.theories.models import Curve
 from fits.assessments.models import Assessment
 from fits.assessments.tasks import run_assessment
 from fits.engine import VERSION
+from tests.assessments.searching import run_all
 
 Output = pytest.CaptureFixture[str]
 SETTINGS: dict[str, Any] = {
@@ -50,6 +51,20 @@ def test_a_number_that_was_tampered_with_is_found(done: Assessment, capsys: Outp
         f"result.curves[0].distance: {distance * (1 + 1e-15)!r} became {distance!r}"
         in capsys.readouterr().out
     )
+
+
+def test_features_are_the_same_to_the_bit_too(done: Assessment, capsys: Output) -> None:
+    search = done.feature_searches.get()
+    run_all(search)
+    call_command("recompute", str(done.pk))
+    assert f"assessment {done.pk}: the same to the bit" in capsys.readouterr().out
+    count = search.parts.get(kind="count")
+    assert count.result is not None
+    count.result["thinning"] = 0.5
+    count.save(update_fields=["result"])
+    with pytest.raises(SystemExit):
+        call_command("recompute", str(done.pk))
+    assert f"features.search {search.pk}.count 1.thinning: 0.5 became 0.0" in capsys.readouterr().out
 
 
 def test_another_engine_version_is_told(done: Assessment, capsys: Output) -> None:

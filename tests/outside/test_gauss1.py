@@ -12,6 +12,7 @@ from django.core.management import call_command
 
 from fits.engine.assess import assess
 from fits.engine.data import validated_curve, validated_data
+from fits.engine.features.find import count_peaks, feature_case, find_peak, windows_of
 from fits.engine.result import Result
 from fits.engine.settings import Settings
 from tests.outside.nist import STANDARD_ERROR, gauss1
@@ -113,3 +114,21 @@ def test_the_command_judges_the_same(tmp_path: Path, capsys: pytest.CaptureFixtu
     assert [curve["inside"]["exact"]["0.95"] for curve in document["curves"]] == [True, False, False]
     assert document["curves"][0]["inside"]["published"]["0.95"] is False
     assert document["curves"][0]["inside"]["calibrated"]["0.95"] is True
+
+
+def test_the_data_demand_two_peaks_where_the_certified_curve_has_them(result: Result) -> None:
+    """Price 5.29 of at most one peak: an independent computation. Certified maxima 66.10 and 178.62."""
+    case = feature_case(result)
+    count = count_peaks(case)
+    assert count.at_most[1].lower == pytest.approx(5.29, abs=0.005)
+    assert count.at_most[1].lower > result.ball.radii[-1].calibrated
+    assert count.at_most[-1].peaks == 2
+    for window, certified, near in zip(
+        windows_of(case, [(40.0, 100.0), (150.0, 210.0)]),
+        (66.10, 178.62),
+        ((63, 69), (175, 181)),
+        strict=True,
+    ):
+        (stretch,) = find_peak(case, window, with_map=False).location[2]
+        assert stretch.low <= certified <= stretch.high
+        assert (stretch.low, stretch.high) == pytest.approx(near, abs=1.1)

@@ -14,6 +14,7 @@ from fits.assessments import pipeline
 from fits.assessments.detail import detail_document
 from fits.assessments.document import result_document
 from fits.assessments.models import Assessment
+from fits.engine import VERSION
 from fits.engine.assess import assess
 from fits.engine.data import validated_curve, validated_data
 from fits.engine.settings import Settings
@@ -21,6 +22,7 @@ from fits.reports.models import Report
 from fits.reports.services import create_report
 from fits.reports.snapshot import Snapshot
 from tests.conftest import power
+from tests.reports.features_case import with_features
 
 SETTINGS: dict[str, Any] = {
     "levels": [0.67, 0.9, 0.95, 0.99],
@@ -53,6 +55,13 @@ def computed() -> Snapshot:
         "recompute": "python manage.py recompute 12",
     }
     return Snapshot(result_document(found, seed=1), detail_document(found), context)
+
+
+@pytest.fixture(scope="session")
+def featured() -> Snapshot:
+    """Two curves on three peaks, with features."""
+    snapshot: Snapshot = with_features()
+    return snapshot
 
 
 Verdicts = dict[str, tuple[float, bool, bool]]
@@ -94,7 +103,7 @@ def done(member: User, release: Release, curve: Curve) -> Assessment:
     outcome = pipeline.compute(assessment, lambda stage, share: None)
     assessment.result, assessment.detail = outcome.result, outcome.detail
     assessment.status, assessment.stage = Assessment.Status.DONE, Assessment.Stage.ENDED
-    assessment.ended_at = timezone.now()
+    assessment.ended_at, assessment.engine_version = timezone.now(), VERSION
     assessment.save()
     return assessment
 

@@ -36,3 +36,13 @@ def test_a_hostile_name_stays_text(computed: Snapshot) -> None:
         "neighbours": [],
     }
     assert "<script>alert(1)" not in page_of(Snapshot(result, detail, computed.context))
+
+
+def test_features_are_inside_it_with_their_charts_and_files(featured: Snapshot) -> None:
+    page = render_standalone(featured.result, featured.detail, featured.context, featured.features)
+    assert "the data demand at least 3 peaks" in page
+    assert page.count("data:image/svg+xml") >= 15
+    assert 'download="features.json"' in page
+    assert "data-plots" not in page
+    addresses = re.findall(r"""<(?:img|a|form)\b[^>]*?(?:src|href|action)=["']([^"']*)""", page)
+    assert all(address.startswith(("data:", "#")) for address in addresses)

@@ -20,7 +20,8 @@
   });
 
   function isShown(meta, state) {
-    if (meta.kind !== "ring" && meta.level && meta.level !== state.level) return false;
+    const ofAllLevels = meta.kind === "ring" || meta.kind === "levelline";
+    if (!ofAllLevels && meta.level && meta.level !== state.level) return false;
     if (meta.choice === "one") return meta.curve === state.curve;
     if (meta.choice === "each") return state.on.has(meta.curve);
     return true;
@@ -34,6 +35,9 @@
       const is = meta.level === state.level;
       changed.line = { ...trace.line, color: is ? ink : guide, width: is ? 2.2 : 0.8 };
     }
+    if (meta.kind === "levelline") {
+      changed.line = { ...trace.line, width: meta.level === state.level ? 2.6 : 1.1 };
+    }
     if (meta.inside) {
       const inside = meta.inside[state.level];
       changed.name = `${trace.name} (${inside ? "inside" : "outside"})`;
@@ -45,7 +49,7 @@
 
   function draw(name, state) {
     const figure = result.querySelector(`[data-chart="${name}"]`);
-    if (!figure) return;
+    if (!figure || !plots[name]) return;
     const target = figure.querySelector(".plot");
     const layout = { ...plots[name].layout };
     if (narrow) {
@@ -66,11 +70,18 @@
   const unchanging = new Set(["shrinkage", "risk", "quantiles"]);
   let soon = 0;
 
+  function under(address, state) {
+    const [path, query] = address.split("?");
+    const asked = new URLSearchParams(query);
+    asked.set("level", state.level);
+    asked.set("curve", state.curve);
+    return `${path}?${asked}`;
+  }
+
   function follow(state) {
-    const query = `?level=${encodeURIComponent(state.level)}&curve=${encodeURIComponent(state.curve)}`;
     for (const link of result.querySelectorAll("a[data-file]")) {
       const address = link.getAttribute("href");
-      if (!address.startsWith("data:")) link.href = address.split("?")[0] + query;
+      if (!address.startsWith("data:")) link.href = under(address, state);
     }
     // The still drawings, for print, once the reader has come to rest.
     clearTimeout(soon);
@@ -78,7 +89,7 @@
       for (const still of result.querySelectorAll("img.drawn")) {
         const address = still.getAttribute("src");
         const changes = !unchanging.has(still.closest("[data-chart]").dataset.chart);
-        if (changes && !address.startsWith("data:")) still.src = address.split("?")[0] + query;
+        if (changes && !address.startsWith("data:")) still.src = under(address, state);
       }
     }, 600);
   }
@@ -94,6 +105,33 @@
     return state;
   }
 
+  // The charts of features are many: each is drawn once it comes near, and fetched then where the page left them out.
+  function drawFeaturesWhenNear() {
+    const section = result.querySelector("[data-features]");
+    const inPage = document.getElementById("feature-plots");
+    if (!section || !inPage) return;
+    let arriving = null;
+    const arrived = () => {
+      arriving ??= section.dataset.plots
+        ? fetch(section.dataset.plots).then((answer) => (answer.ok ? answer.json() : {}))
+        : Promise.resolve(JSON.parse(inPage.textContent));
+      return arriving;
+    };
+    const near = new IntersectionObserver((seen) => {
+      for (const { isIntersecting, target } of seen) {
+        if (!isIntersecting) continue;
+        near.unobserve(target);
+        const name = target.dataset.chart;
+        arrived().then((found) => {
+          if (!found[name]) return;
+          plots[name] = found[name];
+          draw(name, chosen());
+        });
+      }
+    }, { rootMargin: "400px" });
+    for (const figure of section.querySelectorAll("[data-chart]")) near.observe(figure);
+  }
+
   legend.hidden = false;
   for (const button of result.querySelectorAll("[data-without-script]")) button.hidden = true;
   for (const button of result.querySelectorAll("[data-print]")) {
@@ -104,4 +142,5 @@
   choices.addEventListener("submit", (event) => event.preventDefault());
   legend.addEventListener("change", apply);
   apply();
+  drawFeaturesWhenNear();
 })();

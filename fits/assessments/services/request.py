@@ -10,9 +10,10 @@ from core.errors import UserError
 from core.measurements.models import Release
 from core.people.models import User
 from core.theories.models import Curve
+from fits.assessments.dispatch import enqueue
 from fits.assessments.fingerprint import fingerprint
 from fits.assessments.models import Assessment
-from fits.assessments.tasks import enqueue
+from fits.assessments.services.find_features import find_own_features, wants_features
 
 
 def request_assessment(
@@ -23,6 +24,7 @@ def request_assessment(
     _check(release, chosen)
     mark = fingerprint(release=release, curves=chosen, settings=settings, seed=seed)
     if same := _same(mark):
+        _add_features(user, same, settings)
         return same
     try:
         with transaction.atomic():
@@ -42,6 +44,17 @@ def request_assessment(
 def _same(mark: str) -> Assessment | None:
     again = (Assessment.Status.FAILED, Assessment.Status.CANCELLED)
     return Assessment.objects.filter(fingerprint=mark).exclude(status__in=again).first()
+
+
+def _add_features(user: User, same: Assessment, settings: Mapping[str, Any]) -> None:
+    """Features move no number of an assessment: whoever asks for the same with them gets them added."""
+    if not wants_features(settings):
+        return
+    if not wants_features(same.settings):
+        Assessment.objects.filter(pk=same.pk).update(settings=dict(same.settings) | {"features": True})
+    same.refresh_from_db(fields=["status", "settings"])
+    if same.status == Assessment.Status.DONE:
+        find_own_features(user, same)
 
 
 def _check(release: Release, curves: list[Curve]) -> None:

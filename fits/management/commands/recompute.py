@@ -7,9 +7,11 @@ from typing import Any
 
 from django.core.management.base import BaseCommand, CommandError, CommandParser
 
-from fits.assessments.models import Assessment
+from fits.assessments.feature_parts import feature_case_of, part_result
+from fits.assessments.models import Assessment, FeaturePart
 from fits.assessments.pipeline import compute
 from fits.engine import VERSION
+from fits.engine.features.programme import no_look
 
 MOST_SHOWN = 20
 
@@ -17,7 +19,9 @@ MOST_SHOWN = 20
 class Command(BaseCommand):
     """`manage.py recompute KEY …`: exit 0 when all are the same to the bit, 1 when any differs."""
 
-    help = "Recompute assessments from what is stored and compare them with what was found."
+    help = (
+        "Recompute assessments and their features from what is stored and compare them with what was found."
+    )
 
     def add_arguments(self, parser: CommandParser) -> None:
         parser.add_argument("keys", metavar="ASSESSMENT", nargs="+", type=int, help="number of an assessment")
@@ -38,10 +42,17 @@ class Command(BaseCommand):
                 "numbers may differ"
             )
         outcome = compute(assessment, lambda stage, fraction: None)
-        # Through text once, as the stored documents went.
-        again = json.loads(json.dumps({"result": outcome.result, "detail": outcome.detail}))
+        again = {"result": outcome.result, "detail": outcome.detail}
         found = {"result": assessment.result, "detail": assessment.detail}
-        differences = list(differences_between(found, again))
+        parts = list(
+            FeaturePart.objects.filter(search__assessment=assessment, status=FeaturePart.Status.DONE)
+        )
+        if parts:
+            case = feature_case_of(assessment)
+            found["features"] = {_place(part): part.result for part in parts}
+            again["features"] = {_place(part): part_result(case, part, no_look) for part in parts}
+        # Through text once, as the stored documents went.
+        differences = list(differences_between(found, json.loads(json.dumps(again))))
         for difference in differences[:MOST_SHOWN]:
             self.stdout.write(f"  {difference}")
         if differences:
@@ -49,6 +60,11 @@ class Command(BaseCommand):
         else:
             self.stdout.write(f"assessment {key}: the same to the bit")
         return not differences
+
+
+def _place(part: FeaturePart) -> str:
+    """As "search 3.peak 4"."""
+    return f"search {part.search_id}.{part.kind} {part.order}"
 
 
 def differences_between(found: Any, again: Any, place: str = "") -> Iterator[str]:

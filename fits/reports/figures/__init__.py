@@ -7,6 +7,17 @@ from typing import Protocol
 
 from fits.reports.figures.ball import ball
 from fits.reports.figures.curves import curves
+from fits.reports.figures.features import (
+    dip_ladder,
+    dip_prices,
+    harmonic,
+    ladder,
+    neighbours,
+    peak_prices,
+    regions,
+    spacing,
+    witnesses,
+)
 from fits.reports.figures.figure import Figure
 from fits.reports.figures.misfit import misfit
 from fits.reports.figures.scales import scales
@@ -29,13 +40,25 @@ BUILDERS: dict[str, Builder] = {
     "risk": risk,
     "quantiles": quantiles,
 }
+# Nothing to draw without features. They are many, so that pages draw them when they come near.
+FEATURE_BUILDERS: dict[str, Builder] = {
+    "ladder": ladder,
+    "witnesses": witnesses,
+    "regions": regions,
+    "peak_prices": peak_prices,
+    "neighbours": neighbours,
+    "spacing": spacing,
+    "harmonic": harmonic,
+    "dip_ladder": dip_ladder,
+    "dip_prices": dip_prices,
+}
 
 
 def figure_of(
     name: str, snapshot: Snapshot, *, level: str | None = None, curve: str | None = None
 ) -> Figure | None:
     """The figure of this name under the chosen level and curve; None for an unknown name or nothing to draw."""
-    builder = BUILDERS.get(name)
+    builder = BUILDERS.get(name) or FEATURE_BUILDERS.get(name)
     if builder is None:
         return None
     return builder(snapshot, level=snapshot.level_or_default(level), curve=snapshot.name_or_first(curve))

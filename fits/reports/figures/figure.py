@@ -14,6 +14,7 @@ class Dash(StrEnum):
 
     SOLID = "solid"
     DASHED = "dashed"
+    DASH_DOTTED = "dash-dotted"
     DOTTED = "dotted"
 
 
@@ -33,6 +34,7 @@ class Place(StrEnum):
     BELOW = "below"
     LEFT = "left"
     RIGHT = "right"
+    ABOVE_LEFT = "above left"
 
 
 class Choice(StrEnum):
@@ -88,6 +90,11 @@ class Line(Layer):
 
 
 @dataclass(frozen=True)
+class LevelLine(Line):
+    """A line that belongs to a level: always drawn, strongly while that level is chosen."""
+
+
+@dataclass(frozen=True)
 class Band(Layer):
     """What lies between two lines."""
 
@@ -106,7 +113,7 @@ class Ring(Layer):
 
 @dataclass(frozen=True)
 class Axis:
-    """Label and kind of an axis. `ticks` are where a logarithmic one is labelled."""
+    """Label and kind of an axis. `ticks` are where it is labelled, if that is not left to the drawing."""
 
     label: str
     log: bool = False
@@ -139,6 +146,7 @@ class Figure:
 
     level, curve  what is chosen
     switched_on   the curves that are drawn, of those that can be switched each
+    has_key       whether the page says beside the chart what its lines and signs are
     """
 
     name: str
@@ -152,6 +160,7 @@ class Figure:
     curve: str = ""
     switched_on: tuple[str, ...] = ()
     equal_aspect: bool = False
+    has_key: bool = False
     width: float = (
         7.4  # inches; those that stand side by side are narrower, so that their words stay readable
     )
@@ -159,7 +168,7 @@ class Figure:
 
     def shows(self, layer: Layer) -> bool:
         """Whether a layer is drawn under what is chosen here."""
-        if layer.level and layer.level != self.level and not isinstance(layer, Ring):
+        if layer.level and layer.level != self.level and not isinstance(layer, (Ring, LevelLine)):
             return False
         if layer.choice is Choice.ONE and layer.curve != self.curve:
             return False

@@ -13,6 +13,7 @@ from fits.reports.figures.figure import (
     Dash,
     Figure,
     Layer,
+    LevelLine,
     Line,
     Marker,
     Place,
@@ -22,15 +23,17 @@ from fits.reports.figures.figure import (
     tick_label,
 )
 
-DASHES = {Dash.SOLID: "solid", Dash.DASHED: "dash", Dash.DOTTED: "dot"}
+DASHES = {Dash.SOLID: "solid", Dash.DASHED: "dash", Dash.DASH_DOTTED: "dashdot", Dash.DOTTED: "dot"}
 SYMBOLS = {Marker.NONE: "circle", Marker.DOT: "circle", Marker.CIRCLE: "circle", Marker.CROSS: "x"}
 PLACES = {
     Place.ABOVE: "top center",
     Place.BELOW: "bottom center",
     Place.LEFT: "middle left",
     Place.RIGHT: "middle right",
+    Place.ABOVE_LEFT: "top left",
 }
 FONT = {"family": "system-ui, 'Segoe UI', 'Liberation Sans', sans-serif", "size": 13, "color": palette.INK}
+CHOSEN_WIDTH, OTHER_WIDTH = 2.6, 1.1
 GAP = 0.06
 RING_POINTS = 180
 
@@ -110,11 +113,14 @@ def _points(layer: Points, figure: Figure) -> Trace:
 
 def _line(layer: Line, figure: Figure) -> Trace:
     dash = Dash.DASHED if _is_outside(layer, figure) else layer.dash
+    width = layer.thickness
+    if isinstance(layer, LevelLine):
+        width = CHOSEN_WIDTH if layer.level == figure.level else OTHER_WIDTH
     trace: Trace = {
         "mode": "lines" if layer.marker is Marker.NONE else "lines+markers",
         "x": _rounded(layer.x),
         "y": _rounded(layer.y),
-        "line": {"color": layer.colour, "width": layer.thickness, "dash": DASHES[dash]},
+        "line": {"color": layer.colour, "width": width, "dash": DASHES[dash]},
     }
     if layer.marker is not Marker.NONE:
         trace["marker"] = {"color": layer.colour, "size": 5, "symbol": SYMBOLS[layer.marker]}
@@ -215,6 +221,8 @@ def _axis(axis: Axis) -> dict[str, Any]:
         }
     else:
         drawn["type"] = "linear"
+        if axis.ticks:
+            drawn["tickvals"] = list(axis.ticks)
     if axis.range:
         drawn["range"] = list(axis.range)
     return drawn

@@ -21,6 +21,7 @@ from fits.reports.figures.figure import (
     Dash,
     Figure,
     Layer,
+    LevelLine,
     Line,
     Marker,
     Place,
@@ -30,7 +31,12 @@ from fits.reports.figures.figure import (
     tick_label,
 )
 
-DASHES = {Dash.SOLID: "-", Dash.DASHED: (0, (5, 2.4)), Dash.DOTTED: (0, (1.2, 2))}
+DASHES = {
+    Dash.SOLID: "-",
+    Dash.DASHED: (0, (5, 2.4)),
+    Dash.DOTTED: (0, (1.2, 2)),
+    Dash.DASH_DOTTED: (0, (5, 2, 1.2, 2)),
+}
 MARKERS = {Marker.DOT: "o", Marker.CIRCLE: "o", Marker.CROSS: "X"}
 STYLE: Any = {
     "svg.fonttype": "none",  # text stays text: selectable, and small
@@ -54,6 +60,7 @@ PLACES = {
     Place.BELOW: ((0, -6), "center", "top"),
     Place.LEFT: ((-7, 0), "right", "center"),
     Place.RIGHT: ((7, 0), "left", "center"),
+    Place.ABOVE_LEFT: ((-1, 2), "right", "bottom"),
 }
 LETTERS_PER_INCH = 14.0  # in the legend
 LEGEND_ROWS = 0.22  # inches a row
@@ -126,6 +133,8 @@ def _prepare(axis: Axes, y: Axis) -> None:
     if y.log:
         axis.set_yscale("log")
         _label(axis.yaxis, y.ticks)
+    elif y.ticks:
+        axis.yaxis.set_major_locator(FixedLocator(y.ticks))
     if y.range:
         axis.set_ylim(*y.range)
 
@@ -135,6 +144,8 @@ def _set_x(axis: Axes, figure: Figure) -> None:
     if figure.x.log:
         axis.set_xscale("log")
         _label(axis.xaxis, figure.x.ticks)
+    elif figure.x.ticks:
+        axis.xaxis.set_major_locator(FixedLocator(figure.x.ticks))
     if figure.x.range:
         axis.set_xlim(*figure.x.range)
 
@@ -157,7 +168,7 @@ def _draw(axis: Axes, layer: Layer, figure: Figure) -> None:
                 layer.x,
                 layer.y,
                 color=layer.colour,
-                linewidth=layer.thickness,
+                linewidth=_thickness(layer, figure),
                 linestyle=DASHES[Dash.DASHED if outside else layer.dash],
                 marker="" if layer.marker is Marker.NONE else MARKERS[layer.marker],
                 markersize=3.2,
@@ -175,6 +186,12 @@ def _draw(axis: Axes, layer: Layer, figure: Figure) -> None:
             )
         case Ring():
             _draw_ring(axis, layer, chosen=layer.level == figure.level)
+
+
+def _thickness(layer: Line, figure: Figure) -> float:
+    if isinstance(layer, LevelLine):
+        return 2.0 if layer.level == figure.level else 0.9
+    return layer.thickness
 
 
 def _draw_points(axis: Axes, layer: Points, label: str, marker: Marker) -> None:

@@ -1,5 +1,7 @@
 """The page of an assessment: how far along it is, then its result."""
 
+from typing import Any
+
 from django.contrib.auth.decorators import login_required
 from django.db.models import QuerySet
 from django.http import Http404, HttpResponse
@@ -13,8 +15,10 @@ from fits.assessments.context import context_of
 from fits.assessments.models import Assessment
 from fits.assessments.stages import stages_of
 from fits.reports.addresses import RouteAddresses
-from fits.reports.files import chart_file, ranking_file, result_file
-from fits.reports.forms import ReportForm
+from fits.reports.feature_searches import searches_of
+from fits.reports.features.progress import progress_of
+from fits.reports.files import chart_file, features_file, ranking_file, result_file
+from fits.reports.forms import ReportForm, WindowsForm
 from fits.reports.page import result_page
 from fits.reports.services import create_report
 from fits.reports.snapshot import Snapshot
@@ -30,26 +34,44 @@ def with_place() -> QuerySet[Assessment]:
 def assessment(request: SignedInRequest, pk: int) -> HttpResponse:
     """Progress while it is under way, why it ended without a result, or the result."""
     found = load(with_place(), request.user, Action.VIEW, pk)
+    if found.status != Assessment.Status.DONE:
+        context = _place(request, found) | {"stages": stages_of(found)}
+        return render(request, "assessments/progress.html", context)
+    form = WindowsForm(assessment=found)
+    return render(request, "reports/assessment.html", result_context(request, found, form))
+
+
+def result_context(request: SignedInRequest, found: Assessment, form: WindowsForm) -> dict[str, Any]:
+    """What the page of a result is filled with; `form` asks for other windows of its features."""
+    searches = searches_of(found, request.GET.get("search"))
+    page = result_page(
+        _snapshot(found, searches.features),
+        RouteAddresses("assessment", found.pk, search=searches.shown.pk if searches.shown else None),
+        level=request.GET.get("level"),
+        curve=request.GET.get("curve"),
+    )
+    collaboration = found.release.measurement.collaboration
+    return (
+        _place(request, found)
+        | page
+        | {
+            "may_report": may(request.user, Action.REPORT, collaboration),
+            "reports": found.reports.select_related("author"),
+            "searches": searches,
+            "search": progress_of(searches.running),
+            "form": form,
+        }
+    )
+
+
+def _place(request: SignedInRequest, found: Assessment) -> dict[str, Any]:
     measurement = found.release.measurement
-    context = {
+    return {
         "assessment": found,
         "measurement": measurement,
         "collaboration": measurement.collaboration,
         "may_assess": may(request.user, Action.ASSESS, measurement.collaboration),
     }
-    if found.status != Assessment.Status.DONE:
-        return render(request, "assessments/progress.html", context | {"stages": stages_of(found)})
-    page = result_page(
-        _snapshot(found),
-        RouteAddresses("assessment", pk),
-        level=request.GET.get("level"),
-        curve=request.GET.get("curve"),
-    )
-    context |= {
-        "may_report": may(request.user, Action.REPORT, measurement.collaboration),
-        "reports": found.reports.select_related("author"),
-    }
-    return render(request, "reports/assessment.html", context | page)
 
 
 @login_required
@@ -75,6 +97,13 @@ def ranking_csv(request: SignedInRequest, pk: int) -> HttpResponse:
 
 
 @login_required
+@require_GET
+def features(request: SignedInRequest, pk: int, name: str) -> HttpResponse:
+    """A file of the features."""
+    return features_file(request, _loaded_snapshot(request, pk), name)
+
+
+@login_required
 @require_http_methods(["GET", "POST"])
 def new_report(request: SignedInRequest, pk: int) -> HttpResponse:
     """Write a report on the assessment."""
@@ -82,23 +111,27 @@ def new_report(request: SignedInRequest, pk: int) -> HttpResponse:
     form = ReportForm(
         request.POST or None, initial={"title": f"{found.release.measurement}, {found.release}"}
     )
+    searches = searches_of(found, request.GET.get("search"))
     if form.is_valid():
-        return redirect(create_report(user=request.user, assessment=found, **form.cleaned_data))
+        made = create_report(user=request.user, assessment=found, search=searches.shown, **form.cleaned_data)
+        return redirect(made)
     measurement = found.release.measurement
     context = {
         "form": form,
         "assessment": found,
         "measurement": measurement,
         "collaboration": measurement.collaboration,
+        "searches": searches,
     }
     return render(request, "reports/report_form.html", context)
 
 
 def _loaded_snapshot(request: SignedInRequest, pk: int) -> Snapshot:
-    return _snapshot(load(with_place(), request.user, Action.VIEW, pk))
+    found = load(with_place(), request.user, Action.VIEW, pk)
+    return _snapshot(found, searches_of(found, request.GET.get("search")).features)
 
 
-def _snapshot(found: Assessment) -> Snapshot:
+def _snapshot(found: Assessment, features: dict[str, Any] | None) -> Snapshot:
     if found.result is None or found.detail is None:
         raise Http404
-    return Snapshot(found.result, found.detail, context_of(found))
+    return Snapshot(found.result, found.detail, context_of(found), features)

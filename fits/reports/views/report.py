@@ -14,7 +14,7 @@ from django.views.decorators.http import require_GET, require_POST
 from core.people.access import Action, load, may
 from core.people.signed_in import SignedInRequest
 from fits.reports.addresses import RouteAddresses
-from fits.reports.files import chart_file, ranking_file, result_file
+from fits.reports.files import chart_file, features_file, ranking_file, result_file
 from fits.reports.forms import LinkForm
 from fits.reports.models import Report, ShareLink
 from fits.reports.page import result_page
@@ -82,6 +82,13 @@ def result_json(request: SignedInRequest, pk: int) -> HttpResponse:
 def ranking_csv(request: SignedInRequest, pk: int) -> HttpResponse:
     """The ranking table."""
     return ranking_file(_snapshot(request, pk))
+
+
+@login_required
+@require_GET
+def features(request: SignedInRequest, pk: int, name: str) -> HttpResponse:
+    """A file of the features."""
+    return features_file(request, _snapshot(request, pk), name)
 
 
 def _snapshot(request: SignedInRequest, pk: int) -> Snapshot:

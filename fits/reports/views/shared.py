@@ -9,7 +9,7 @@ from django.shortcuts import render
 from django.views.decorators.http import require_safe
 
 from fits.reports.addresses import RouteAddresses
-from fits.reports.files import chart_file, ranking_file, result_file
+from fits.reports.files import chart_file, features_file, ranking_file, result_file
 from fits.reports.models import Report, ShareLink
 from fits.reports.page import result_page
 from fits.reports.services.create_link import hashed
@@ -73,3 +73,9 @@ def result_json(request: HttpRequest, report: Report, token: str) -> HttpRespons
 def ranking_csv(request: HttpRequest, report: Report, token: str) -> HttpResponse:
     """The ranking table."""
     return ranking_file(Snapshot.of(report.snapshot))
+
+
+@behind_a_link
+def features(request: HttpRequest, report: Report, token: str, *, name: str) -> HttpResponse:
+    """A file of the features."""
+    return features_file(request, Snapshot.of(report.snapshot), name)

@@ -1,0 +1,55 @@
+"""How far a search for features is, and what it has found so far."""
+
+from dataclasses import dataclass
+
+from fits.assessments.features import features_of
+from fits.assessments.models import FeatureSearch
+from fits.reports import numbers
+from fits.reports.feature_searches import windows_in_words
+from fits.reports.features.count_words import count_sentence
+from fits.reports.features.document import Features, Kind
+from fits.reports.features.section import failures_of
+from fits.reports.snapshot import DEFAULT_LEVEL
+
+
+@dataclass(frozen=True)
+class SearchProgress:
+    """Parts done of all parts (none are known before the windows are), and sentences on what is known."""
+
+    windows: str
+    done: int
+    parts: int
+    is_planned: bool
+    found: tuple[str, ...]
+    failures: tuple[str, ...]
+
+
+def progress_of(search: FeatureSearch | None) -> SearchProgress | None:
+    """None where no search is under way."""
+    features = features_of(search)
+    if search is None or features is None:
+        return None
+    sought = Features(features)
+    return SearchProgress(
+        windows=windows_in_words(search),
+        done=features["parts_done"],
+        parts=features["parts"],
+        is_planned=features["parts"] > 1,
+        found=_found(sought),
+        failures=failures_of(sought),
+    )
+
+
+def _found(features: Features) -> tuple[str, ...]:
+    """At the level nearest to 95 %, as the full result opens with."""
+    level = min(features.levels, key=lambda key: (abs(float(key) - DEFAULT_LEVEL), -float(key)))
+    sentences = [count_sentence(features, level, kind) for kind in Kind if features.steps(kind)]
+    for kind in Kind:
+        for feature in features.found(kind):
+            places = " or ".join(numbers.interval(part.low, part.high) for part in feature.location(level))
+            at = numbers.level_words(level)
+            sought = numbers.interval(feature.window.low, feature.window.high)
+            sentences.append(
+                f"The {kind} sought in {sought} is at {places or 'no place'}, as far as it is there, at {at}."
+            )
+    return tuple(sentences)

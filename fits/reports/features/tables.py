@@ -1,0 +1,176 @@
+"""The tables of peaks and dips: where, how high, demanded up to which level, and what the theories say there."""
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+from fits.reports import numbers
+from fits.reports.exports import csv_text
+from fits.reports.features.document import Feature, Features, Interval, Kind, Standing
+from fits.reports.figures.figure import Cell
+from fits.reports.snapshot import Document
+
+UNSOLVED = "could not be solved"
+
+
+@dataclass(frozen=True)
+class AtLevel:
+    """One feature at one level. `demanded`: whether every curve of the ball has it, None where that is not known."""
+
+    key: str
+    level: str
+    location: str
+    height: str
+    demanded: bool | None
+    demanded_words: str
+    is_chosen: bool
+
+
+@dataclass(frozen=True)
+class FeatureRow:
+    """One feature."""
+
+    name: str
+    window: str
+    demanded_up_to: str
+    levels: tuple[AtLevel, ...]
+    remark: str
+
+
+@dataclass(frozen=True)
+class OwnPlace:
+    """A peak of a theory's own: x, and at each level whether that is inside the region (empty: not known)."""
+
+    x: str
+    sides: tuple["Side", ...]
+
+
+@dataclass(frozen=True)
+class Side:
+    """Inside or outside at one level."""
+
+    level: str
+    is_inside: bool
+    is_chosen: bool
+
+
+@dataclass(frozen=True)
+class TheoryRow:
+    """The peaks of one theory: those in the window of each feature, and those elsewhere."""
+
+    name: str
+    cells: tuple[tuple[OwnPlace, ...], ...]
+    elsewhere: str
+
+
+def feature_rows(features: Features, level: str, kind: Kind) -> tuple[FeatureRow, ...]:
+    """One for each peak or dip."""
+    return tuple(_row(features, feature, level) for feature in features.found(kind))
+
+
+def theory_rows(features: Features, level: str, kind: Kind) -> tuple[TheoryRow, ...]:
+    """One for each curve that was judged."""
+    windows = [feature.window for feature in features.found(kind)]
+    return tuple(
+        _theory_row(theory, theory["peaks" if kind is Kind.PEAK else "dips"], windows, level)
+        for theory in features.part("theories") or []
+    )
+
+
+def peaks_csv(features: Features) -> str:
+    """Peaks and dips with all digits: one row for each level and stretch of location."""
+    columns = (
+        "feature",
+        "number",
+        "window_low",
+        "window_high",
+        "level",
+        "location_low",
+        "location_high",
+        "height_low",
+        "height_high",
+        "without_it",
+        "price_without_it",
+        "demanded_up_to_level",
+    )
+    return csv_text(columns, [row for kind in Kind for row in _csv_rows(features, kind)])
+
+
+def unsolved_in(feature: Feature, level: str) -> int:
+    """How many places have no price because the programme was not solved. Such places are never ruled out, so that
+    they lie in the location intervals; where no curve has the feature, none does and the place is ruled out."""
+    stretches = feature.location(level)
+    return sum(price is None and any(part.holds(x) for part in stretches) for x, price in feature.profile)
+
+
+def _row(features: Features, feature: Feature, level: str) -> FeatureRow:
+    demanded = feature.demanded_up_to
+    missing = unsolved_in(feature, features.levels[0])
+    places = "one place" if missing == 1 else f"{missing} places"
+    return FeatureRow(
+        name=feature.name.capitalize(),
+        window=numbers.interval(feature.window.low, feature.window.high),
+        demanded_up_to=UNSOLVED if demanded is None else numbers.entry_level(demanded),
+        levels=tuple(_at(features, feature, key, key == level) for key in features.levels),
+        remark=f"The programme {UNSOLVED} at {places}, which are not ruled out." if missing else "",
+    )
+
+
+def _at(features: Features, feature: Feature, key: str, is_chosen: bool) -> AtLevel:
+    height = feature.height(key)
+    standing = feature.absence(features.radius(key))
+    demanded = {Standing.RULED_OUT: True, Standing.POSSIBLE: False, Standing.UNDECIDED: None}[standing]
+    words = {True: "demanded", False: "not demanded", None: UNSOLVED}
+    return AtLevel(
+        key=key,
+        level=numbers.level_words(key),
+        location=" or ".join(numbers.interval(part.low, part.high) for part in feature.location(key))
+        or "nowhere",
+        height=UNSOLVED if height is None else numbers.interval(height.low, height.high),
+        demanded=demanded,
+        demanded_words=words[demanded],
+        is_chosen=is_chosen,
+    )
+
+
+def _theory_row(theory: Document, found: list[Document], windows: list[Interval], level: str) -> TheoryRow:
+    own = list(found)
+    in_windows = [[place for place in own if _is_in(place, window)] for window in windows]
+    elsewhere = [place for place in own if not any(_is_in(place, window) for window in windows)]
+    return TheoryRow(
+        name=theory["name"],
+        cells=tuple(tuple(_place(place, level) for place in places) for places in in_windows),
+        elsewhere=", ".join(numbers.significant(float(place["x"]), 4) for place in elsewhere),
+    )
+
+
+def _is_in(place: Document, window: Interval) -> bool:
+    """Each place was looked up in one window, also where windows overlap."""
+    return place["window"] is not None and Interval(*map(float, place["window"])) == window
+
+
+def _place(place: Document, level: str) -> OwnPlace:
+    sides = tuple(Side(key, bool(inside), key == level) for key, inside in (place["inside"] or {}).items())
+    return OwnPlace(numbers.significant(float(place["x"]), 4), sides)
+
+
+def _csv_rows(features: Features, kind: Kind) -> Iterable[tuple[Cell, ...]]:
+    for feature in features.found(kind):
+        absent = feature.found["no_peak"]
+        for key in features.levels:
+            height = feature.height(key)
+            standing = UNSOLVED if feature.demanded_up_to is None else feature.absence(features.radius(key))
+            for part in feature.location(key) or (None,):
+                yield (
+                    str(kind),
+                    feature.number,
+                    feature.window.low,
+                    feature.window.high,
+                    float(key),
+                    part.low if part else None,
+                    part.high if part else None,
+                    height.low if height else None,
+                    height.high if height else None,
+                    str(standing),
+                    absent["price"],
+                    absent["entry_level"],
+                )
