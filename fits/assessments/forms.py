@@ -121,7 +121,6 @@ class AssessmentForm(CoordinatesForm):
             "levels": list(cleaned["levels"]),
             "shrinkage": str(cleaned["shrinkage"]),
             "radius": str(cleaned["radius"]),
-            "draws": cleaned["draws"],
             "features": cleaned["features"],
         }
 

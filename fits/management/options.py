@@ -236,9 +236,11 @@ def _settings_context(settings: Settings) -> dict[str, Any]:
 def _command_line(command: str, options: Mapping[str, Any], curve_paths: Sequence[str]) -> str:
     """A command that computes the same again; files by name, since paths are this machine's."""
     words = ["python", "manage.py", command, safe_name(options["data"]), *map(safe_name, curve_paths)]
-    for name in ("covariance", "windows"):
-        if options[name]:
-            words += [f"--{name}", safe_name(options[name])]
+    # For `features` windows are stretches of x, given apart.
+    matrix_option = "--windows" if command == "rank" else "--window-matrix"
+    for option, path in (("--covariance", options["covariance"]), (matrix_option, options["matrix"])):
+        if path:
+            words += [option, safe_name(path)]
     words += ["--levels", ",".join(f"{level:g}" for level in options["levels"])]
     for name in ("resolution", "feature_width"):
         if options[name] is not None:
