@@ -34,10 +34,9 @@ def full_covariance(scale: int) -> Case:
     x, y, errors = made_up(n)
     apart = np.abs(np.subtract.outer(np.arange(n), np.arange(n)))
     covariance = np.outer(errors, errors) * 0.5**apart
-    data = validated_data(x, y, covariance=covariance)
     return Case(
         f"fit of {n} points with a full covariance, against one bare scipy.linalg.cholesky of it",
-        lambda: fitted(data),
+        lambda: fitted(validated_data(x, y, covariance=covariance)),
         lambda: scipy.linalg.cholesky(covariance, lower=True),
         AtMost(1.5),
     )
