@@ -48,7 +48,8 @@ def run_feature_part(pk: int) -> None:
     lease = leases.take(FeaturePart, pk)
     if lease is None:
         return
-    part = FeaturePart.objects.select_related("search__assessment__release__measurement").get(pk=pk)
+    parts = FeaturePart.objects.select_related("search__assessment__release__measurement")
+    part = parts.defer("search__assessment__result", "search__assessment__detail").get(pk=pk)
     with _ending(lease, f"computing part {pk}, {part}"):
         result = feature_parts.compute(part, leases.Heartbeat(lease))
         searches.finish(lease, part, result)

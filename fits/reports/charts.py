@@ -19,6 +19,7 @@ from fits.reports.figures.figure import (
 
 # Longer tables are shown in part; the CSV has all rows.
 ROWS_SHOWN = 120
+PIXELS_PER_INCH = 96
 # Lengths of strokes and gaps in the key, as in the drawings.
 STROKES = {Dash.SOLID: "", Dash.DASHED: "6 4", Dash.DASH_DOTTED: "6 3 1.6 3", Dash.DOTTED: "1.6 3"}
 
@@ -44,7 +45,8 @@ class KeyEntry:
 
 @dataclass(frozen=True)
 class Chart:
-    """One chart with what stands behind it."""
+    """One chart with what stands behind it. width, height: about those of the drawing, in pixels, so that its place is
+    kept until it arrives."""
 
     name: str
     title: str
@@ -54,6 +56,8 @@ class Chart:
     columns: tuple[str, ...]
     rows: tuple[tuple[str, ...], ...]
     rows_left_out: str
+    width: int
+    height: int
     key: tuple[KeyEntry, ...]
 
 
@@ -70,6 +74,8 @@ def chart_of(figure: Figure, addresses: ChartAddresses) -> Chart:
         columns=figure.table.columns,
         rows=tuple(tuple(_cell(value) for value in row) for row in rows[:: max(1, stride)]),
         rows_left_out=f"One row in {stride} of {len(rows)}; the CSV has all." if stride > 1 else "",
+        width=round(PIXELS_PER_INCH * figure.width),
+        height=round(PIXELS_PER_INCH * figure.height),
         key=_key(figure) if figure.has_key else (),
     )
 

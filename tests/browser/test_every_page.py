@@ -35,6 +35,8 @@ NO_PAGES = {
     *("reports:assessment_chart", "reports:assessment_csv", "reports:assessment_json"),
     *("reports:report_chart", "reports:report_csv", "reports:report_json"),
     *("reports:shared_chart", "reports:shared_csv", "reports:shared_json"),
+    *("reports:assessment_features", "reports:report_features", "reports:shared_features"),
+    *("reports:ask_features", "reports:cancel_features", "reports:features_progress"),
     *("reports:new_link", "reports:revoke"),
     *("theories:discard", "theories:download", "theories:submit"),
 }

@@ -10,7 +10,7 @@ from core import broker
 from core.measurements.models import Release
 from core.people.models import User
 from core.theories.models import Curve
-from fits.assessments.models import Assessment
+from fits.assessments.models import Assessment, FeaturePart, FeatureSearch
 from fits.assessments.services import cancel_assessment, request_assessment
 from tests.assessments.conftest import SETTINGS
 from tests.real_processes import kill_group, real_worker, wait_until_ready
@@ -38,12 +38,12 @@ def ask(user: User, release: Release, curve: Curve) -> Assessment:
     return request_assessment(user=user, release=release, curves=[curve], settings=SETTINGS, seed=1)
 
 
-def wait_for(assessment: Assessment, status: str) -> None:
+def wait_for(row: Assessment | FeaturePart | FeatureSearch, status: str) -> None:
     def reached() -> bool:
-        assessment.refresh_from_db()
-        return assessment.status == status
+        row.refresh_from_db()
+        return row.status == status
 
-    wait_until(reached, seconds=60.0, what=f"{assessment} is {status}")
+    wait_until(reached, seconds=60.0, what=f"{row} is {status}")
 
 
 def test_another_worker_finishes_what_a_killed_one_began(
@@ -69,6 +69,26 @@ def test_a_running_assessment_is_cancelled_between_batches(
         wait_for(assessment, Status.RUNNING)
         cancel_assessment(assessment)
         wait_for(assessment, Status.CANCELLED)
+
+
+def test_another_worker_finishes_the_part_of_a_search_that_a_killed_one_began(
+    redis: broker.Broker, member: User, release: Release, curve: Curve, tmp_path: Path
+) -> None:
+    gate, part_gate = tmp_path / "gate", tmp_path / "part_gate"
+    gate.touch()
+    gates = {"GATE": str(gate), "PART_GATE": str(part_gate)}
+    with real_worker(tmp_path / "first.log", app=GATED, **gates) as first:
+        assessment = ask(member, release, curve)
+        wait_for(assessment, Status.DONE)
+        plan = assessment.feature_searches.get().parts.get()
+        wait_for(plan, Status.RUNNING)
+        kill_group(first)
+    part_gate.touch()
+    with real_worker(tmp_path / "second.log", app=GATED, **gates):
+        wait_for(assessment.feature_searches.get(), Status.DONE)
+    plan.refresh_from_db()
+    assert plan.attempt == 2
+    assert plan.search.parts.count() == 6
 
 
 def test_what_was_asked_for_while_redis_was_away_still_ends(

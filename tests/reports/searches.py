@@ -48,11 +48,11 @@ def stored_search(
 
 
 def running_search(assessment: Assessment, features: Mapping[str, Any], user: User) -> FeatureSearch:
-    """One whose last three parts still run, and one part of which has failed."""
+    """One whose last two parts still run, and one part of which has failed."""
     search = stored_search(assessment, features, user, mark="r", windows=[[0.5, 1.0]])
     FeatureSearch.objects.filter(pk=search.pk).update(status=Status.RUNNING)
     last = search.parts.order_by("-order")
-    for part in last[:3]:
+    for part in last[:2]:
         part.status, part.result = Status.RUNNING, None
         part.save()
     failed = search.parts.get(kind=Kind.DIP_COUNT)

@@ -9,6 +9,7 @@ from fits.reports.features.count_words import count_sentence, thinning_sentence
 from fits.reports.features.document import Features, Kind
 from fits.reports.features.sampling_words import sampling_sentence
 from fits.reports.features.spacing_words import harmonic_sentence, spacing_sentence
+from fits.reports.features.tables import FeatureRow, feature_rows, theory_rows
 
 RADIUS = 0.31
 BLANK: dict[str, Any] = {
@@ -178,3 +179,60 @@ def test_samples_without_an_exact_range_are_not_spoken_of() -> None:
 )
 def test_intervals_are_rounded_outwards(low: float, high: float, written: str) -> None:
     assert numbers.interval(low, high) == written
+
+
+def peak(
+    price: list[float | None], no_peak: dict[str, float | None], height: list[float | None]
+) -> dict[str, Any]:
+    return {
+        "window": [1.0, 5.0],
+        "profile": {"x": [2.0, 3.0, 4.0], "price": price},
+        "location": {"0.95": [[1.8, 3.4]]},
+        "height": {"0.95": height},
+        "no_peak": no_peak,
+    }
+
+
+def row_of(found: dict[str, Any]) -> FeatureRow:
+    (row,) = feature_rows(Features(BLANK | {"peaks": [found]}), "0.95", Kind.PEAK)
+    return row
+
+
+def test_a_peak_that_costs_more_than_the_radius_to_leave_out_is_demanded() -> None:
+    row = row_of(peak([0.2, 0.1, 0.5], {"price": 0.4, "entry_level": 0.983}, [2.99, 4.76]))
+    (at,) = row.levels
+    assert (row.name, row.window, row.demanded_up_to) == ("Peak 1", "1.00 to 5.00", "98.3\xa0%")
+    assert (at.location, at.height, at.demanded_words) == ("1.80 to 3.40", "2.99 to 4.76", "yes")
+    assert row.remark == ""
+
+
+def test_a_peak_that_the_ball_can_do_without_is_not_demanded() -> None:
+    (at,) = row_of(peak([0.2, 0.1, 0.5], {"price": 0.2, "entry_level": 0.5}, [2.99, 4.76])).levels
+    assert at.demanded_words == "no"
+
+
+def test_a_peak_without_which_there_is_no_curve_is_demanded() -> None:
+    (at,) = row_of(peak([0.2, 0.1, 0.5], {"price": None, "entry_level": 1.0}, [2.99, 4.76])).levels
+    assert at.demanded is True
+
+
+def test_what_could_not_be_solved_is_said_and_never_called_impossible() -> None:
+    row = row_of(peak([0.2, None, None], {"price": None, "entry_level": None}, [None, 4.76]))
+    (at,) = row.levels
+    assert (at.height, at.demanded_words, row.demanded_up_to) == ("could not be solved",) * 3
+    # The third place, outside the location interval, is one that no curve has: it is ruled out.
+    assert row.remark == "At one place the programme could not be solved, which does not rule it out."
+
+
+def test_places_of_a_theory_stand_in_the_column_of_their_window() -> None:
+    found = peak([0.2, 0.1, 0.5], {"price": 0.4, "entry_level": 0.98}, [1.0, 2.0])
+    places = [
+        {"x": 2.0, "window": [1.0, 5.0], "inside": {"0.95": True}},
+        {"x": 4.5, "window": [1.0, 5.0], "inside": None},
+        {"x": 7.25, "window": None, "inside": None},
+    ]
+    theories = [{"name": "Flat floor", "peaks": places, "dips": []}]
+    (row,) = theory_rows(Features(BLANK | {"peaks": [found], "theories": theories}), "0.95", Kind.PEAK)
+    ((first, second),) = row.cells
+    assert (first.x, first.sides[0].is_inside, second.x, second.sides) == ("2.000", True, "4.500", ())
+    assert row.elsewhere == "7.250"

@@ -47,9 +47,9 @@ def _found(features: Features) -> tuple[str, ...]:
     for kind in Kind:
         for feature in features.found(kind):
             places = " or ".join(numbers.interval(part.low, part.high) for part in feature.location(level))
-            at = numbers.level_words(level)
-            sought = numbers.interval(feature.window.low, feature.window.high)
+            at, window = numbers.level_words(level), feature.window
+            sought = f"{numbers.significant(window.low)} to {numbers.significant(window.high)}"
             sentences.append(
-                f"The {kind} sought in {sought} is at {places or 'no place'}, as far as it is there, at {at}."
+                f"At {at} the {kind} of the window {sought} lies in {places or 'no place at all'}."
             )
     return tuple(sentences)

@@ -104,22 +104,31 @@ def unsolved_in(feature: Feature, level: str) -> int:
 
 def _row(features: Features, feature: Feature, level: str) -> FeatureRow:
     demanded = feature.demanded_up_to
-    missing = unsolved_in(feature, features.levels[0])
-    places = "one place" if missing == 1 else f"{missing} places"
     return FeatureRow(
         name=feature.name.capitalize(),
-        window=numbers.interval(feature.window.low, feature.window.high),
-        demanded_up_to=UNSOLVED if demanded is None else numbers.entry_level(demanded),
+        window=f"{numbers.significant(feature.window.low)} to {numbers.significant(feature.window.high)}",
+        demanded_up_to=UNSOLVED if demanded is None else numbers.entry_level(demanded).replace(" ", "\u00a0"),
         levels=tuple(_at(features, feature, key, key == level) for key in features.levels),
-        remark=f"The programme {UNSOLVED} at {places}, which are not ruled out." if missing else "",
+        remark=_remark(feature, unsolved_in(feature, features.levels[0])),
     )
+
+
+def _remark(feature: Feature, unsolved: int) -> str:
+    remarks = []
+    if unsolved:
+        places, them = ("one place", "it") if unsolved == 1 else (f"{unsolved} places", "them")
+        remarks.append(f"At {places} the programme {UNSOLVED}, which does not rule {them} out.")
+    blank = sum(price is None for row in (feature.map or {}).get("price", []) for price in row)
+    if blank:
+        remarks.append(f"{blank} points of its map have no price: its outline is broken there.")
+    return " ".join(remarks)
 
 
 def _at(features: Features, feature: Feature, key: str, is_chosen: bool) -> AtLevel:
     height = feature.height(key)
     standing = feature.absence(features.radius(key))
     demanded = {Standing.RULED_OUT: True, Standing.POSSIBLE: False, Standing.UNDECIDED: None}[standing]
-    words = {True: "demanded", False: "not demanded", None: UNSOLVED}
+    words = {True: "yes", False: "no", None: UNSOLVED}
     return AtLevel(
         key=key,
         level=numbers.level_words(key),
