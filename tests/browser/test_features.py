@@ -109,6 +109,31 @@ def test_another_level_changes_sentences_table_and_charts(
     assert max(widths, key=widths.get) == "0.67"
 
 
+def test_on_paper_every_chart_is_its_still_drawing(
+    survey: Survey, search: FeatureSearch, browsing: Browsing
+) -> None:
+    page = browsing.page(survey.member)
+    page.goto(survey.done.get_absolute_url())
+    page.evaluate("dispatchEvent(new Event('beforeprint'))")
+    page.emulate_media(media="print")
+    page.pdf()
+    stills = page.locator("[data-features] img.drawn")
+    assert stills.count() >= 6
+    for still in stills.all():
+        expect(still).to_be_visible()
+        assert still.evaluate("still => still.complete && still.naturalWidth > 0")
+
+
+def test_features_can_be_read_without_scripts(
+    survey: Survey, search: FeatureSearch, browsing: Browsing
+) -> None:
+    page = browsing.page(survey.member, scripts=False)
+    page.goto(f"{survey.done.get_absolute_url()}?level=0.67")
+    expect(page.locator("[data-features] p[data-level]:visible").first).to_contain_text("At 67")
+    expect(page.locator("table.peaks").first).to_be_visible()
+    expect(page.locator("[data-features] [data-pick]")).to_be_hidden()
+
+
 @pytest.mark.parametrize("width", [WIDE, NARROW])
 def test_a_search_is_followed_and_its_end_shown(survey: Survey, browsing: Browsing, width: int) -> None:
     running = running_search(survey.done, _found, survey.member)

@@ -116,7 +116,7 @@ def test_prices_are_drawn_as_found_and_broken_where_unknown(featured: Snapshot) 
     peak = copy.deepcopy(dict(featured.features["peaks"][0]))
     peak["profile"]["price"][5] = None
     figure = drawn("peak_prices", changed(featured, peaks=[peak]))
-    lines = [layer for layer in figure.layers if isinstance(layer, Line) and layer.label == "peak 1"]
+    lines = [layer for layer in figure.layers if isinstance(layer, Line) and layer.label == "price of a peak"]
     assert [len(line.y) for line in lines] == [5, len(peak["profile"]["x"]) - 6]
     assert lines[1].y == tuple(peak["profile"]["price"][6:])
     assert figure.table.rows[5][2] is None

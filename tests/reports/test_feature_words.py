@@ -202,7 +202,7 @@ def test_a_peak_that_costs_more_than_the_radius_to_leave_out_is_demanded() -> No
     row = row_of(peak([0.2, 0.1, 0.5], {"price": 0.4, "entry_level": 0.983}, [2.99, 4.76]))
     (at,) = row.levels
     assert (row.name, row.window, row.demanded_up_to) == ("Peak 1", "1.00 to 5.00", "98.3\xa0%")
-    assert (at.location, at.height, at.demanded_words) == ("1.80 to 3.40", "2.99 to 4.76", "yes")
+    assert (at.location, at.height, at.demanded_words) == (("1.80 to 3.40",), "2.99 to 4.76", "yes")
     assert row.remark == ""
 
 

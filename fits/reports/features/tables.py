@@ -19,7 +19,7 @@ class AtLevel:
 
     key: str
     level: str
-    location: str
+    location: tuple[str, ...]
     height: str
     demanded: bool | None
     demanded_words: str
@@ -101,6 +101,13 @@ def peaks_csv(features: Features) -> str:
     return csv_text(columns, [row for kind in Kind for row in _csv_rows(features, kind)])
 
 
+def location_words(feature: Feature, level: str) -> tuple[str, ...]:
+    """The stretches in which it can be, all with the digits of the widest."""
+    parts = feature.location(level)
+    widest = max((part.high - part.low for part in parts), default=0.0)
+    return tuple(numbers.interval(part.low, part.high, span=widest) for part in parts)
+
+
 def unsolved_in(feature: Feature, level: str) -> int:
     """How many places have no price because the programme was not solved. Such places are never ruled out, so that
     they lie in the location intervals; where no curve has the feature, none does and the place is ruled out."""
@@ -138,8 +145,7 @@ def _at(features: Features, feature: Feature, key: str, is_chosen: bool) -> AtLe
     return AtLevel(
         key=key,
         level=numbers.level_words(key),
-        location=" or ".join(numbers.interval(part.low, part.high) for part in feature.location(key))
-        or "nowhere",
+        location=location_words(feature, key) or ("nowhere",),
         height=UNSOLVED if height is None else numbers.interval(height.low, height.high),
         demanded=demanded,
         demanded_words=words[demanded],
