@@ -71,9 +71,12 @@ def width(value: float, *, unit: str = "", log: bool = False) -> str:
     return f"{significant(value)} {unit}".strip()
 
 
-def interval(low: float, high: float) -> str:
-    """ "63.1 to 68.9": to a twentieth of its width or better, rounded outwards, so that it is never narrower."""
-    span = high - low
+def interval(low: float, high: float, *, span: float | None = None) -> str:
+    """ "63.1 to 68.9": to a twentieth of its width or better, rounded outwards, so that it is never narrower.
+
+    span  the width by which the digits are chosen, where several intervals stand side by side
+    """
+    span = high - low if span is None else span
     if not span > 0.0:
         return significant(low, 4)
     places = 1 - math.floor(math.log10(span / 2.0))

@@ -14,10 +14,12 @@ from playwright.sync_api import Page, expect
 from core.measurements.models import Release
 from core.people.models import User
 from core.theories.models import Curve, Theory
+from fits.assessments.features import features_of
 from fits.reports.models import ShareLink
 from tests.browser.conftest import WIDE, Browsing
 from tests.browser.pages import PAGES, Row
 from tests.browser.survey import Survey, survey_of
+from tests.reports.searches import NOTHING_FOUND, stored_search
 
 pytestmark = pytest.mark.django_db(transaction=True)
 
@@ -132,12 +134,16 @@ def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None
         "releases": survey.release.pk,
         "reports": survey.report.pk,
     }
+    survey.report.snapshot["features"] = features_of(stored_search(survey.done, NOTHING_FOUND, survey.member))
+    survey.report.save()
     person = survey.member.memberships.get().pk
     rest = {"membership_pk": person, "name": "curves", "form": "csv", "key": "none"}
     shown = []
     for name, path in routes(get_resolver().url_patterns):
         if name in NO_PAGES:
             own = {"pk": keys.get(path.split("/")[0]), "token": survey.secret, **rest}
+            if name.endswith("_features"):
+                own["name"] = "features.json"
             address = reverse(name, kwargs={key: own[key] for key in own if f"{key}>" in path})
             answer = client.get(address)
             assert answer.status_code in {200, 302, 405}, address

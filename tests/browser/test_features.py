@@ -2,7 +2,6 @@
 
 import os
 import re
-from collections.abc import Iterator
 from pathlib import Path
 from typing import Any
 
@@ -110,6 +109,31 @@ def test_another_level_changes_sentences_table_and_charts(
     assert max(widths, key=widths.get) == "0.67"
 
 
+def test_on_paper_every_chart_is_its_still_drawing(
+    survey: Survey, search: FeatureSearch, browsing: Browsing
+) -> None:
+    page = browsing.page(survey.member)
+    page.goto(survey.done.get_absolute_url())
+    page.evaluate("dispatchEvent(new Event('beforeprint'))")
+    page.emulate_media(media="print")
+    page.pdf()
+    stills = page.locator("[data-features] img.drawn")
+    assert stills.count() >= 6
+    for still in stills.all():
+        expect(still).to_be_visible()
+        assert still.evaluate("still => still.complete && still.naturalWidth > 0")
+
+
+def test_features_can_be_read_without_scripts(
+    survey: Survey, search: FeatureSearch, browsing: Browsing
+) -> None:
+    page = browsing.page(survey.member, scripts=False)
+    page.goto(f"{survey.done.get_absolute_url()}?level=0.67")
+    expect(page.locator("[data-features] p[data-level]:visible").first).to_contain_text("At 67")
+    expect(page.locator("table.peaks").first).to_be_visible()
+    expect(page.locator("[data-features] [data-pick]")).to_be_hidden()
+
+
 @pytest.mark.parametrize("width", [WIDE, NARROW])
 def test_a_search_is_followed_and_its_end_shown(survey: Survey, browsing: Browsing, width: int) -> None:
     running = running_search(survey.done, _found, survey.member)
@@ -125,7 +149,7 @@ def test_a_search_is_followed_and_its_end_shown(survey: Survey, browsing: Browsi
 
 
 @pytest.fixture
-def picking(survey: Survey, search: FeatureSearch, browsing: Browsing) -> Iterator[Page]:
+def picking(survey: Survey, search: FeatureSearch, browsing: Browsing) -> Page:
     """The page with its chart for picking open."""
     page = browsing.page(survey.member)
     page.goto(survey.done.get_absolute_url())
@@ -141,18 +165,19 @@ def test_a_drag_over_the_chart_fills_the_list(survey: Survey, picking: Page) -> 
     page = picking
     area = page.locator("#window-picker .nsewdrag").first
     area.scroll_into_view_if_needed()
-    for start, end in ((0.2, 0.35), (0.5, 0.7)):
+    field = page.get_by_label("Windows, in cycles per hour")
+    line = r"\d(\.\d+)? to \d(\.\d+)?"
+    for lines, (start, end) in enumerate(((0.2, 0.35), (0.5, 0.7)), start=1):
         box = area.bounding_box()
         assert box is not None
         page.mouse.move(box["x"] + start * box["width"], box["y"] + 60)
         page.mouse.down()
         page.mouse.move(box["x"] + end * box["width"], box["y"] + 90, steps=6)
+        # A hand takes its time: what is picked is drawn before it lets go.
+        expect(page.locator("#window-picker .select-outline").first).to_be_attached()
+        page.mouse.move(box["x"] + end * box["width"], box["y"] + 91)
         page.mouse.up()
-    field = page.get_by_label("Windows, in cycles per hour")
-    expect(field).to_have_value(
-        # Two lines of two numbers each.
-        re.compile(r"^\d\.\d+ to \d\.\d+\n\d\.\d+ to \d\.\d+$")
-    )
+        expect(field).to_have_value(re.compile(rf"^{line}(\n{line}){{{lines - 1}}}$"))
     picture(page, "picking", WIDE)
     assert seen_faults(page) == []
     page.get_by_role("button", name="Seek", exact=True).click()

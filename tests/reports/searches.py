@@ -6,6 +6,16 @@ from typing import Any
 from core.people.models import User
 from fits.assessments.models import Assessment, FeaturePart, FeatureSearch
 
+NOTHING_FOUND: dict[str, Any] = {
+    "theories": [],
+    "count": [],
+    "count_thinning": 0.0,
+    "dip_count": [],
+    "peaks": [],
+    "dips": [],
+    "spacing": None,
+    "harmonic": None,
+}
 Kind, Status = FeaturePart.Kind, FeaturePart.Status
 
 

@@ -9,7 +9,7 @@ from fits.reports.features.count_words import count_sentence, thinning_sentence
 from fits.reports.features.document import Features, Kind
 from fits.reports.features.sampling_words import sampling_sentence
 from fits.reports.features.spacing_words import harmonic_sentence, spacing_sentence
-from fits.reports.features.tables import FeatureRow, feature_rows, theory_rows
+from fits.reports.features.tables import FeatureRow, feature_rows
 
 RADIUS = 0.31
 BLANK: dict[str, Any] = {
@@ -202,7 +202,7 @@ def test_a_peak_that_costs_more_than_the_radius_to_leave_out_is_demanded() -> No
     row = row_of(peak([0.2, 0.1, 0.5], {"price": 0.4, "entry_level": 0.983}, [2.99, 4.76]))
     (at,) = row.levels
     assert (row.name, row.window, row.demanded_up_to) == ("Peak 1", "1.00 to 5.00", "98.3\xa0%")
-    assert (at.location, at.height, at.demanded_words) == ("1.80 to 3.40", "2.99 to 4.76", "yes")
+    assert (at.location, at.height, at.demanded_words) == (("1.80 to 3.40",), "2.99 to 4.76", "yes")
     assert row.remark == ""
 
 
@@ -222,17 +222,3 @@ def test_what_could_not_be_solved_is_said_and_never_called_impossible() -> None:
     assert (at.height, at.demanded_words, row.demanded_up_to) == ("could not be solved",) * 3
     # The third place, outside the location interval, is one that no curve has: it is ruled out.
     assert row.remark == "At one place the programme could not be solved, which does not rule it out."
-
-
-def test_places_of_a_theory_stand_in_the_column_of_their_window() -> None:
-    found = peak([0.2, 0.1, 0.5], {"price": 0.4, "entry_level": 0.98}, [1.0, 2.0])
-    places = [
-        {"x": 2.0, "window": [1.0, 5.0], "inside": {"0.95": True}},
-        {"x": 4.5, "window": [1.0, 5.0], "inside": None},
-        {"x": 7.25, "window": None, "inside": None},
-    ]
-    theories = [{"name": "Flat floor", "peaks": places, "dips": []}]
-    (row,) = theory_rows(Features(BLANK | {"peaks": [found], "theories": theories}), "0.95", Kind.PEAK)
-    ((first, second),) = row.cells
-    assert (first.x, first.sides[0].is_inside, second.x, second.sides) == ("2.000", True, "4.500", ())
-    assert row.elsewhere == "7.250"

@@ -143,4 +143,15 @@
   legend.addEventListener("change", apply);
   apply();
   drawFeaturesWhenNear();
+
+  // On paper nothing is folded away.
+  const folded = () => result.querySelectorAll("details.dips:not([open])");
+  let unfolded = [];
+  window.addEventListener("beforeprint", () => {
+    unfolded = [...folded()];
+    for (const part of unfolded) part.open = true;
+  });
+  window.addEventListener("afterprint", () => {
+    for (const part of unfolded) part.open = false;
+  });
 })();

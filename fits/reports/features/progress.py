@@ -9,6 +9,7 @@ from fits.reports.feature_searches import windows_in_words
 from fits.reports.features.count_words import count_sentence
 from fits.reports.features.document import Features, Kind
 from fits.reports.features.section import failures_of
+from fits.reports.features.tables import location_words
 from fits.reports.snapshot import DEFAULT_LEVEL
 
 
@@ -46,7 +47,7 @@ def _found(features: Features) -> tuple[str, ...]:
     sentences = [count_sentence(features, level, kind) for kind in Kind if features.steps(kind)]
     for kind in Kind:
         for feature in features.found(kind):
-            places = " or ".join(numbers.interval(part.low, part.high) for part in feature.location(level))
+            places = " or ".join(location_words(feature, level))
             at, window = numbers.level_words(level), feature.window
             sought = f"{numbers.significant(window.low)} to {numbers.significant(window.high)}"
             sentences.append(

@@ -52,8 +52,8 @@ def features_section(snapshot: Snapshot, level: str) -> FeaturesSection | None:
     failed = {failure["kind"] for failure in features.part("failures") or []}
     is_even = "spacing" not in failed
     return FeaturesSection(
-        peaks=_sought(features, level, Kind.PEAK),
-        dips=_sought(features, level, Kind.DIP),
+        peaks=_sought(snapshot, features, level, Kind.PEAK),
+        dips=_sought(snapshot, features, level, Kind.DIP),
         spacing=_said(features, level, lambda key: spacing_sentence(features, key, unit)) if is_even else (),
         harmonic=_said(features, level, lambda key: harmonic_sentence(features, key, unit)),
         sampling=_unbroken(sampling_sentence(features)),
@@ -80,11 +80,11 @@ def failures_of(features: Features) -> tuple[str, ...]:
     )
 
 
-def _sought(features: Features, level: str, kind: Kind) -> Sought:
+def _sought(snapshot: Snapshot, features: Features, level: str, kind: Kind) -> Sought:
     return Sought(
         count=_said(features, level, lambda key: count_sentence(features, key, kind)),
         rows=feature_rows(features, level, kind),
-        theories=theory_rows(features, level, kind),
+        theories=theory_rows(snapshot, features, level, kind),
     )
 
 

@@ -30,7 +30,8 @@ def unsolved_places(profile: Document, level: str, key: str) -> int:
 
 def in_words(stretches: list[Interval], unit: str) -> str:
     """ "0.61 to 0.65 or 0.70 to 0.71 cycles per hour"."""
-    words = " or ".join(numbers.interval(part.low, part.high) for part in stretches)
+    widest = max(part.high - part.low for part in stretches)
+    words = " or ".join(numbers.interval(part.low, part.high, span=widest) for part in stretches)
     return f"{words} {unit}".strip()
 
 

@@ -1,13 +1,14 @@
 """The tables of peaks and dips: where, how high, demanded up to which level, and what the theories say there."""
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 
 from fits.reports import numbers
 from fits.reports.exports import csv_text
-from fits.reports.features.document import Feature, Features, Interval, Kind, Standing
+from fits.reports.features.document import Feature, Features, Kind, Standing
+from fits.reports.features.own import OwnPeaks, own_peaks
 from fits.reports.figures.figure import Cell
-from fits.reports.snapshot import Document
+from fits.reports.snapshot import Snapshot
 
 UNSOLVED = "could not be solved"
 
@@ -18,7 +19,7 @@ class AtLevel:
 
     key: str
     level: str
-    location: str
+    location: tuple[str, ...]
     height: str
     demanded: bool | None
     demanded_words: str
@@ -37,14 +38,6 @@ class FeatureRow:
 
 
 @dataclass(frozen=True)
-class OwnPlace:
-    """A peak of a theory's own: x, and at each level whether that is inside the region (empty: not known)."""
-
-    x: str
-    sides: tuple["Side", ...]
-
-
-@dataclass(frozen=True)
 class Side:
     """Inside or outside at one level."""
 
@@ -54,11 +47,21 @@ class Side:
 
 
 @dataclass(frozen=True)
+class OwnPlace:
+    """Where a theory has its highest peak of a window, at each level whether that is inside (empty: not known), and
+    where its lesser ones are. `x` is empty where it has none."""
+
+    x: str
+    sides: tuple[Side, ...]
+    lesser: str
+
+
+@dataclass(frozen=True)
 class TheoryRow:
     """The peaks of one theory: those in the window of each feature, and those elsewhere."""
 
     name: str
-    cells: tuple[tuple[OwnPlace, ...], ...]
+    cells: tuple[OwnPlace, ...]
     elsewhere: str
 
 
@@ -67,12 +70,15 @@ def feature_rows(features: Features, level: str, kind: Kind) -> tuple[FeatureRow
     return tuple(_row(features, feature, level) for feature in features.found(kind))
 
 
-def theory_rows(features: Features, level: str, kind: Kind) -> tuple[TheoryRow, ...]:
+def theory_rows(snapshot: Snapshot, features: Features, level: str, kind: Kind) -> tuple[TheoryRow, ...]:
     """One for each curve that was judged."""
-    windows = [feature.window for feature in features.found(kind)]
     return tuple(
-        _theory_row(theory, theory["peaks" if kind is Kind.PEAK else "dips"], windows, level)
-        for theory in features.part("theories") or []
+        TheoryRow(
+            name=theory.name,
+            cells=tuple(_own_place(theory, feature.number, level) for feature in features.found(kind)),
+            elsewhere=_listed(theory.elsewhere),
+        )
+        for theory in own_peaks(snapshot, features, kind)
     )
 
 
@@ -93,6 +99,13 @@ def peaks_csv(features: Features) -> str:
         "demanded_up_to_level",
     )
     return csv_text(columns, [row for kind in Kind for row in _csv_rows(features, kind)])
+
+
+def location_words(feature: Feature, level: str) -> tuple[str, ...]:
+    """The stretches in which it can be, all with the digits of the widest."""
+    parts = feature.location(level)
+    widest = max((part.high - part.low for part in parts), default=0.0)
+    return tuple(numbers.interval(part.low, part.high, span=widest) for part in parts)
 
 
 def unsolved_in(feature: Feature, level: str) -> int:
@@ -132,8 +145,7 @@ def _at(features: Features, feature: Feature, key: str, is_chosen: bool) -> AtLe
     return AtLevel(
         key=key,
         level=numbers.level_words(key),
-        location=" or ".join(numbers.interval(part.low, part.high) for part in feature.location(key))
-        or "nowhere",
+        location=location_words(feature, key) or ("nowhere",),
         height=UNSOLVED if height is None else numbers.interval(height.low, height.high),
         demanded=demanded,
         demanded_words=words[demanded],
@@ -141,25 +153,16 @@ def _at(features: Features, feature: Feature, key: str, is_chosen: bool) -> AtLe
     )
 
 
-def _theory_row(theory: Document, found: list[Document], windows: list[Interval], level: str) -> TheoryRow:
-    own = list(found)
-    in_windows = [[place for place in own if _is_in(place, window)] for window in windows]
-    elsewhere = [place for place in own if not any(_is_in(place, window) for window in windows)]
-    return TheoryRow(
-        name=theory["name"],
-        cells=tuple(tuple(_place(place, level) for place in places) for places in in_windows),
-        elsewhere=", ".join(numbers.significant(float(place["x"]), 4) for place in elsewhere),
-    )
+def _own_place(theory: OwnPeaks, number: int, level: str) -> OwnPlace:
+    judged = theory.judged.get(number)
+    if judged is None:
+        return OwnPlace("", (), "")
+    sides = tuple(Side(key, inside, key == level) for key, inside in judged.inside.items())
+    return OwnPlace(numbers.significant(judged.x, 4), sides, _listed(theory.lesser[number]))
 
 
-def _is_in(place: Document, window: Interval) -> bool:
-    """Each place was looked up in one window, also where windows overlap."""
-    return place["window"] is not None and Interval(*map(float, place["window"])) == window
-
-
-def _place(place: Document, level: str) -> OwnPlace:
-    sides = tuple(Side(key, bool(inside), key == level) for key, inside in (place["inside"] or {}).items())
-    return OwnPlace(numbers.significant(float(place["x"]), 4), sides)
+def _listed(places: Sequence[float]) -> str:
+    return ", ".join(numbers.significant(x, 4) for x in places)
 
 
 def _csv_rows(features: Features, kind: Kind) -> Iterable[tuple[Cell, ...]]:

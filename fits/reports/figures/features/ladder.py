@@ -115,11 +115,12 @@ def _ends(step: Step, standing: Standing) -> list[float]:
 
 
 def _beyond(step: Step, top: float) -> Points:
-    words = f"{numbers.significant(step.lower)} ↑"
+    words = f"{numbers.significant(step.lower, 2)} ↑"
     return Points(
         colour=palette.OUTSIDE,
         x=(float(step.at_most),),
-        y=(top,),
+        # In two rows: side by side they would run into one another.
+        y=(top if step.at_most % 2 == 0 else 0.92 * top,),
         marker=Marker.NONE,
         words=(words,),
         place=Place.BELOW,

@@ -27,7 +27,7 @@ def _prices(snapshot: Snapshot, level: str, curve: str, kind: Kind, name: str, c
     rows: list[tuple[Cell, ...]] = []
     for feature in found:
         x, price = feature.found["profile"]["x"], feature.found["profile"]["price"]
-        layers += price_lines(x, price, label=feature.name, colour=colour)
+        layers += price_lines(x, price, label=f"price of a {kind}", colour=colour)
         known = [(value, at) for at, value in feature.profile if value is not None]
         if known:
             layers.append(_number(feature.number, min(known)[1], features, colour))

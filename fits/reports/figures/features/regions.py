@@ -2,6 +2,7 @@
 
 from fits.reports import numbers
 from fits.reports.features.document import Feature, Features, Kind
+from fits.reports.features.own import own_peaks
 from fits.reports.figures import palette
 from fits.reports.figures.features.contours import Outline, outlines
 from fits.reports.figures.features.over_data import data_and_fit, x_axis
@@ -45,7 +46,8 @@ def regions(snapshot: Snapshot, *, level: str, curve: str) -> Figure | None:
         caption=(
             "Each outline holds every place and height at which some curve of the ball has its peak (or dip) of that "
             "window: exact, by one programme for each point of a map. One dash for each level, the chosen one strong. "
-            "Circles and crosses: peaks and dips of the curve looked at, inside and outside."
+            "Circles and crosses: the highest peak (lowest dip) of the curve looked at in each window, inside and "
+            "outside the location interval."
         ),
         x=x_axis(snapshot),
         panels=(Panel(Axis(snapshot.y_label)),),
@@ -86,14 +88,15 @@ def _contour(features: Features, feature: Feature, level: str, line: Outline) ->
 def _name(feature: Feature, features: Features) -> list[Layer]:
     """The number of a feature, clear of its widest region."""
     key = features.levels[-1]
-    height, location = feature.height(key), feature.location(key)
-    if height is None or not location:
+    height = feature.height(key)
+    known = [(price, x) for x, price in feature.profile if price is not None]
+    if height is None or not known or not feature.location(key):
         return []
     is_peak = feature.kind is Kind.PEAK
     return [
         Points(
             colour=COLOURS[feature.kind],
-            x=((location[0].low + location[-1].high) / 2.0,),
+            x=(min(known)[1],),
             y=(height.high if is_peak else height.low,),
             marker=Marker.NONE,
             words=(str(feature.number) if is_peak else f"dip {feature.number}",),
@@ -103,35 +106,23 @@ def _name(feature: Feature, features: Features) -> list[Layer]:
 
 
 def _theories(snapshot: Snapshot, features: Features) -> list[Layer]:
-    """The own peaks and dips of the curve looked at."""
+    """The own peaks and dips of the curve looked at, as far as the regions speak of them."""
     layers: list[Layer] = []
-    judged = {theory["name"]: theory for theory in features.part("theories") or []}
-    for index, name in enumerate(snapshot.names):
-        for place in [*judged.get(name, {}).get("peaks", []), *judged.get(name, {}).get("dips", [])]:
-            if not place["inside"]:
-                continue
-            x = float(place["x"])
-            layers.append(
+    for kind in Kind:
+        for theory in own_peaks(snapshot, features, kind):
+            layers += [
                 Points(
-                    label=name,
-                    colour=palette.curve_colour(index),
-                    curve=name,
+                    label=theory.name,
+                    colour=palette.curve_colour(snapshot.names.index(theory.name)),
+                    curve=theory.name,
                     choice=Choice.ONE,
-                    inside={key: bool(inside) for key, inside in place["inside"].items()},
-                    x=(x,),
-                    y=(_height_at(snapshot, name, x),),
+                    inside=own.inside,
+                    x=(own.x,),
+                    y=(own.y,),
                     marker=Marker.CIRCLE,
                     size=6.0,
                 )
-            )
+                for own in theory.judged.values()
+                if own.inside
+            ]
     return layers
-
-
-def _height_at(snapshot: Snapshot, name: str, x: float) -> float:
-    line = snapshot.drawing(name)["on_grid"]
-    grid, y = line["x"], line["y"]
-    after = next((index for index, value in enumerate(grid) if value >= x), len(grid) - 1)
-    before = max(0, after - 1)
-    span = grid[after] - grid[before]
-    share = (x - grid[before]) / span if span > 0.0 else 0.0
-    return float(y[before] + min(max(share, 0.0), 1.0) * (y[after] - y[before]))
