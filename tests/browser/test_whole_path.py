@@ -87,7 +87,7 @@ def publish_a_release(page: Page) -> None:
     expect(page.get_by_role("button", name="Publish")).to_have_count(0)
     for column, role in (("frequency", "x"), ("height", "y"), ("spread", "error of y")):
         page.get_by_label(f"What {column} is").select_option(label=role)
-    page.get_by_role("button", name="Apply to the columns").click()
+    page.get_by_role("button", name="Read it so").click()
     expect(page.locator(".figure .main-svg").first).to_be_visible()
     page.get_by_role("button", name="Publish").click()
     expect(page.get_by_role("heading", level=1)).to_have_text("Release 1")
