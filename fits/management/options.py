@@ -229,9 +229,11 @@ def _settings_context(settings: Settings) -> dict[str, Any]:
 def _command_line(command: str, options: Mapping[str, Any], curve_paths: Sequence[str]) -> str:
     """A command that computes the same again; files by name, since paths are this machine's."""
     words = ["python", "manage.py", command, safe_name(options["data"]), *map(safe_name, curve_paths)]
-    for name in ("covariance", "windows"):
+    # Windows of the command of features are stretches of x, so that it calls the matrix otherwise.
+    matrix = "window-matrix" if command == "features" else "windows"
+    for option, name in (("covariance", "covariance"), (matrix, "matrix")):
         if options[name]:
-            words += [f"--{name}", safe_name(options[name])]
+            words += [f"--{option}", safe_name(options[name])]
     words += ["--levels", ",".join(f"{level:g}" for level in options["levels"])]
     for name in ("resolution", "feature_width"):
         if options[name] is not None:
