@@ -1,5 +1,6 @@
 """All feature statements of one assessment, in parts that can be computed apart."""
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 
@@ -32,6 +33,9 @@ from fits.engine.features.space import (
 from fits.engine.features.spacing import SpacingProfile, spacing_profile
 from fits.engine.result import Result
 
+# Standard errors by which a rise of the fit stands out of the noise, so that a window is opened for its peak. Whether
+# the data demand that peak is for the ball to say.
+STANDS_OUT = 2.0
 MAP_COLUMNS, MAP_ROWS = 60, 40
 # Beyond this multiple of the largest radius the map need not be exact.
 _MAP_MARGIN = 1.15
@@ -97,6 +101,11 @@ class FeatureCase:
         """That of the highest level."""
         return max(self.radii)
 
+    @property
+    def least_rise(self) -> float:
+        """The price of levelling a rise that is taken for more than a ripple of noise."""
+        return STANDS_OUT * math.sqrt(self.result.fit.variance)
+
 
 def feature_case(result: Result) -> FeatureCase:
     """Grid and calibrated radii of an assessment."""
@@ -112,7 +121,7 @@ def windows_of(
     refuse_many_windows(len(given))
     if given:
         return tuple(window_between(case.space, low, high) for low, high in given)
-    return windows_of_peaks(case.space, min(case.radii), sign=sign)
+    return windows_of_peaks(case.space, case.least_rise, sign=sign)
 
 
 def find_peak(
@@ -149,7 +158,7 @@ def count_peaks(case: FeatureCase, *, sign: float = 1.0) -> PeakCount:
 
 def find_spacing(case: FeatureCase, *, harmonic: bool = False, look: Look = no_look) -> SpacingProfile | None:
     """Even spacing of the fit's peaks that stand out; None for fewer than three."""
-    windows = windows_of_peaks(case.space, min(case.radii))
+    windows = windows_of_peaks(case.space, case.least_rise)
     tops = [window.first + int(np.argmax(case.space.fit[window.points])) for window in windows]
     basis = case.result.fit.coordinates.basis
     exact_below = _MAP_MARGIN * case.largest_radius

@@ -86,14 +86,14 @@ def refuse_many_windows(count: int) -> None:
         raise InputRefused("too-many-windows", "windows", reason, "Ask for fewer at a time")
 
 
-def windows_of_peaks(space: CurveSpace, radius: float, *, sign: float = 1.0) -> tuple[Window, ...]:
+def windows_of_peaks(space: CurveSpace, least: float, *, sign: float = 1.0) -> tuple[Window, ...]:
     """For each peak of the fit that stands out, the stretch between the neighbouring dips (or the ends).
 
-    A fit has ripples that its ball can do without. To level a rise from a dip to a peak costs
-    (f(p) − f(d))/‖u(p) − u(d)‖; the cheapest rise or fall is taken out, with both its ends, until all that are left
-    cost more than the radius.
+    A fit has ripples that are only noise. To level a rise from a dip to a peak costs (f(p) − f(d))/‖u(p) − u(d)‖, of
+    which noise alone makes sqrt(v); the cheapest rise or fall is taken out, with both its ends, until all that are left
+    cost more than `least`.
     """
-    turns = standing_turns(space, radius, sign=sign)
+    turns = standing_turns(space, least, sign=sign)
     curve = sign * space.fit
     return tuple(
         Window(before, after)
@@ -104,7 +104,7 @@ def windows_of_peaks(space: CurveSpace, radius: float, *, sign: float = 1.0) -> 
     )
 
 
-def standing_turns(space: CurveSpace, radius: float, *, sign: float = 1.0) -> list[int]:
+def standing_turns(space: CurveSpace, least: float, *, sign: float = 1.0) -> list[int]:
     """Both ends of the grid and, between them, the turning points of the fit that stand out."""
     curve = sign * space.fit
     inner = sorted([*interior_peaks(curve).tolist(), *interior_peaks(-curve).tolist()])
@@ -112,7 +112,7 @@ def standing_turns(space: CurveSpace, radius: float, *, sign: float = 1.0) -> li
     while len(turns) > 2:
         prices = [_levelling_price(space, first, second) for first, second in pairwise(turns)]
         cheapest = int(np.argmin(prices))
-        if prices[cheapest] > radius:
+        if prices[cheapest] > least:
             break
         # An end of the grid stays where it is: only its neighbour goes.
         gone = [place for place in (cheapest, cheapest + 1) if 0 < place < len(turns) - 1]

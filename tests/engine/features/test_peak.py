@@ -170,7 +170,7 @@ def test_windows_run_between_the_dips_that_stand_out() -> None:
 def test_a_ripple_that_the_ball_can_do_without_opens_no_window() -> None:
     ripples = interior_peaks(SPACE.fit).size
     assert ripples > 2
-    assert len(standing_turns(SPACE, 0.0)) > len(standing_turns(SPACE, CASE.radii[0])) == 5
+    assert len(standing_turns(SPACE, 0.0)) > len(standing_turns(SPACE, CASE.least_rise)) == 5
     assert standing_turns(SPACE, 1e9) == [0, SPACE.grid.size - 1]
 
 
