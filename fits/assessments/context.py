@@ -65,10 +65,14 @@ def curve_names(assessment: Assessment) -> dict[int, str]:
     """Curve key → name in the result: the theory's, with the version where two curves share a theory."""
     curves = list(assessment.curves.select_related("theory"))
     theories = [curve.theory_id for curve in curves]
-    return {
+    names = {
         curve.pk: curve.theory.name if theories.count(curve.theory_id) == 1 else str(curve)
         for curve in curves
     }
+    # A theory that is renamed keeps in a result the name that it was judged under.
+    ranked = {found["rank"]: found["name"] for found in (assessment.result or {}).get("curves", ())}
+    judged = assessment.verdicts.values_list("curve", "rank") if ranked else ()
+    return names | {curve: ranked[rank] for curve, rank in judged if rank in ranked}
 
 
 def _iso(moment: Any) -> str | None:

@@ -11,6 +11,7 @@ from django.core.management import call_command
 from core.measurements.models import Release
 from core.people.models import User
 from core.theories.models import Curve
+from fits.assessments.context import context_of
 from fits.assessments.features import features_of, newest_search
 from fits.assessments.features_document import contract_of
 from fits.assessments.models import Assessment, FeaturePart, FeatureSearch
@@ -168,6 +169,21 @@ def test_the_samples_of_all_windows_are_the_same_curves(search: FeatureSearch, m
         assert found is not None
         tops.append(found["peaks"][-1]["samples"]["tops"])
     assert tops[0] == tops[1]
+
+
+def test_a_renamed_theory_keeps_the_name_it_was_judged_under(queued: Assessment, curve: Curve) -> None:
+    done = finished(queued)
+    assert done.result is not None
+    judged_as = done.result["curves"][0]["name"]
+    curve.theory.name = "Sloping floor"
+    curve.theory.save()
+    search = done.feature_searches.get()
+    run_plan(search)
+    found = features_of(search)
+    assert found is not None
+    assert [theory["name"] for theory in found["theories"]] == [judged_as]
+    origin = context_of(done)["curves"][0]
+    assert (origin["name"], origin["theory"]) == (judged_as, "Sloping floor")
 
 
 def test_no_search_has_no_document() -> None:

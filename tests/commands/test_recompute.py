@@ -67,6 +67,14 @@ def test_features_are_the_same_to_the_bit_too(done: Assessment, capsys: Output) 
     assert f"features.search {search.pk}.count 1.thinning: 0.5 became 0.0" in capsys.readouterr().out
 
 
+def test_a_theory_may_have_been_renamed_since(done: Assessment, curve: Curve, capsys: Output) -> None:
+    curve.theory.name = "Sloping floor"
+    curve.theory.save()
+    run_all(done.feature_searches.get())
+    call_command("recompute", str(done.pk))
+    assert f"assessment {done.pk}: the same to the bit" in capsys.readouterr().out
+
+
 def test_another_engine_version_is_told(done: Assessment, capsys: Output) -> None:
     Assessment.objects.filter(pk=done.pk).update(engine_version="0.9")
     call_command("recompute", str(done.pk))
