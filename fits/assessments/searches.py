@@ -52,5 +52,7 @@ def settle(**which: Any) -> None:
     over = FeatureSearch.objects.filter(
         ~Exists(parts.filter(status__in=FeaturePart.LIVING)), status__in=FeaturePart.LIVING, **which
     )
-    over.filter(Exists(parts.filter(~Q(status=Status.DONE)))).update(status=Status.FAILED)
-    over.update(status=Status.DONE)
+    unfinished = Exists(parts.filter(~Q(status=Status.DONE)))
+    over.filter(unfinished).update(status=Status.FAILED)
+    # Said again, as the last part of a search may fail between these two updates.
+    over.filter(~unfinished).update(status=Status.DONE)

@@ -2,13 +2,15 @@
 
 from collections.abc import Callable
 from datetime import timedelta
+from typing import Any
 
 import pytest
 from django.conf import settings
+from django.db import connection
 from django.utils import timezone
 
 from core.errors import UserError
-from fits.assessments import feature_parts, leases, tasks
+from fits.assessments import feature_parts, leases, searches, tasks
 from fits.assessments.leases import Lease
 from fits.assessments.models import Assessment, FeaturePart, FeatureSearch
 from fits.assessments.tasks import run_feature_part
@@ -196,3 +198,18 @@ def test_a_search_whose_last_worker_died_before_settling_it_is_settled(
     plan.search.parts.update(status=Status.DONE)
     tasks.sweep()
     assert FeatureSearch.objects.get(pk=plan.search_id).status == Status.DONE
+
+
+def test_a_search_whose_last_part_fails_while_it_is_settled_is_not_called_done(plan: FeaturePart) -> None:
+    def fail_after_first_look(execute: Any, sql: str, params: Any, many: bool, context: Any) -> Any:
+        answer = execute(sql, params, many, context)
+        if sql.startswith("UPDATE") and "SET" in sql.partition("featuresearch")[2]:
+            FeaturePart.objects.filter(pk=plan.pk).update(status=Status.FAILED)
+        return answer
+
+    with connection.execute_wrapper(fail_after_first_look):
+        searches.settle()
+    plan.refresh_from_db()
+    assert plan.status == Status.FAILED
+    searches.settle()
+    assert FeatureSearch.objects.get(pk=plan.search_id).status == Status.FAILED
