@@ -148,6 +148,49 @@ def test_two_who_publish_at_once_get_two_numbers(measurement: Measurement, lead:
     assert set(measurement.releases.values_list("number", flat=True)) == {1, 2, 3, 4}
 
 
+def refusals_together(*changes: Callable[[], object]) -> list[str]:
+    """The codes of those that are refused when all are asked for at once."""
+    start = threading.Barrier(len(changes))
+    refusals: list[str] = []
+
+    def ask(change: Callable[[], object]) -> None:
+        start.wait()
+        try:
+            change()
+        except UserError as error:
+            refusals.append(error.code)
+        finally:
+            connection.close()
+
+    run_together([lambda change=change: ask(change) for change in changes])  # type: ignore[misc]
+    return refusals
+
+
+@pytest.mark.django_db(transaction=True)
+def test_the_axis_does_not_change_under_a_release_that_is_being_published(
+    measurement: Measurement, lead: User
+) -> None:
+    draft = drafted(measurement, lead, PLAIN.replace("1,1,0.1", "0,1,0.1"))
+    words = {"name": "Seiches", "about": "", "x_name": "f", "x_unit": "", "y_name": "P", "y_unit": ""}
+    refusals = refusals_together(
+        lambda: services.publish_release(draft, lead),
+        lambda: services.edit_measurement(measurement=measurement, axis="log", **words),
+    )
+    # Whichever comes second is refused: 0 has no logarithm.
+    assert len(refusals) == 1
+
+
+@pytest.mark.django_db(transaction=True)
+def test_a_draft_that_two_publish_and_discard_at_once_ends_one_way(
+    measurement: Measurement, lead: User
+) -> None:
+    draft = drafted(measurement, lead)
+    refusals = refusals_together(
+        lambda: services.publish_release(draft, lead), lambda: services.discard_release(draft)
+    )
+    assert refusals == ["not-a-draft"]
+
+
 def run_together(works: list[Callable[[], None]]) -> None:
     threads = [threading.Thread(target=work) for work in works]
     for thread in threads:

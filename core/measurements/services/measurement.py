@@ -35,6 +35,7 @@ def create_measurement(
     return measurement
 
 
+@transaction.atomic
 def edit_measurement(
     *,
     measurement: Measurement,
@@ -47,11 +48,9 @@ def edit_measurement(
     axis: str,
 ) -> None:
     """Other words for it. Its axis is settled once a release is published: verdicts rest on it."""
-    published = measurement.releases.filter(state=Release.State.PUBLISHED)
-    if (
-        axis != Measurement.objects.values_list("axis", flat=True).get(pk=measurement.pk)
-        and published.exists()
-    ):
+    # Whoever publishes at this moment holds the same lock.
+    kept = Measurement.objects.select_for_update().get(pk=measurement.pk)
+    if axis != kept.axis and measurement.releases.filter(state=Release.State.PUBLISHED).exists():
         raise UserError(
             "axis-settled", "a release is published already", "Add a new measurement for another axis"
         )

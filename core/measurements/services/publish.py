@@ -18,7 +18,9 @@ def publish_release(release: Release, user: User) -> Release:
     """Number the draft and make it immutable, once all rules of its data hold."""
     # The measurement's row is the lock: two who publish at once get one number after the other.
     measurement = Measurement.objects.select_for_update().get(pk=release.measurement_id)
-    draft = Release.objects.filter(pk=release.pk, state=Release.State.DRAFT).first()
+    # Nor may it be mapped otherwise, or discarded, between the check and the number.
+    drafts = Release.objects.select_for_update()
+    draft = drafts.filter(pk=release.pk, state=Release.State.DRAFT).first()
     if draft is None:
         raise UserError("not-a-draft", "this release is a draft no more", "Look at the measurement's page")
     draft.measurement = measurement
