@@ -146,10 +146,20 @@ def test_the_scheduler_comes_up_healthy(machine: Machine) -> None:
 
 def test_static_files_are_collected(machine: Machine, tmp_path: Path) -> None:
     line = next(line for line in (DOCKER / "Dockerfile").read_text().splitlines() if "collectstatic" in line)
-    command = line.removeprefix("RUN ").split(" && ")[0].split()
-    done = machine.run([*command, "--dry-run"])
+    command = line.removeprefix("RUN ").split(" && ")[0]
+    done = machine.run(["sh", "-c", f"{command} --dry-run"])
     assert done.returncode == 0, done.stderr
     assert "static file" in done.stdout
+
+
+def test_no_secret_key_is_made_for_the_image(machine: Machine, tmp_path: Path) -> None:
+    line = next(line for line in (DOCKER / "Dockerfile").read_text().splitlines() if "collectstatic" in line)
+    command = line.removeprefix("RUN ").split(" && ")[0]
+    home = tmp_path / "home"
+    unset = "unset INRADIUS_SECRET_KEY; export INRADIUS_HOME="
+    done = machine.run(["sh", "-c", f"{unset}{home}; {command} --dry-run"])
+    assert done.returncode == 0, done.stderr
+    assert not (home / "secret_key").exists()
 
 
 def test_the_health_check_of_postgresql_is_well_formed(machine: Machine) -> None:
