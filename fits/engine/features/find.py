@@ -6,9 +6,11 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from fits.engine.coordinates import OrthonormalFunctions
 from fits.engine.data import FloatArray
 from fits.engine.features.count import PeakCount, peak_count
 from fits.engine.features.intervals import intervals_below
+from fits.engine.features.narrow import refined_profile, top_of_fit
 from fits.engine.features.peak import (
     HeightMap,
     Profile,
@@ -129,7 +131,9 @@ def find_peak(
 ) -> PeakFeature:
     """Location, height, map and absence of the peak in one window."""
     space = case.space
+    basis = case.result.fit.coordinates.basis
     profile = peak_profile(space, window, sign=sign, look=look)
+    profile = refined_profile(profile, space, basis, window, radii=case.radii, sign=sign, look=look)
     location = tuple(
         tuple(Range(*interval) for interval in intervals_below(profile.x, profile.price, radius))
         for radius in case.radii
@@ -158,13 +162,26 @@ def count_peaks(case: FeatureCase, *, sign: float = 1.0) -> PeakCount:
 
 def find_spacing(case: FeatureCase, *, harmonic: bool = False, look: Look = no_look) -> SpacingProfile | None:
     """Even spacing of the fit's peaks that stand out; None for fewer than three."""
-    windows = windows_of_peaks(case.space, case.least_rise)
-    tops = [window.first + int(np.argmax(case.space.fit[window.points])) for window in windows]
-    basis = case.result.fit.coordinates.basis
-    exact_below = _MAP_MARGIN * case.largest_radius
+    space, basis = case.space, case.result.fit.coordinates.basis
+    windows = windows_of_peaks(space, case.least_rise)
+    # Precise data know their peaks to less than a step of the grid, and so must the series that is tried.
+    tops = [_top(space, basis, window) for window in windows]
     return spacing_profile(
-        case.space, basis, case.space.grid[tops], exact_below=exact_below, harmonic=harmonic, look=look
+        space,
+        basis,
+        np.array(tops),
+        radii=case.radii,
+        exact_below=_MAP_MARGIN * case.largest_radius,
+        harmonic=harmonic,
+        look=look,
     )
+
+
+def _top(space: CurveSpace, basis: OrthonormalFunctions, window: Window) -> float:
+    top = top_of_fit(space, basis, window)
+    if top is not None:
+        return top
+    return float(space.grid[window.first + int(np.argmax(space.fit[window.points]))])
 
 
 def sample_reach(

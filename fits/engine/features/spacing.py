@@ -1,6 +1,7 @@
 """Are the peaks evenly spaced? The price of "peaks at x1 + kΔ, k = 0 … K − 1" for each Δ, at the best x1; for a
 harmonic series x1 = Δ."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -16,6 +17,8 @@ STARTS = 13
 _SPACING_SPREAD = 0.3
 _START_SPREAD = 0.35
 _REFINEMENTS = 6
+# Finer spacings on either side of the fit's own.
+_FINER = 12
 FEWEST_PEAKS = 3
 
 
@@ -33,30 +36,68 @@ def spacing_profile(
     basis: OrthonormalFunctions,
     peaks: FloatArray,
     *,
+    radii: Sequence[float],
     exact_below: float,
     harmonic: bool = False,
     look: Look = no_look,
 ) -> SpacingProfile | None:
     """Over spacings around that of the fit's peaks, shape (K,), increasing; None for fewer than three peaks.
 
-    Beyond `exact_below` a price is only a lower bound: that of the stationary points alone, which has a closed form.
+    Precise data leave less than a step of the spacings: where the smallest of the radii (above 0) does, finer ones are
+    looked at around the fit's own. Beyond `exact_below` a price is only a lower bound: that of the stationary points
+    alone, which has a closed form.
     """
-    search = _Search(space, basis, peaks.size, exact_below, look)
     count = peaks.size
     if count < FEWEST_PEAKS:
         return None
-    mean = float(peaks[-1] - peaks[0]) / (count - 1)
-    spacings = mean * np.linspace(1.0 - _SPACING_SPREAD, 1.0 + _SPACING_SPREAD, SPACINGS)
+    search = _Search(space, basis, count, exact_below, look)
+    own = _own_spacing(peaks, harmonic=harmonic)
+    coarse = own * np.linspace(1.0 - _SPACING_SPREAD, 1.0 + _SPACING_SPREAD, SPACINGS)
+    found = _prices(search, peaks, coarse, harmonic=harmonic)
+    finer = _finer(found, [radius for radius in radii if radius > 0.0])
+    if not finer.size:
+        return found
+    more = _prices(search, peaks, finer, harmonic=harmonic)
+    spacings = np.concatenate((found.spacing, more.spacing))
+    order = np.argsort(spacings, kind="stable")
+    return SpacingProfile(
+        spacings[order],
+        np.concatenate((found.price, more.price))[order],
+        np.concatenate((found.first, more.first))[order],
+    )
+
+
+def _own_spacing(peaks: FloatArray, *, harmonic: bool) -> float:
+    """The spacing whose series lies nearest to the fit's peaks, by least squares."""
+    numbers = np.arange(1.0, peaks.size + 1.0)
+    even = numbers - numbers.mean()
+    multiple = float(numbers @ peaks / (numbers @ numbers))
+    # Peaks at negative x are no whole multiples of any spacing.
+    return multiple if harmonic and multiple > 0.0 else float(even @ peaks / (even @ even))
+
+
+def _prices(search: "_Search", peaks: FloatArray, spacings: FloatArray, *, harmonic: bool) -> SpacingProfile:
     if harmonic:
-        firsts = spacings
-        prices = np.array([search.price(first, first) for first in firsts])
-        return SpacingProfile(spacings, prices, firsts)
+        prices = np.array([search.price(float(spacing), float(spacing)) for spacing in spacings])
+        return SpacingProfile(spacings, prices, spacings)
     # For each spacing the series that lies best over the fit's peaks is where the search for x1 starts.
-    centred = peaks.mean() - spacings * (count - 1) / 2.0
-    prices, firsts = np.empty(SPACINGS), np.empty(SPACINGS)
-    for place, spacing in enumerate(spacings):
-        prices[place], firsts[place] = _best_first(search, float(centred[place]), float(spacing))
-    return SpacingProfile(spacings, prices, firsts)
+    centred = peaks.mean() - spacings * (peaks.size - 1) / 2.0
+    pairs = zip(centred, spacings, strict=True)
+    best = np.array([_best_first(search, float(first), float(spacing)) for first, spacing in pairs])
+    return SpacingProfile(spacings, best[:, 0], best[:, 1])
+
+
+def _finer(found: SpacingProfile, radii: Sequence[float]) -> FloatArray:
+    """Spacings on either side of the fit's own, as far as the largest radius reaches and half as far again."""
+    own = SPACINGS // 2
+    step = float(found.spacing[own + 1] - found.spacing[own])
+    beside = float(np.min(found.price[[own - 1, own + 1]]))
+    if not radii or not np.isfinite(beside) or beside <= min(radii):
+        return np.empty(0)
+    # The price grows about in proportion to the way from the fit's own spacing.
+    reach = min(1.0, 1.5 * max(radii) / beside) * step
+    offsets = reach * np.arange(1, _FINER + 1) / (_FINER + 1)
+    return np.asarray(found.spacing[own] + np.concatenate((-offsets[::-1], offsets)))
 
 
 def _best_first(search: "_Search", centre: float, spacing: float) -> tuple[float, float]:
