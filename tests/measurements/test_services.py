@@ -1,7 +1,9 @@
 """Releases from upload to publication: what is kept, what is refused, and how they are numbered."""
 
 import threading
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
+from importlib import import_module
 from typing import Any
 
 import numpy as np
@@ -148,13 +150,17 @@ def test_two_who_publish_at_once_get_two_numbers(measurement: Measurement, lead:
     assert set(measurement.releases.values_list("number", flat=True)) == {1, 2, 3, 4}
 
 
-def refusals_together(*changes: Callable[[], object]) -> list[str]:
-    """The codes of those that are refused when all are asked for at once."""
-    start = threading.Barrier(len(changes))
+@contextmanager
+def meanwhile(
+    monkeypatch: pytest.MonkeyPatch, place: str, change: Callable[[], object]
+) -> Iterator[list[str]]:
+    """Somebody else asks for `change` when `place` is reached; the code of its refusal, if it is refused.
+
+    It gets the time that it would need, and where it has to wait for a lock it ends after the block.
+    """
     refusals: list[str] = []
 
-    def ask(change: Callable[[], object]) -> None:
-        start.wait()
+    def ask() -> None:
         try:
             change()
         except UserError as error:
@@ -162,32 +168,42 @@ def refusals_together(*changes: Callable[[], object]) -> list[str]:
         finally:
             connection.close()
 
-    run_together([lambda change=change: ask(change) for change in changes])  # type: ignore[misc]
-    return refusals
+    other = threading.Thread(target=ask)
+    module, name = place.rsplit(".", 1)
+    reached = getattr(import_module(module), name)
+
+    def with_other(*args: Any) -> None:
+        other.start()
+        other.join(timeout=0.5)
+        reached(*args)
+
+    monkeypatch.setattr(place, with_other)
+    yield refusals
+    other.join()
 
 
 @pytest.mark.django_db(transaction=True)
-def test_the_axis_does_not_change_under_a_release_that_is_being_published(
-    measurement: Measurement, lead: User
+def test_nothing_is_published_between_the_check_of_an_axis_and_its_change(
+    measurement: Measurement, lead: User, monkeypatch: pytest.MonkeyPatch
 ) -> None:
     draft = drafted(measurement, lead, PLAIN.replace("1,1,0.1", "0,1,0.1"))
     words = {"name": "Seiches", "about": "", "x_name": "f", "x_unit": "", "y_name": "P", "y_unit": ""}
-    refusals = refusals_together(
-        lambda: services.publish_release(draft, lead),
-        lambda: services.edit_measurement(measurement=measurement, axis="log", **words),
-    )
-    # Whichever comes second is refused: 0 has no logarithm.
+    saving = "core.measurements.services.measurement._save"
+    with meanwhile(monkeypatch, saving, lambda: services.publish_release(draft, lead)) as refusals:
+        services.edit_measurement(measurement=measurement, axis="log", **words)
+    # 0 has no logarithm.
     assert len(refusals) == 1
+    assert not Release.objects.filter(state=Release.State.PUBLISHED).exists()
 
 
 @pytest.mark.django_db(transaction=True)
-def test_a_draft_that_two_publish_and_discard_at_once_ends_one_way(
-    measurement: Measurement, lead: User
+def test_a_draft_that_is_being_published_is_not_discarded(
+    measurement: Measurement, lead: User, monkeypatch: pytest.MonkeyPatch
 ) -> None:
     draft = drafted(measurement, lead)
-    refusals = refusals_together(
-        lambda: services.publish_release(draft, lead), lambda: services.discard_release(draft)
-    )
+    checking = "core.measurements.services.publish._refuse_unestimable"
+    with meanwhile(monkeypatch, checking, lambda: services.discard_release(draft)) as refusals:
+        services.publish_release(draft, lead)
     assert refusals == ["not-a-draft"]
 
 
