@@ -7,9 +7,10 @@ import pytest
 from fits.reports import numbers
 from fits.reports.features.count_words import count_sentence, thinning_sentence
 from fits.reports.features.document import Features, Kind
+from fits.reports.features.progress import found_so_far
 from fits.reports.features.sampling_words import sampling_sentence
 from fits.reports.features.spacing_words import harmonic_sentence, spacing_sentence
-from fits.reports.features.tables import FeatureRow, feature_rows
+from fits.reports.features.tables import FeatureRow, feature_rows, peaks_csv
 
 RADIUS = 0.31
 BLANK: dict[str, Any] = {
@@ -214,6 +215,45 @@ def test_a_peak_that_the_ball_can_do_without_is_not_demanded() -> None:
 def test_a_peak_without_which_there_is_no_curve_is_demanded() -> None:
     (at,) = row_of(peak([0.2, 0.1, 0.5], {"price": None, "entry_level": 1.0}, [2.99, 4.76])).levels
     assert at.demanded is True
+
+
+def test_an_empty_ball_demands_no_peak_and_places_none() -> None:
+    found = peak([0.2, 0.1, 0.5], {"price": 0.4, "entry_level": 0.3}, [3.5, 3.5])
+    found["location"] = {"0.95": []}
+    empty = Features(BLANK | {"peaks": [found], "radii": [{"level": 0.95, "calibrated": 0.0}]})
+    (row,) = feature_rows(empty, "0.95", Kind.PEAK)
+    (at,) = row.levels
+    assert (at.demanded, at.demanded_words, at.location, at.height) == (
+        None,
+        "radius 0",
+        ("radius 0",),
+        "radius 0",
+    )
+    assert "radius 0" in peaks_csv(empty).splitlines()[1]
+    assert "3.5" not in peaks_csv(empty)
+
+
+@pytest.mark.parametrize(
+    ("price", "said"),
+    [
+        (0.4, ("At 95 % the peak of the window 1.00 to 5.00 lies in 1.80 to 3.40.",)),
+        (
+            0.2,
+            ("At 95 % a peak of the window 1.00 to 5.00, which need not have one, lies in 1.80 to 3.40.",),
+        ),
+    ],
+)
+def test_the_place_of_a_peak_that_is_not_demanded_is_that_of_a_peak_if_there_is_one(
+    price: float, said: tuple[str, ...]
+) -> None:
+    found = peak([0.2, 0.1, 0.5], {"price": price, "entry_level": 0.9}, [2.99, 4.76])
+    assert found_so_far(Features(BLANK | {"peaks": [found]})) == said
+
+
+def test_an_empty_ball_places_no_peak_so_far() -> None:
+    found = peak([0.2, 0.1, 0.5], {"price": 0.4, "entry_level": 0.3}, [3.5, 3.5])
+    radii = [{"level": 0.95, "calibrated": 0.0}]
+    assert found_so_far(Features(BLANK | {"peaks": [found], "radii": radii})) == ()
 
 
 def test_what_could_not_be_solved_is_said_and_never_called_impossible() -> None:

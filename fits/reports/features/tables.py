@@ -11,6 +11,8 @@ from fits.reports.figures.figure import Cell
 from fits.reports.snapshot import Snapshot
 
 UNSOLVED = "could not be solved"
+# An empty ball: whatever is said of all of its curves is true and says nothing.
+EMPTY = "radius 0"
 
 
 @dataclass(frozen=True)
@@ -138,6 +140,8 @@ def _remark(feature: Feature, unsolved: int) -> str:
 
 
 def _at(features: Features, feature: Feature, key: str, is_chosen: bool) -> AtLevel:
+    if features.radius(key) == 0.0:
+        return AtLevel(key, numbers.level_words(key), (EMPTY,), EMPTY, None, EMPTY, is_chosen)
     height = feature.height(key)
     standing = feature.absence(features.radius(key))
     demanded = {Standing.RULED_OUT: True, Standing.POSSIBLE: False, Standing.UNDECIDED: None}[standing]
@@ -171,6 +175,8 @@ def _csv_rows(features: Features, kind: Kind) -> Iterable[tuple[Cell, ...]]:
         for key in features.levels:
             height = feature.height(key)
             standing = UNSOLVED if feature.demanded_up_to is None else feature.absence(features.radius(key))
+            if features.radius(key) == 0.0:
+                height, standing = None, EMPTY
             for part in feature.location(key) or (None,):
                 yield (
                     str(kind),
