@@ -50,12 +50,16 @@ def percent(share: float, *, places: int = 0) -> str:
     return f"{text} %"
 
 
-def entry_level(level: float) -> str:
-    """The smallest level whose ball holds a curve; 0 and 1 are only what the simulation or rounding leave."""
-    if level < 0.001:
-        return "< 0.1 %"
-    if level > 0.999:
-        return "> 99.9 %"
+def entry_level(level: float, *, draws: float = math.inf) -> str:
+    """The smallest level whose ball holds a curve; 0 and 1 are only what the simulation or rounding leave.
+
+    draws  of the simulation that it comes from: fewer than 1000 cannot tell it from 0 or 1 to a tenth of a percent
+    """
+    bound = math.ceil(1000.0 * max(0.001, 1.0 / draws) - 1e-9) / 1000.0
+    if level < bound - 1e-12:
+        return f"< {percent(bound, places=1)}"
+    if level > 1.0 - bound + 1e-12:
+        return f"> {percent(1.0 - bound, places=1)}"
     return percent(level, places=1)
 
 

@@ -210,7 +210,7 @@ def _row(snapshot: Snapshot, curve: Document, index: int, level: str, unsettled:
         proposed_by=snapshot.origin(name).get("proposed_by") or "",
         unsettled_with=unsettled.get(name, ""),
         distance=numbers.significant(curve["distance"]),
-        entry_level=numbers.entry_level(curve["entry_level"]["calibrated"]),
+        entry_level=numbers.entry_level(curve["entry_level"]["calibrated"], draws=snapshot.result["draws"]),
         published_entry_level=numbers.entry_level(curve["entry_level"]["published"]),
         p_value=numbers.p_value(
             curve["p_value"],

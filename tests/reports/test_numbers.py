@@ -41,6 +41,14 @@ def test_entry_levels_at_the_ends_are_bounds() -> None:
     assert numbers.entry_level(1.0) == "> 99.9 %"
     assert numbers.entry_level(0.0) == "< 0.1 %"
     assert numbers.entry_level(0.972) == "97.2 %"
+    assert numbers.entry_level(0.999) == "99.9 %"
+
+
+def test_few_draws_cannot_tell_an_entry_level_from_0_or_1_to_a_tenth_of_a_percent() -> None:
+    assert numbers.entry_level(1.0, draws=2000) == "> 99.9 %"
+    assert numbers.entry_level(1.0, draws=100) == "> 99.0 %"
+    assert numbers.entry_level(0.99, draws=100) == "99.0 %"
+    assert numbers.entry_level(0.0, draws=300) == "< 0.4 %"
 
 
 def test_a_width_on_a_log_axis_is_a_factor() -> None:

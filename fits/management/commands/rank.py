@@ -61,7 +61,7 @@ def ranking_table(result: dict[str, Any], sizes: Sequence[dict[str, Any]] = ()) 
                 f"{curve['rank']}{'' if curve['order_settled'] else '~'}",
                 curve["name"],
                 f"{curve['distance']:.4f}",
-                numbers.entry_level(curve["entry_level"]["calibrated"]),
+                numbers.entry_level(curve["entry_level"]["calibrated"], draws=result["draws"]),
                 numbers.p_value(curve["p_value"], curve["p_value_error"], smallest=smallest),
                 numbers.p_value(curve["scales"]["p_value"], smallest=numbers.smallest_p_value(TABLE_DRAWS)),
                 f"> {curve['scales']['worst']['wider_than']:.3g}",
