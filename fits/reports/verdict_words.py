@@ -2,6 +2,7 @@
 
 from collections.abc import Iterator
 
+from fits.assessments.notes import LEFTOVER_TOO_LARGE, LEFTOVER_TOO_SMALL
 from fits.reports import numbers
 from fits.reports.snapshot import Document, Snapshot
 
@@ -42,12 +43,21 @@ def _balls(snapshot: Snapshot, curve: Document, level: str) -> Iterator[str]:
 def _scales(snapshot: Snapshot, curve: Document, level: str) -> Iterator[str]:
     exact, scales = curve["inside"]["exact"][level], curve["inside"]["scales"][level]
     if exact and not scales:
-        yield f"Inside, but off at {worst_scale(snapshot, curve)}: a small, steady misfit that the ball is blind to."
+        yield f"Inside, but off at {worst_scale(snapshot, curve)}: {_why_off(snapshot, curve)}."
     if scales and not exact:
         yield (
-            "The scale set still holds it: its misfit is spread over many features rather than in the broadest "
-            "ones, where the ball is the sharper of the two."
+            "The scale set still holds it: no misfit summed from the broadest features on is large enough by itself. "
+            "The ball is the sharper of the two where a misfit is spread over many features."
         )
+
+
+def _why_off(snapshot: Snapshot, curve: Document) -> str:
+    """A misfit that takes all functions to show is neither broad nor steady."""
+    if curve["scales"]["worst"]["functions"] < snapshot.result["fit"]["resolution"]:
+        return "a small, steady misfit that the ball is blind to"
+    return (
+        "a misfit of all features together, which the ball, made around the shrunken fit, does not rule out"
+    )
 
 
 def _borderline(curve: Document, level: str) -> Iterator[str]:
@@ -88,10 +98,14 @@ def leftover(snapshot: Snapshot) -> tuple[str, ...]:
     numbers_found = (
         f"χ² = {numbers.significant(found['chi2'], 4)} on {found['dof']} degrees of freedom, p = {written}"
     )
-    if p < 0.05:
+    if p < LEFTOVER_TOO_LARGE:
         verdict = "more than the errors allow"
-    elif p > 0.95:
+    elif p > LEFTOVER_TOO_SMALL:
         verdict = "less than the errors say"
+    elif p < 0.05 or p > 0.95:
+        verdict = (
+            f"rather {'more' if p < 0.05 else 'less'} than the errors say, as by chance in 1 of 20 repeats"
+        )
     else:
         verdict = "about as much as the errors say"
     return (

@@ -104,6 +104,11 @@ def test_inside_but_off_is_explained_with_the_width(computed: Snapshot) -> None:
     curve |= {"p_value": 0.5, "p_value_error": 0.01}
     (sentence,) = verdict_words.explanations(computed, curve, "0.95")
     assert sentence.startswith("Inside, but off at features wider than 2.00 cycles per hour")
+    assert "small, steady misfit" in sentence
+    finest = {"functions": computed.result["fit"]["resolution"], "wider_than": 0.2, "p_value": 0.001}
+    curve["scales"] = {"p_value": 0.01, "worst": finest}
+    (sentence,) = verdict_words.explanations(computed, curve, "0.95")
+    assert "small, steady misfit" not in sentence
 
 
 def test_a_p_value_at_the_border_is_said_to_be_unsure(computed: Snapshot) -> None:
@@ -120,7 +125,13 @@ def leftover_of(computed: Snapshot, p: float) -> str:
 
 
 def test_the_leftover_has_both_readings_always(computed: Snapshot) -> None:
-    for p, verdict in ((0.001, "more than the errors allow"), (0.999, "less than"), (0.5, "about as much")):
+    for p, verdict in (
+        (0.001, "scatters more than the errors allow"),
+        (0.03, "rather more than the errors say, as by chance in 1 of 20 repeats"),
+        (0.5, "about as much"),
+        (0.97, "rather less than the errors say, as by chance in 1 of 20 repeats"),
+        (0.999, "scatters less than the errors say"),
+    ):
         said = leftover_of(computed, p)
         assert verdict in said
         assert "errors are understated" in said
