@@ -86,8 +86,9 @@ def _sentences(snapshot: Snapshot, known: Document) -> tuple[str, ...]:
     if errors == "estimate":
         said.append(
             "The exact and the scale set keep their word whatever n is, unless the data have structure finer than the "
-            "resolution: it passes for error, and all sets are then larger than they need be. The balls keep it as "
-            "nearly as the table shows."
+            "resolution: it passes for error, and all sets are then larger than they need be. Where errors of a known "
+            "size (shared ones, a calibration) stand beside the estimated one, they keep it nearly. The balls keep it "
+            "as nearly as the table shows."
         )
     elif errors not in _UNLIKE:
         said.append(

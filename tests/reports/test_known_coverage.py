@@ -42,6 +42,7 @@ def test_the_table_has_average_and_worst_for_each_set_and_level(computed: Snapsh
         ("given", "whatever n is"),
         ("covariance", "whatever n is"),
         ("estimate", "finer than the resolution"),
+        ("estimate", "a calibration) stand beside the estimated one, they keep it nearly"),
         ("counts", "transformation"),
         ("profile", "no set is exact"),
     ],
