@@ -1,9 +1,8 @@
 """Releases from upload to publication: what is kept, what is refused, and how they are numbered."""
 
 import threading
-from collections.abc import Callable, Iterator
-from contextlib import contextmanager
-from importlib import import_module
+from collections.abc import Callable
+from functools import partial
 from typing import Any
 
 import numpy as np
@@ -14,8 +13,10 @@ from core.errors import UserError
 from core.measurements import services
 from core.measurements.models import Measurement, Release
 from core.measurements.reading.stored import from_bytes, to_bytes
+from core.measurements.services import measurement as editing
 from core.measurements.stored_release import data_of
 from core.people.models import Collaboration, User
+from tests.meanwhile import meanwhile
 
 HEADED = "frequency,power,sigma\n" + "".join(f"{x},{x * x},0.1\n" for x in range(1, 11))
 PLAIN = "x,y,error\n" + "".join(f"{x},{x * x},0.1\n" for x in range(1, 11))
@@ -150,46 +151,13 @@ def test_two_who_publish_at_once_get_two_numbers(measurement: Measurement, lead:
     assert set(measurement.releases.values_list("number", flat=True)) == {1, 2, 3, 4}
 
 
-@contextmanager
-def meanwhile(
-    monkeypatch: pytest.MonkeyPatch, place: str, change: Callable[[], object]
-) -> Iterator[list[str]]:
-    """Somebody else asks for `change` when `place` is reached; the code of its refusal, if it is refused.
-
-    It gets the time that it would need, and where it has to wait for a lock it ends after the block.
-    """
-    refusals: list[str] = []
-
-    def ask() -> None:
-        try:
-            change()
-        except UserError as error:
-            refusals.append(error.code)
-        finally:
-            connection.close()
-
-    other = threading.Thread(target=ask)
-    module, name = place.rsplit(".", 1)
-    reached = getattr(import_module(module), name)
-
-    def with_other(*args: Any) -> None:
-        other.start()
-        other.join(timeout=0.5)
-        reached(*args)
-
-    monkeypatch.setattr(place, with_other)
-    yield refusals
-    other.join()
-
-
 @pytest.mark.django_db(transaction=True)
 def test_nothing_is_published_between_the_check_of_an_axis_and_its_change(
     measurement: Measurement, lead: User, monkeypatch: pytest.MonkeyPatch
 ) -> None:
     draft = drafted(measurement, lead, PLAIN.replace("1,1,0.1", "0,1,0.1"))
     words = {"name": "Seiches", "about": "", "x_name": "f", "x_unit": "", "y_name": "P", "y_unit": ""}
-    saving = "core.measurements.services.measurement._save"
-    with meanwhile(monkeypatch, saving, lambda: services.publish_release(draft, lead)) as refusals:
+    with meanwhile(monkeypatch, editing, "_save", partial(services.publish_release, draft, lead)) as refusals:
         services.edit_measurement(measurement=measurement, axis="log", **words)
     # 0 has no logarithm.
     assert len(refusals) == 1
@@ -201,10 +169,11 @@ def test_a_draft_that_is_being_published_is_not_discarded(
     measurement: Measurement, lead: User, monkeypatch: pytest.MonkeyPatch
 ) -> None:
     draft = drafted(measurement, lead)
-    checking = "core.measurements.services.publish._refuse_unestimable"
-    with meanwhile(monkeypatch, checking, lambda: services.discard_release(draft)) as refusals:
+    discard = partial(services.discard_release, draft)
+    with meanwhile(monkeypatch, Release, "save", discard) as refusals:
         services.publish_release(draft, lead)
     assert refusals == ["not-a-draft"]
+    assert Release.objects.get().number == 1
 
 
 def run_together(works: list[Callable[[], None]]) -> None:

@@ -1,6 +1,7 @@
 """Theories and curves: what is kept, what is refused, and how versions are given."""
 
 import threading
+from functools import partial
 
 import pytest
 from django.db import connection
@@ -12,6 +13,7 @@ from core.people.services import create_collaboration
 from core.theories import services
 from core.theories.models import Curve, Theory
 from core.theories.stored_curve import table_of
+from tests.meanwhile import meanwhile
 
 CURVE = "x,y\n" + "".join(f"{x},{x * x}\n" for x in (3, 1, 2, 4))
 
@@ -98,3 +100,15 @@ def test_two_who_submit_at_once_get_two_versions(
     for thread in threads:
         thread.join()
     assert set(theory.curves.values_list("version", flat=True)) == {1, 2, 3}
+
+
+@pytest.mark.django_db(transaction=True)
+def test_a_draft_that_is_being_submitted_is_not_discarded(
+    theory: Theory, measurement: Measurement, member: User, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    draft = drafted(theory, measurement, member)
+    discard = partial(services.discard_curve, draft)
+    with meanwhile(monkeypatch, Curve, "save", discard) as refusals:
+        services.submit_curve(draft)
+    assert refusals == ["not-a-draft"]
+    assert Curve.objects.get().version == 1

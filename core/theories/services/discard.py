@@ -9,6 +9,8 @@ from core.theories.models import Curve
 @transaction.atomic
 def discard_curve(curve: Curve) -> None:
     """Delete the draft."""
-    deleted, _ = Curve.objects.filter(pk=curve.pk, state=Curve.State.DRAFT).delete()
-    if not deleted:
+    # Django deletes by key what it has looked up before: without the lock it may have been submitted meanwhile.
+    drafts = Curve.objects.select_for_update().filter(pk=curve.pk, state=Curve.State.DRAFT)
+    if not drafts.values_list("pk", flat=True).first():
         raise UserError("not-a-draft", "a submitted curve stays", "Submit a correction as a new version")
+    Curve.objects.filter(pk=curve.pk).delete()

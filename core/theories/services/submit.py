@@ -13,7 +13,8 @@ def submit_curve(curve: Curve) -> Curve:
     """Give the draft its version and make it immutable."""
     # The theory's row is the lock: two who submit at once get one version after the other.
     theory = Theory.objects.select_for_update().get(pk=curve.theory_id)
-    draft = Curve.objects.filter(pk=curve.pk, state=Curve.State.DRAFT).first()
+    # Nor may the draft be discarded meanwhile.
+    draft = Curve.objects.select_for_update().filter(pk=curve.pk, state=Curve.State.DRAFT).first()
     if draft is None:
         raise UserError("not-a-draft", "this curve is a draft no more", "Look at the theory's page")
     versions = theory.curves.filter(measurement=curve.measurement_id)
