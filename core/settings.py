@@ -241,6 +241,8 @@ SESSION_COOKIE_HTTPONLY = True
 CSRF_COOKIE_HTTPONLY = True
 if HTTPS:
     SECURE_PROXY_SSL_HEADER = ("HTTP_X_FORWARDED_PROTO", "https")
+    # Else all people have the proxy's address, and few wrong passwords keep everybody out for a minute.
+    ALLAUTH_TRUSTED_PROXY_COUNT = 1
     SECURE_HSTS_SECONDS = 31_536_000
 
 # ---- Language and time ----

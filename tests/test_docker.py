@@ -162,6 +162,16 @@ def test_no_secret_key_is_made_for_the_image(machine: Machine, tmp_path: Path) -
     assert not (home / "secret_key").exists()
 
 
+def test_people_behind_the_proxy_have_addresses_of_their_own(machine: Machine) -> None:
+    asked = (
+        "from allauth.core.internal.httpkit import get_client_ip; from django.test import RequestFactory; "
+        "ask = RequestFactory(headers={'X-Forwarded-For': '192.0.2.9, 192.0.2.1'}).get; "
+        "print(get_client_ip(ask('/')))"
+    )
+    answer = machine.run(["python", "manage.py", "shell", "--no-imports", "--command", asked])
+    assert answer.stdout.strip() == "192.0.2.1", answer.stderr
+
+
 def test_the_health_check_of_postgresql_is_well_formed(machine: Machine) -> None:
     machine.environment |= {"PGHOST": "127.0.0.1", "PGPORT": str(free_port())}
     no_answer = 2  # where bad options would be 3
