@@ -121,9 +121,17 @@ def standing_turns(space: CurveSpace, least: float, *, sign: float = 1.0) -> lis
 
 
 def _levelling_price(space: CurveSpace, first: int, second: int) -> float:
-    difference = space.values[first] - space.values[second]
-    length = float(np.linalg.norm(difference))
-    return abs(float(difference @ space.centre)) / length if length > 0.0 else 0.0
+    """Of a rise or fall between two turns. An end of the grid is no turn, and curves are least known there: a fall
+    towards it may be dearest to level part of the way."""
+    if second == space.grid.size - 1:
+        turn, others = first, np.arange(first + 1, second + 1)
+    elif first == 0:
+        turn, others = second, np.arange(second)
+    else:
+        turn, others = first, np.array([second])
+    differences = space.values[turn] - space.values[others]
+    lengths = np.linalg.norm(differences, axis=1)
+    return float((np.abs(differences @ space.centre) / np.where(lengths > 0.0, lengths, 1.0)).max())
 
 
 def interior_peaks(curve: FloatArray) -> "np.ndarray[tuple[int], np.dtype[np.intp]]":

@@ -1,8 +1,11 @@
 import numpy as np
 import pytest
 
+from fits.engine.assess import assess
+from fits.engine.data import validated_data
 from fits.engine.features.find import (
     Range,
+    feature_case,
     find_peak,
     sample_reach,
     windows_of,
@@ -12,7 +15,8 @@ from fits.engine.features.programme import Programme
 from fits.engine.features.samples import samples
 from fits.engine.features.space import interior_peaks, standing_turns, window_between
 from fits.engine.refusal import InputRefused
-from tests.engine.features.cases import two_peaks
+from fits.engine.settings import Settings
+from tests.engine.features.cases import lines, two_peaks
 
 CASE = two_peaks()
 SPACE = CASE.space
@@ -172,6 +176,20 @@ def test_a_ripple_that_the_ball_can_do_without_opens_no_window() -> None:
     assert ripples > 2
     assert len(standing_turns(SPACE, 0.0)) > len(standing_turns(SPACE, CASE.least_rise)) == 5
     assert standing_turns(SPACE, 1e9) == [0, SPACE.grid.size - 1]
+
+
+def test_an_end_at_which_the_curve_is_hardly_known_hides_no_peak() -> None:
+    x = np.linspace(0.0, 1.0, 60)
+    y = lines(x, np.array([0.3, 0.7]), np.array([3.0, 2.0]), 0.07) + 0.3 * np.random.default_rng(5).normal(
+        size=60
+    )
+    # Within a bin's width of the ends hardly anything is known: a fall to the end costs next to nothing to level.
+    data = validated_data(x, y, errors=np.full(60, 0.3), low=x - 0.03, high=x + 0.03)
+    case = feature_case(assess(data, [], Settings(resolution=20, draws=100), rng=np.random.default_rng(1)))
+    tops = [case.space.grid[turn] for turn in standing_turns(case.space, case.least_rise)]
+    assert any(abs(top - 0.3) < 0.03 for top in tops)
+    assert any(abs(top - 0.7) < 0.03 for top in tops)
+    assert len(windows_of(case)) >= 2
 
 
 def test_a_flat_top_counts_once_and_ends_never() -> None:
