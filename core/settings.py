@@ -81,6 +81,7 @@ MIDDLEWARE = [
     "django.middleware.security.SecurityMiddleware",
     "whitenoise.middleware.WhiteNoiseMiddleware",
     "core.content_security.ContentSecurityMiddleware",
+    "core.body_limit.BodyLimitMiddleware",
     "django.contrib.sessions.middleware.SessionMiddleware",
     "django.middleware.common.CommonMiddleware",
     "django.middleware.csrf.CsrfViewMiddleware",
@@ -204,6 +205,9 @@ ASSESSMENT_MAX_ATTEMPTS = 3
 UPLOAD_MAX_BYTES = 50 * 1024 * 1024
 DATA_UPLOAD_MAX_MEMORY_SIZE = 2 * 1024 * 1024
 FILE_UPLOAD_MAX_MEMORY_SIZE = 2 * 1024 * 1024  # larger files stream to a temporary file
+REQUEST_MAX_BYTES = (
+    3 * UPLOAD_MAX_BYTES + DATA_UPLOAD_MAX_MEMORY_SIZE
+)  # a release's table, covariance and windows
 
 # ---- Files ----
 STATIC_URL = "static/"

@@ -1,12 +1,14 @@
-"""The health address, the first user, and the watch over the worker."""
+"""The health address, how much a request may bring, the first user, and the watch over the worker."""
 
 import io
 import os
 import time
+from urllib.parse import urlencode
 
 import pytest
 from django.core.management import CommandError, call_command
 from django.test import Client
+from django.urls import reverse
 from pytest_django import Settings
 
 from core import broker, health
@@ -28,6 +30,23 @@ def test_health_names_what_is_away(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(health, "_database", lambda: False)
     answer = Client().get("/health")
     assert (answer.status_code, answer.content) == (503, b"database away\nbroker away\n")
+
+
+@pytest.mark.parametrize(("more", "status"), [(0, 200), (1, 413)])
+def test_a_request_longer_than_all_files_of_a_form_is_refused_unread(
+    more: int, status: int, client: Client, settings: Settings
+) -> None:
+    settings.REQUEST_MAX_BYTES = 1000
+    fields = {"login": "somebody@merrow.example", "password": ""}
+    body = urlencode(fields).ljust(1000 + more, "x")
+    unread = io.BytesIO(body.encode())
+    answer = client.post(
+        reverse("account_login"),
+        content_type="application/x-www-form-urlencoded",
+        **{"wsgi.input": unread, "CONTENT_LENGTH": str(len(body))},  # type: ignore[arg-type]
+    )
+    assert answer.status_code == status
+    assert (unread.tell() == 0) == (status == 413)
 
 
 def make_first_user(monkeypatch: pytest.MonkeyPatch, password: str) -> None:
