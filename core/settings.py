@@ -205,9 +205,8 @@ ASSESSMENT_MAX_ATTEMPTS = 3
 UPLOAD_MAX_BYTES = 50 * 1024 * 1024
 DATA_UPLOAD_MAX_MEMORY_SIZE = 2 * 1024 * 1024
 FILE_UPLOAD_MAX_MEMORY_SIZE = 2 * 1024 * 1024  # larger files stream to a temporary file
-REQUEST_MAX_BYTES = (
-    3 * UPLOAD_MAX_BYTES + DATA_UPLOAD_MAX_MEMORY_SIZE
-)  # a release's table, covariance and windows
+# A release's table, covariance and windows, with the words that go with them.
+REQUEST_MAX_BYTES = 3 * UPLOAD_MAX_BYTES + DATA_UPLOAD_MAX_MEMORY_SIZE
 
 # ---- Files ----
 STATIC_URL = "static/"
