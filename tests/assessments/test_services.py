@@ -72,11 +72,12 @@ def test_another_seed_or_setting_is_another_assessment(ask: Callable[..., Assess
 def test_of_two_who_ask_at_the_same_moment_the_second_gets_the_first_ones(
     ask: Callable[..., Assessment], monkeypatch: pytest.MonkeyPatch
 ) -> None:
-    first = ask()
+    first = ask(features=False)
     looks = iter([None, first])
     monkeypatch.setattr(request, "_same", lambda mark: next(looks))
-    assert ask() == first
-    assert Assessment.objects.count() == 1
+    assert ask(features=True) == first
+    first = Assessment.objects.get()
+    assert first.settings["features"] is True
 
 
 def test_the_database_itself_refuses_a_second_one(queued: Assessment) -> None:

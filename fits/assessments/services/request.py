@@ -36,6 +36,7 @@ def request_assessment(
     except IntegrityError:
         # Somebody asked for the same at the same moment and came first.
         if same := _same(mark):
+            _add_features(user, same, settings)
             return same
         raise
     return assessment
