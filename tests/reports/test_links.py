@@ -36,6 +36,7 @@ def test_a_shared_page_is_not_kept_indexed_or_told(client: Client, secret: str) 
         reverse("reports:shared_json", args=[secret]),
         reverse("reports:shared_csv", args=[secret]),
         reverse("reports:shared", args=["unknown"]),
+        reverse("reports:shared_chart", args=[secret, "nothing", "svg"]),
     ):
         answer = client.get(address)
         assert answer["Referrer-Policy"] == "no-referrer"

@@ -4,7 +4,7 @@ from collections.abc import Callable
 from functools import wraps
 from typing import Any
 
-from django.http import HttpRequest, HttpResponse
+from django.http import Http404, HttpRequest, HttpResponse
 from django.shortcuts import render
 from django.views.decorators.http import require_safe
 
@@ -33,9 +33,12 @@ def behind_a_link(view: Callable[..., HttpResponse]) -> View:
             .filter(token_sha256=hashed(token))
             .first()
         )
-        if link is not None and link.is_open:
+        try:
+            if link is None or not link.is_open:
+                raise Http404
             response = view(request, link.report, token, **rest)
-        else:
+        except Http404:
+            # Also for a file that the report does not have: its address holds the secret too.
             response = render(request, "reports/shared_missing.html", status=404)
         response["Referrer-Policy"] = "no-referrer"
         response["X-Robots-Tag"] = "noindex, nofollow"
