@@ -161,9 +161,10 @@ def count_peaks(case: FeatureCase, *, sign: float = 1.0) -> PeakCount:
 
 
 def find_spacing(case: FeatureCase, *, harmonic: bool = False, look: Look = no_look) -> SpacingProfile | None:
-    """Even spacing of the fit's peaks that stand out; None for fewer than three."""
+    """Even spacing of the fit's peaks that stand out of every ball; None for fewer than three."""
     space, basis = case.space, case.result.fit.coordinates.basis
-    windows = windows_of_peaks(space, case.least_rise)
+    # A series has to have every peak that is asked of it: a rise of two standard errors, which may be noise, is not.
+    windows = windows_of_peaks(space, case.largest_radius)
     # Precise data know their peaks to less than a step of the grid, and so must the series that is tried.
     tops = [_top(space, basis, window) for window in windows]
     return spacing_profile(

@@ -1,5 +1,7 @@
 """Data so precise that a peak's place is known to less than a step of the grid."""
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 
@@ -70,3 +72,12 @@ def test_a_true_even_spacing_is_not_rejected_however_precise_the_data(error: flo
     assert (np.diff(profile.spacing) > 0.0).all()
     ((low, high),) = intervals_below(profile.spacing, profile.price, case.radii[2])
     assert low <= SPACING <= high
+
+
+def test_a_rise_that_the_ball_can_do_without_is_not_asked_of_a_series() -> None:
+    case = precise(0.1)
+    assert find_spacing(case) is not None
+    can_do_without = replace(case, levels=(0.95,), radii=(1000.0,))
+    # Windows are opened all the same.
+    assert len(windows_of(can_do_without)) == len(windows_of(case)) >= 3
+    assert find_spacing(can_do_without) is None
