@@ -8,7 +8,10 @@ from fits.reports.snapshot import Document
 def spacing_sentence(features: Features, level: str, unit: str) -> str:
     """Even spacing with any start."""
     if features.spacing is None:
-        return "Even spacing is asked of three peaks or more that stand out in the fit; here there are fewer."
+        return (
+            "Even spacing is asked of three peaks or more that cost more to level than every radius; here there are "
+            "fewer."
+        )
     return _sentence(features, features.spacing, level, unit, "even spacing", "evenly spaced series")
 
 
