@@ -41,7 +41,8 @@ class User(AbstractUser):
     objects: ClassVar[UserManager] = UserManager()  # type: ignore[assignment]
 
     def __str__(self) -> str:
-        return self.name or self.email
+        # Reports show it to people outside: never a whole address.
+        return self.name or self.email.partition("@")[0]
 
     def get_full_name(self) -> str:
         return str(self)

@@ -11,6 +11,7 @@ from fits.assessments.coordinates_form import CoordinatesForm
 from fits.engine.refusal import InputRefused
 from fits.engine.settings import DEFAULT_LEVELS, RadiusKind, Settings, Shrinkage
 
+LARGEST_KEY = 2**63 - 1
 LARGEST_SEED = 2**53 - 1  # exact in JSON wherever it is read
 SHRINKAGES = (
     (Shrinkage.MONOTONE, "Monotone: broad features are kept more than fine ones, each by its own factor"),
@@ -36,6 +37,12 @@ else:  # at run time Django's field takes no type argument
 
 class CurveChoice(ManyCurves):
     """Curves, named by theory and version."""
+
+    def clean(self, value: Any) -> Any:
+        """Keys that no database holds are no choice, rather than an error of its driver."""
+        if any(str(key).isdecimal() and int(key) > LARGEST_KEY for key in value or ()):
+            raise forms.ValidationError(self.error_messages["invalid_choice"], params={"value": "this"})
+        return super().clean(value)
 
     def label_from_instance(self, obj: Curve) -> str:
         proposed_by = f", {obj.theory.proposed_by}" if obj.theory.proposed_by else ""

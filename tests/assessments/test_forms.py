@@ -81,3 +81,7 @@ def test_full_resolution_is_refused_for_many_points(release: Release, curve: Cur
 
 def test_a_seed_is_proposed(release: Release) -> None:
     assert AssessmentForm(release=release).fields["seed"].initial >= 0
+
+
+def test_a_curve_whose_key_no_database_holds_is_no_choice(release: Release, curve: Curve) -> None:
+    assert "curves" in asked(release, curve, curves=[str(2**70)]).errors

@@ -80,3 +80,7 @@ def test_one_of_two_leads_can_go(collaboration: Collaboration, lead: User, membe
     services.change_role(membership(member, collaboration), Role.LEAD)
     services.remove_member(membership(lead, collaboration))
     assert list(collaboration.memberships.values_list("user", flat=True)) == [member.pk]
+
+
+def test_someone_without_a_name_is_never_shown_by_a_whole_address(db: None) -> None:
+    assert str(User.objects.create_user("nameless@merrow.example")) == "nameless"
