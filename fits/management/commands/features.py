@@ -12,6 +12,7 @@ from fits.engine.assess import assess
 from fits.engine.features.find import count_peaks, feature_case, find_peak, find_spacing, windows_of
 from fits.management.base import FileCommand
 from fits.management.options import add_options, read_inputs
+from fits.reports import numbers
 
 
 class Command(FileCommand):
@@ -39,7 +40,7 @@ class Command(FileCommand):
         if options["json"]:
             self.write_json(options["json"], document)
         if options["json"] != "-":
-            self.stdout.write(features_in_words(document))
+            self.stdout.write(features_in_words(document, draws=inputs.settings.draws))
 
 
 def windows_in(text: str) -> tuple[tuple[float, float], ...]:
@@ -56,15 +57,15 @@ def windows_in(text: str) -> tuple[tuple[float, float], ...]:
     return tuple(windows)
 
 
-def features_in_words(document: dict[str, Any]) -> str:
+def features_in_words(document: dict[str, Any], *, draws: int) -> str:
     """The result for people at a terminal."""
     lines = []
     for entry in document["count"]:
         if entry["price_lower"] > 0.0:
-            level = 100 * entry["demanded_level"]
+            level = numbers.entry_level(entry["demanded_level"], draws=draws)
             upper = "?" if entry["price_upper"] is None else f"{entry['price_upper']:.4f}"
             lines.append(
-                f"more than {entry['at_most']} peaks: demanded up to {level:.2f} % "
+                f"more than {entry['at_most']} peaks: demanded up to {level} "
                 f"(price of at most {entry['at_most']}: {entry['price_lower']:.4f} to {upper})"
             )
     if not lines:
@@ -73,14 +74,13 @@ def features_in_words(document: dict[str, Any]) -> str:
         low, high = peak["window"]
         lines.append(f"\npeak between {low:.6g} and {high:.6g}")
         absent = peak["no_peak"]["entry_level"]
-        lines.append(
-            "  demanded up to " + ("an unknown level" if absent is None else f"{100 * absent:.2f} %")
-        )
-        for level, stretches in peak["location"].items():
+        level = "an unknown level" if absent is None else numbers.entry_level(absent, draws=draws)
+        lines.append(f"  demanded up to {level}")
+        for key, stretches in peak["location"].items():
             places = " and ".join(f"{start:.6g} to {end:.6g}" for start, end in stretches) or "nowhere"
-            bottom, top = peak["height"][level]
+            bottom, top = peak["height"][key]
             height = "unknown" if bottom is None or top is None else f"{bottom:.6g} to {top:.6g}"
-            lines.append(f"  {100 * float(level):g} %: at {places}; height {height}")
+            lines.append(f"  {100 * float(key):g} %: at {places}; height {height}")
     if document["spacing"] is not None:
         lines.append("\neven spacing of the peaks")
         for level, intervals in document["spacing"]["interval"].items():
