@@ -74,6 +74,7 @@ INSTALLED_APPS = [
     "fits",
     "fits.assessments",
     "fits.reports",
+    "fits.talk",
     "fits.overviews",
 ]
 

@@ -1,9 +1,11 @@
 """Measurements and their releases."""
 
+from datetime import datetime
 from typing import Any
 
 from django.db import models
 from django.urls import reverse
+from django.utils import timezone
 
 from core.people.models import Collaboration, User
 
@@ -30,10 +32,29 @@ class Measurement(models.Model):
     axis = models.CharField(max_length=6, choices=Axis.choices, default=Axis.LINEAR)
     created_by = models.ForeignKey(User, on_delete=models.PROTECT, related_name="+")
     created_at = models.DateTimeField(auto_now_add=True)
+    # Raised with every change of the words or the seal: who saves an older state is told so.
+    revision = models.PositiveIntegerField(default=0)
+    # Sealed: nobody sees data or verdicts until it opens, at a time (opens_at) or by a lead's word (opened_by).
+    sealed_at = models.DateTimeField(null=True, blank=True)
+    opens_at = models.DateTimeField(null=True, blank=True)
+    opened_at = models.DateTimeField(null=True, blank=True)
+    opened_by = models.ForeignKey(User, on_delete=models.PROTECT, null=True, blank=True, related_name="+")
+    # Curves are taken until then; without it, until it opens.
+    curves_until = models.DateTimeField(null=True, blank=True)
+    # The stretch of x that curves have to cover, told while the data themselves are not.
+    announced_x_min = models.FloatField(null=True, blank=True)
+    announced_x_max = models.FloatField(null=True, blank=True)
 
     class Meta:
         ordering = ("name", "pk")
-        constraints = (models.UniqueConstraint(fields=["collaboration", "name"], name="measurement_name"),)
+        constraints = (
+            models.UniqueConstraint(fields=["collaboration", "name"], name="measurement_name"),
+            models.CheckConstraint(
+                condition=models.Q(sealed_at__isnull=False)
+                | models.Q(opens_at=None, opened_at=None, opened_by=None, curves_until=None),
+                name="only_what_is_sealed_opens",
+            ),
+        )
 
     def __str__(self) -> str:
         return self.name
@@ -51,6 +72,52 @@ class Measurement(models.Model):
         """Name and unit of y, as on an axis."""
         return f"{self.y_name} ({self.y_unit})" if self.y_unit else self.y_name
 
+    @property
+    def was_sealed(self) -> bool:
+        """Whether curves were asked for before the data were shown."""
+        return self.sealed_at is not None
+
+    @property
+    def is_sealed(self) -> bool:
+        """Whether data and verdicts are hidden now. To the second: no job has to run for it to open."""
+        if self.sealed_at is None or self.opened_at is not None:
+            return False
+        return self.opens_at is None or self.opens_at > timezone.now()
+
+    @property
+    def opened(self) -> datetime | None:
+        """When data and verdicts came to be seen; None for what is sealed, or never was."""
+        if self.sealed_at is None or self.is_sealed:
+            return None
+        return self.opened_at or self.opens_at
+
+    @property
+    def takes_curves(self) -> bool:
+        """Whether curves may be submitted: not between the deadline and the opening."""
+        return not self.is_sealed or self.curves_until is None or self.curves_until > timezone.now()
+
+
+class EarlyLook(models.Model):
+    """A lead saw the data of a sealed measurement before it opened. Never taken back."""
+
+    COLLABORATION_PATH = "measurement__collaboration"
+
+    class How(models.TextChoices):
+        LOOKED = "looked", "looked at the data"
+        UPLOADED = "uploaded", "uploaded the data"
+
+    measurement = models.ForeignKey(Measurement, on_delete=models.CASCADE, related_name="early_looks")
+    user = models.ForeignKey(User, on_delete=models.PROTECT, related_name="+")
+    how = models.CharField(max_length=8, choices=How.choices, default=How.LOOKED)
+    at = models.DateTimeField(auto_now_add=True)
+
+    class Meta:
+        ordering = ("at", "pk")
+        constraints = (models.UniqueConstraint(fields=["measurement", "user"], name="first_look"),)
+
+    def __str__(self) -> str:
+        return f"{self.user} {self.get_how_display()} of {self.measurement}"
+
 
 class ReleaseManager(models.Manager["Release"]):
     """Leaves covariances and windows, of up to 200 MB, in the database until they are asked for."""
@@ -60,13 +127,16 @@ class ReleaseManager(models.Manager["Release"]):
 
 
 class Release(models.Model):
-    """One numbered data table of a measurement. A draft has no number; a published one never changes."""
+    """One numbered data table of a measurement. A draft has no number; a published one never changes, but can be
+    withdrawn: it and what was found of it stay, and say so."""
 
     COLLABORATION_PATH = "measurement__collaboration"
+    SEAL_PATH = "measurement"
 
     class State(models.TextChoices):
         DRAFT = "draft", "draft"
         PUBLISHED = "published", "published"
+        WITHDRAWN = "withdrawn", "withdrawn"
 
     class ErrorSource(models.TextChoices):
         GIVEN = "given", "given"
@@ -102,6 +172,9 @@ class Release(models.Model):
     created_by = models.ForeignKey(User, on_delete=models.PROTECT, related_name="+")
     created_at = models.DateTimeField(auto_now_add=True)
     published_at = models.DateTimeField(null=True, blank=True)
+    withdrawn_at = models.DateTimeField(null=True, blank=True)
+    withdrawn_by = models.ForeignKey(User, on_delete=models.PROTECT, null=True, blank=True, related_name="+")
+    withdrawal_reason = models.TextField(blank=True)
 
     objects = ReleaseManager()
 
@@ -110,8 +183,14 @@ class Release(models.Model):
         constraints = (
             models.UniqueConstraint(fields=["measurement", "number"], name="release_number"),
             models.CheckConstraint(
-                condition=models.Q(state="draft", number=None) | models.Q(state="published", number__gte=1),
+                condition=models.Q(state="draft", number=None)
+                | models.Q(state__in=["published", "withdrawn"], number__gte=1),
                 name="published_releases_are_numbered",
+            ),
+            models.CheckConstraint(
+                condition=models.Q(state="withdrawn", withdrawn_at__isnull=False)
+                | (~models.Q(state="withdrawn") & models.Q(withdrawn_at=None, withdrawn_by=None)),
+                name="withdrawn_releases_say_when",
             ),
             models.CheckConstraint(
                 condition=models.Q(covariance=None, variances=None)
@@ -127,6 +206,11 @@ class Release(models.Model):
     def __str__(self) -> str:
         return f"release {self.number}" if self.number else "draft release"
 
+    @property
+    def is_withdrawn(self) -> bool:
+        """Whether a lead has taken it back."""
+        return self.state == Release.State.WITHDRAWN
+
     def get_absolute_url(self) -> str:
         return reverse("measurements:release", args=[self.pk])
 
@@ -137,7 +221,7 @@ class Release(models.Model):
 
     def save(self, *args: Any, **kwargs: Any) -> None:
         """Refuse to change what has been published."""
-        published = Release.objects.filter(pk=self.pk, state=Release.State.PUBLISHED)
+        published = Release.objects.filter(pk=self.pk).exclude(state=Release.State.DRAFT)
         if self.pk is not None and published.exists():
             raise TypeError("a published release is immutable; a correction is a new release")
         super().save(*args, **kwargs)

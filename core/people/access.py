@@ -1,39 +1,37 @@
-"""Who may do what, in one place.
+"""Who sees which rows and may do what with them, by the table in `permissions`.
 
-Each model that belongs to a collaboration names its way there in `COLLABORATION_PATH`. Views load rows by
-`load`, so that a stranger cannot tell a row that is hidden from one that is not there.
+Each model that belongs to a collaboration names its way there in `COLLABORATION_PATH`; where its rows can stand at
+a student's desk, the way to that student in `DESK_PATH`; where they tell something of a measurement's data, the way
+to the measurement, which may be sealed, in `SEAL_PATH`. Views load rows by `load` and list them by `seen_by`, so that
+nobody can tell a row that is hidden from one that is not there.
 """
 
-from enum import StrEnum
-from typing import Protocol, TypeVar
+from typing import Any, Protocol, TypeVar
 
+from django.apps import apps
 from django.contrib.auth.models import AnonymousUser
 from django.core.exceptions import PermissionDenied
-from django.db.models import Model, QuerySet
+from django.db.models import Model, Q, QuerySet
 from django.http import Http404
+from django.utils import timezone
 
 from core.people.models import Collaboration, Membership, Role, User
+from core.people.permissions import PERMITTED, SHARERS, Action
 
+__all__ = [
+    "PERMITTED",
+    "Action",
+    "collaboration_of",
+    "desk_of",
+    "in_overview",
+    "load",
+    "may",
+    "require",
+    "role_of",
+    "seen_by",
+    "sees_data",
+]
 
-class Action(StrEnum):
-    """What can be done in a collaboration."""
-
-    VIEW = "see measurements, theories, assessments and reports"
-    SUBMIT = "submit theories and curves"
-    ASSESS = "start and cancel assessments"
-    PUBLISH = "add measurements, upload and publish releases"
-    REPORT = "write reports and share them by link"
-    MANAGE = "add people and change the collaboration"
-
-
-PERMITTED: dict[Action, frozenset[Role]] = {
-    Action.VIEW: frozenset({Role.LEAD, Role.MEMBER}),
-    Action.SUBMIT: frozenset({Role.LEAD, Role.MEMBER}),
-    Action.ASSESS: frozenset({Role.LEAD, Role.MEMBER}),
-    Action.PUBLISH: frozenset({Role.LEAD}),
-    Action.REPORT: frozenset({Role.LEAD}),
-    Action.MANAGE: frozenset({Role.LEAD}),
-}
 
 Someone = User | AnonymousUser
 
@@ -70,13 +68,67 @@ def require(user: Someone, action: Action, collaboration: Collaboration) -> None
 
 
 def seen_by(rows: QuerySet[Row], user: Someone) -> QuerySet[Row]:
-    """Those of the rows that belong to the user's collaborations."""
-    path = _path(rows.model)
-    key = "pk__in" if not path else f"{path}__in"
+    """Those of the rows that the user may see: of their collaborations, of no desk that is closed to them, and of no
+    measurement that is sealed for them."""
     if not isinstance(user, User):
         return rows.none()
-    mine = Membership.objects.filter(user=user).values("collaboration")
-    return rows.filter(**{key: mine})
+    mine = Membership.objects.filter(user=user)
+    key = _path(rows.model) or "pk"
+    seen = Q(**{f"{key}__in": mine.values("collaboration")})
+    if desk := _desk_path(rows.model):
+        led = mine.filter(role=Role.LEAD).values("collaboration")
+        shared = mine.filter(role__in=SHARERS).values("collaboration")
+        seen &= (
+            Q(**{desk: user})
+            | Q(**{f"{key}__in": led})
+            | Q(**{f"{desk}__isnull": True, f"{key}__in": shared})
+        )
+    if seal := getattr(rows.model, "SEAL_PATH", ""):
+        seen &= _open(f"{seal}__") | Q(**{f"{seal}__in": _looked_at(user)})
+    return rows.filter(seen)
+
+
+def in_overview(rows: QuerySet[Row], user: User) -> QuerySet[Row]:
+    """Those of the rows that pages of many list: what is shared and what stands at the user's own desk. A lead sees
+    the other desks on their own page and by their addresses."""
+    seen = seen_by(rows, user)
+    if desk := _desk_path(rows.model):
+        seen = seen.filter(Q(**{f"{desk}__isnull": True}) | Q(**{desk: user}))
+    return seen
+
+
+def sees_data(user: Someone, measurement: Model) -> bool:
+    """Whether data and verdicts of a measurement are open to this user, who may see the measurement itself."""
+    key = measurement.pk
+    if type(measurement)._default_manager.filter(_open(""), pk=key).exists():
+        return True
+    return isinstance(user, User) and _looked_at(user).filter(measurement=key).exists()
+
+
+def desk_of(user: User, collaboration: Collaboration) -> User | None:
+    """At whose desk what this user brings will stand: a student's own, None for all others."""
+    return user if role_of(user, collaboration) is Role.STUDENT else None
+
+
+def _open(prefix: str) -> Q:
+    """Measurements whose data are to be seen. To the second: no job has to run for one to open."""
+    return (
+        Q(**{f"{prefix}sealed_at__isnull": True})
+        | Q(**{f"{prefix}opened_at__isnull": False})
+        | Q(**{f"{prefix}opens_at__lte": timezone.now()})
+    )
+
+
+def _looked_at(user: User) -> QuerySet[Any]:
+    """The measurements that this user, as a lead, looked at before they opened."""
+    # By name: this layer lies below that of measurements.
+    looks = apps.get_model("measurements", "EarlyLook")._default_manager.filter(user=user)
+    led = Membership.objects.filter(user=user, role=Role.LEAD).values("collaboration")
+    return looks.filter(measurement__collaboration__in=led).values("measurement")
+
+
+def _desk_path(model: type[Model]) -> str:
+    return str(getattr(model, "DESK_PATH", ""))
 
 
 def load(rows: QuerySet[Row], user: Someone, action: Action, pk: int) -> Row:

@@ -6,27 +6,20 @@ import redis
 from kombu.exceptions import OperationalError
 
 from core.worker import app
+from fits.assessments.job import Job
 
 logger = logging.getLogger(__name__)
 
-# Workers take what has the smaller number first: features never keep verdicts waiting in the queue.
+# Workers take what has the smaller number first.
 SOON, LATER = 0, 9
 
 
-def enqueue(pk: int) -> bool:
-    """Hand an assessment to the workers. False where the broker is away: the sweeper tries again."""
-    return _send("run_assessment", pk, SOON)
-
-
-def enqueue_part(pk: int) -> bool:
-    """Hand a part of a search for features to the workers; False as above."""
-    return _send("run_feature_part", pk, LATER)
-
-
-def _send(task: str, pk: int, priority: int) -> bool:
+def enqueue(jobs: type[Job], pk: int) -> bool:
+    """Hand a job to the workers. False where the broker is away: the sweeper tries again."""
+    priority = SOON if jobs.IS_URGENT else LATER
     try:
-        app.send_task(f"fits.assessments.tasks.{task}", args=[pk], priority=priority, retry=False)
+        app.send_task(jobs.TASK, args=[pk], priority=priority, retry=False)
     except (OperationalError, redis.RedisError, OSError) as error:
-        logger.warning("%s %s waits for the sweeper, the broker is away: %s", task, pk, error)
+        logger.warning("%s %s waits for the sweeper, the broker is away: %s", jobs.TASK, pk, error)
         return False
     return True

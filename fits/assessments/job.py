@@ -17,6 +17,10 @@ class Job(models.Model):
 
     LIVING = (Status.QUEUED, Status.RUNNING)
     ENDED = (Status.DONE, Status.FAILED, Status.CANCELLED)
+    # The name of the task that computes a job of this kind, and whether somebody waits for it: the others never keep
+    # those waiting in the queue.
+    TASK: ClassVar[str]
+    IS_URGENT: ClassVar[bool] = True
     # What else is written when a job of this kind ends, however it ends.
     AT_THE_END: ClassVar[dict[str, Any]] = {}
 

@@ -15,6 +15,9 @@ class Assessment(Job):
     """A release, curves, settings and a seed → fit, balls and verdicts."""
 
     COLLABORATION_PATH = "release__measurement__collaboration"
+    DESK_PATH = "desk"
+    SEAL_PATH = "release__measurement"
+    TASK = "fits.assessments.tasks.run_assessment"
 
     class Stage(models.TextChoices):
         WAITING = "waiting", "waiting for a worker"
@@ -36,6 +39,10 @@ class Assessment(Job):
     # SHA-256 over inputs, settings, seed and engine version; equal ones are computed once.
     fingerprint = models.CharField(max_length=64)
     requested_by = models.ForeignKey(User, on_delete=models.PROTECT, related_name="assessments")
+    # The student's desk at which all its curves stand; None: they are shared, and so is it.
+    desk = models.ForeignKey(User, on_delete=models.PROTECT, null=True, blank=True, related_name="+")
+    # Made when the release was published or the measurement opened, not asked for by somebody.
+    is_automatic = models.BooleanField(default=False)
 
     stage = models.CharField(max_length=12, choices=Stage.choices, default=Stage.WAITING)
     progress = models.FloatField(default=0.0)  # 0 … 1
@@ -43,6 +50,10 @@ class Assessment(Job):
     engine_version = models.CharField(max_length=20, blank=True)
     result = models.JSONField(null=True, blank=True)  # the document of `rank --json`
     detail = models.JSONField(null=True, blank=True)  # what the charts need beside it
+    # The radius at 95 %, of the kind that was chosen, where that level was asked for.
+    radius = models.FloatField(null=True, blank=True)
+    # Distances of its curves from each other, in error bars: {"curves": [key, …], "distances": [pair by pair]}.
+    separations = models.JSONField(null=True, blank=True)
 
     class Meta:
         ordering = ("-created_at", "-pk")
@@ -70,6 +81,8 @@ class Verdict(models.Model):
     """What an assessment says of one curve; the numbers are those of its result, kept here for queries."""
 
     COLLABORATION_PATH = "assessment__release__measurement__collaboration"
+    DESK_PATH = "assessment__desk"
+    SEAL_PATH = "assessment__release__measurement"
 
     assessment = models.ForeignKey(Assessment, on_delete=models.CASCADE, related_name="verdicts")
     curve = models.ForeignKey(Curve, on_delete=models.CASCADE, related_name="verdicts")
@@ -92,6 +105,8 @@ class FeatureSearch(models.Model):
     """What the data of an assessment demand of peaks and dips: sought in windows, in parts of their own."""
 
     COLLABORATION_PATH = "assessment__release__measurement__collaboration"
+    DESK_PATH = "assessment__desk"
+    SEAL_PATH = "assessment__release__measurement"
     Status = Job.Status
 
     assessment = models.ForeignKey(Assessment, on_delete=models.CASCADE, related_name="feature_searches")
@@ -126,6 +141,10 @@ class FeaturePart(Job):
     """One statement, or one family of them, computed apart so that the workers share a search."""
 
     COLLABORATION_PATH = "search__assessment__release__measurement__collaboration"
+    DESK_PATH = "search__assessment__desk"
+    SEAL_PATH = "search__assessment__release__measurement"
+    TASK = "fits.assessments.tasks.run_feature_part"
+    IS_URGENT = False
 
     class Kind(models.TextChoices):
         PLAN = "plan", "which windows there are"

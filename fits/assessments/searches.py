@@ -7,7 +7,7 @@ from typing import Any
 from django.db import transaction
 from django.db.models import Exists, OuterRef, Q
 
-from fits.assessments.dispatch import enqueue_part
+from fits.assessments.dispatch import enqueue
 from fits.assessments.leases import Lease
 from fits.assessments.models import FeaturePart, FeatureSearch
 
@@ -18,7 +18,7 @@ Status = FeaturePart.Status
 def begin(search: FeatureSearch) -> None:
     """Make the plan, on which all other parts hang, and hand it to the workers."""
     plan = FeaturePart.objects.create(search=search, kind=Kind.PLAN, order=0)
-    transaction.on_commit(partial(enqueue_part, plan.pk))
+    transaction.on_commit(partial(enqueue, FeaturePart, plan.pk))
 
 
 def finish(lease: Lease[FeaturePart], part: FeaturePart, result: Any) -> None:
@@ -34,7 +34,7 @@ def finish(lease: Lease[FeaturePart], part: FeaturePart, result: Any) -> None:
         search.save(update_fields=["status"])
         FeaturePart.objects.bulk_create(_planned(search, result["windows"]))
         for pk in search.parts.filter(order__gt=0).values_list("pk", flat=True):
-            transaction.on_commit(partial(enqueue_part, pk))
+            transaction.on_commit(partial(enqueue, FeaturePart, pk))
 
 
 def _planned(search: FeatureSearch, windows: dict[str, list[list[float]]]) -> Iterator[FeaturePart]:

@@ -6,13 +6,14 @@ from collections.abc import Iterator
 from typing import Any
 
 from celery.exceptions import SoftTimeLimitExceeded
+from django.apps import apps
 from django.db import transaction
 
 from core import alive
 from core.errors import UserError, record_fault
 from core.worker import app
 from fits.assessments import claims, feature_parts, leases, pipeline, searches, sweeper
-from fits.assessments.dispatch import enqueue, enqueue_part
+from fits.assessments.dispatch import enqueue
 from fits.assessments.job import Job
 from fits.assessments.leases import Lease
 from fits.assessments.models import Assessment, FeaturePart
@@ -82,10 +83,10 @@ def _fail(lease: Lease[Any], code: str, sentence: str) -> None:
 @app.task(name="fits.assessments.tasks.sweep")  # type: ignore[untyped-decorator]
 def sweep() -> None:
     """See to it that every job ends."""
-    for jobs, send in ((Assessment, enqueue), (FeaturePart, enqueue_part)):
+    for jobs in (model for model in apps.get_models() if issubclass(model, Job)):
         sweeper.end_lost(jobs)
         for pk in sweeper.forgotten(jobs):
-            if send(pk):
+            if enqueue(jobs, pk):
                 sweeper.note_enqueued(jobs, pk)
     searches.settle()
     alive.touch()

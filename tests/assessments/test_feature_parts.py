@@ -11,6 +11,7 @@ from django.utils import timezone
 
 from core.errors import UserError
 from fits.assessments import feature_parts, leases, searches, tasks
+from fits.assessments.job import Job
 from fits.assessments.leases import Lease
 from fits.assessments.models import Assessment, FeaturePart, FeatureSearch
 from fits.assessments.tasks import run_feature_part
@@ -56,11 +57,12 @@ def sent(monkeypatch: pytest.MonkeyPatch) -> list[int]:
     """The keys of the parts that were enqueued, with a broker that takes them."""
     keys: list[int] = []
 
-    def enqueue(pk: int) -> bool:
+    def enqueue(jobs: type[Job], pk: int) -> bool:
+        assert jobs is FeaturePart
         keys.append(pk)
         return True
 
-    monkeypatch.setattr(tasks, "enqueue_part", enqueue)
+    monkeypatch.setattr(tasks, "enqueue", enqueue)
     return keys
 
 

@@ -105,7 +105,7 @@ def test_each_part_is_a_message_of_its_own_once_the_plan_is_committed(
     django_capture_on_commit_callbacks: DjangoCaptureOnCommitCallbacks,
 ) -> None:
     sent: list[int] = []
-    monkeypatch.setattr(searches, "enqueue_part", sent.append)
+    monkeypatch.setattr(searches, "enqueue", lambda jobs, pk: sent.append(pk))
     with django_capture_on_commit_callbacks(execute=True):
         search = ask((1.0, 2.0))
     assert sent == [plan_of(search).pk]

@@ -42,7 +42,7 @@ def test_the_task_is_sent_when_the_row_is_committed(
     django_capture_on_commit_callbacks: DjangoCaptureOnCommitCallbacks,
 ) -> None:
     sent: list[int] = []
-    monkeypatch.setattr(request, "enqueue", sent.append)
+    monkeypatch.setattr(request, "enqueue", lambda jobs, pk: sent.append(pk))
     with django_capture_on_commit_callbacks(execute=True):
         assessment = ask()
         assert sent == []
@@ -100,7 +100,7 @@ def test_a_broker_that_is_away_does_not_stop_the_page(
 ) -> None:
     # No Redis runs in the home of the tests but while a test with a worker does.
     sent: list[bool] = []
-    monkeypatch.setattr(request, "enqueue", lambda pk: sent.append(enqueue(pk)))
+    monkeypatch.setattr(request, "enqueue", lambda jobs, pk: sent.append(enqueue(jobs, pk)))
     with django_capture_on_commit_callbacks(execute=True):
         assessment = ask()
     assessment.refresh_from_db()

@@ -7,6 +7,7 @@ from django.conf import settings
 from django.utils import timezone
 
 from fits.assessments import claims, tasks
+from fits.assessments.job import Job
 from fits.assessments.models import Assessment
 from fits.assessments.services import cancel_assessment
 from tests.assessments.test_tasks import let_the_lease_end
@@ -19,7 +20,7 @@ def sent(monkeypatch: pytest.MonkeyPatch) -> list[int]:
     """The keys of the assessments that were enqueued, with a broker that takes them."""
     keys: list[int] = []
 
-    def enqueue(pk: int) -> bool:
+    def enqueue(jobs: type[Job], pk: int) -> bool:
         keys.append(pk)
         return True
 
@@ -59,7 +60,7 @@ def test_while_the_broker_is_away_it_is_tried_at_each_sweep(
 ) -> None:
     wait_for(queued, 3600)
     tries: list[int] = []
-    monkeypatch.setattr(tasks, "enqueue", tries.append)  # answers None: not sent
+    monkeypatch.setattr(tasks, "enqueue", lambda jobs, pk: tries.append(pk))  # answers None: not sent
     tasks.sweep()
     tasks.sweep()
     assert tries == [queued.pk, queued.pk]

@@ -17,7 +17,13 @@ from fits.assessments.services.find_features import find_own_features, wants_fea
 
 
 def request_assessment(
-    *, user: User, release: Release, curves: Iterable[Curve], settings: Mapping[str, Any], seed: int
+    *,
+    user: User,
+    release: Release,
+    curves: Iterable[Curve],
+    settings: Mapping[str, Any],
+    seed: int,
+    is_automatic: bool = False,
 ) -> Assessment:
     """The assessment of these inputs: one that waits, runs or is done already, else a new one, enqueued."""
     chosen = sorted(set(curves), key=lambda curve: curve.pk)
@@ -29,10 +35,16 @@ def request_assessment(
     try:
         with transaction.atomic():
             assessment = Assessment.objects.create(
-                release=release, settings=dict(settings), seed=seed, fingerprint=mark, requested_by=user
+                release=release,
+                settings=dict(settings),
+                seed=seed,
+                fingerprint=mark,
+                requested_by=user,
+                desk=chosen[0].theory.desk,
+                is_automatic=is_automatic,
             )
             assessment.curves.set(chosen)
-            transaction.on_commit(partial(enqueue, assessment.pk))
+            transaction.on_commit(partial(enqueue, Assessment, assessment.pk))
     except IntegrityError:
         # Somebody asked for the same at the same moment and came first.
         if same := _same(mark):
@@ -59,10 +71,18 @@ def _add_features(user: User, same: Assessment, settings: Mapping[str, Any]) -> 
 
 
 def _check(release: Release, curves: list[Curve]) -> None:
+    if release.is_withdrawn:
+        raise UserError("release-withdrawn", f"{release} is withdrawn", "Choose one that is not")
     if release.state != Release.State.PUBLISHED:
         raise UserError("release-not-published", "this release is a draft", "Publish it first")
     if not curves:
         raise UserError("no-curves", "no curve is chosen", "Choose at least one")
+    if len({curve.theory.desk_id for curve in curves}) > 1:
+        raise UserError(
+            "several-desks",
+            "these curves stand at several desks, or some are shared and some are not",
+            "Choose the curves of one desk, or shared ones: who sees an assessment sees all its curves",
+        )
     for curve in curves:
         if curve.state != Curve.State.SUBMITTED:
             raise UserError(

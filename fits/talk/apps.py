@@ -1,0 +1,6 @@
+from django.apps import AppConfig
+
+
+class TalkConfig(AppConfig):
+    name = "fits.talk"
+    label = "talk"
