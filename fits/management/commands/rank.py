@@ -33,7 +33,7 @@ class Command(FileCommand):
         # As in a worker: sums split over threads come out otherwise rounded.
         with threadpool_limits(limits=1):
             found = assess(inputs.data, inputs.curves, inputs.settings, rng=rng)
-        result = result_document(found, seed=inputs.seed)
+            result = result_document(found, seed=inputs.seed)
         if options["page"]:
             # Loaded here, since charts take longer to load than a ranking to compute.
             from fits.reports.standalone import render_standalone
