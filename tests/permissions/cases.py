@@ -1,0 +1,126 @@
+"""What each address is asked about: its arguments, for somebody in this world.
+
+One line an address. `Key` gets the world and the name of who asks ("lead", "member", "student", "observer",
+"stranger"), since a student works with rows of their own desk and a draft is there for its owner alone.
+"""
+
+from collections.abc import Callable
+from typing import Any
+
+from tests.permissions.world import World
+
+Key = Callable[[World, str], tuple[Any, ...]]
+
+
+def nothing(world: World, who: str) -> tuple[Any, ...]:
+    return ()
+
+
+def collaboration(world: World, who: str) -> tuple[Any, ...]:
+    return (world.collaboration.pk,)
+
+
+def measurement(world: World, who: str) -> tuple[Any, ...]:
+    return (world.measurement.pk,)
+
+
+def release(world: World, who: str) -> tuple[Any, ...]:
+    return (world.release.pk,)
+
+
+def draft_release(world: World, who: str) -> tuple[Any, ...]:
+    return (world.draft.pk,)
+
+
+def theory(world: World, who: str) -> tuple[Any, ...]:
+    return (world.around(who).theory.pk,)
+
+
+def curve(world: World, who: str) -> tuple[Any, ...]:
+    return (world.around(who).curve.pk,)
+
+
+def draft_curve(world: World, who: str) -> tuple[Any, ...]:
+    return (world.draft_curve(who).pk,)
+
+
+def done(world: World, who: str) -> tuple[Any, ...]:
+    return (world.around(who).done.pk,)
+
+
+def running(world: World, who: str) -> tuple[Any, ...]:
+    return (world.around(who).running.pk,)
+
+
+def report(world: World, who: str) -> tuple[Any, ...]:
+    return (world.report.pk,)
+
+
+def secret(world: World, who: str) -> tuple[Any, ...]:
+    return (world.secret,)
+
+
+def membership_of_member(world: World, who: str) -> tuple[Any, ...]:
+    person = world.collaboration.memberships.get(user=world.people["member"])
+    return (world.collaboration.pk, person.pk)
+
+
+def with_(key: Key, *rest: Any) -> Key:
+    """More arguments behind."""
+    return lambda world, who: (*key(world, who), *rest)
+
+
+KEYS: dict[str, Key] = {
+    "overviews:home": nothing,
+    "overviews:collaboration": collaboration,
+    "overviews:measurement": measurement,
+    "overviews:theory": theory,
+    "people:new_collaboration": nothing,
+    "people:edit_collaboration": collaboration,
+    "people:people": collaboration,
+    "people:change_role": membership_of_member,
+    "people:remove": membership_of_member,
+    "measurements:new_measurement": collaboration,
+    "measurements:edit_measurement": measurement,
+    "measurements:upload": measurement,
+    "measurements:release": release,
+    "measurements:publish": draft_release,
+    "measurements:discard": draft_release,
+    "measurements:download": release,
+    "theories:new_theory": collaboration,
+    "theories:edit_theory": theory,
+    "theories:new_curve": theory,
+    "theories:curve": curve,
+    "theories:submit": draft_curve,
+    "theories:discard": draft_curve,
+    "theories:download": curve,
+    "assessments:new": release,
+    "assessments:coordinates": release,
+    "assessments:progress": running,
+    "assessments:cancel": running,
+    "reports:explained": nothing,
+    "reports:assessment": done,
+    "reports:assessment_chart": with_(done, "curves", "svg"),
+    "reports:assessment_json": done,
+    "reports:assessment_csv": done,
+    "reports:ask_features": done,
+    "reports:features_progress": done,
+    "reports:cancel_features": done,
+    "reports:assessment_features": with_(done, "features.json"),
+    "reports:new": done,
+    "reports:report": report,
+    "reports:report_chart": with_(report, "curves", "svg"),
+    "reports:report_json": report,
+    "reports:report_csv": report,
+    "reports:report_features": with_(report, "features.json"),
+    "reports:new_link": report,
+    "reports:revoke": lambda world, who: (world.link.pk,),
+    "reports:shared": secret,
+    "reports:shared_chart": with_(secret, "curves", "svg"),
+    "reports:shared_json": secret,
+    "reports:shared_csv": secret,
+    "reports:shared_features": with_(secret, "features.json"),
+}
+
+# Addresses that answer 404 to everybody in this world, since what they name is not there: here no features are found.
+NOT_THERE = {"reports:assessment_features", "reports:report_features", "reports:shared_features"}
