@@ -151,6 +151,9 @@ EMAIL_HOST_USER = os.environ.get("INRADIUS_EMAIL_USER", "")
 EMAIL_HOST_PASSWORD = os.environ.get("INRADIUS_EMAIL_PASSWORD", "")
 EMAIL_USE_TLS = flag("INRADIUS_EMAIL_TLS")
 DEFAULT_FROM_EMAIL = os.environ.get("INRADIUS_EMAIL_FROM", "inradius@localhost")
+EMAIL_TIMEOUT = 20  # seconds; a mail server that is away holds nobody up
+# Where people reach the site, for the addresses in e-mails that no request of theirs asks for.
+SITE_URL = os.environ.get("INRADIUS_URL", "http://localhost:8000/").rstrip("/")
 
 # ---- Jobs ----
 # REDIS_URL names a service; without it the socket is that of the Redis which core.broker starts.
@@ -190,6 +193,7 @@ CELERY_BEAT_SCHEDULE_FILENAME = str(HOME / "schedule")
 CELERY_BEAT_SCHEDULE = {
     "sweep": {"task": "fits.assessments.tasks.sweep", "schedule": 30.0, "options": {"expires": 30.0}},
     "canary": {"task": "fits.assessments.tasks.canary", "schedule": 60.0, "options": {"expires": 60.0}},
+    "digests": {"task": "fits.talk.tasks.send_digests", "schedule": 3600.0, "options": {"expires": 3600.0}},
 }
 # A worker that has neither sung (the canary) nor got on with an assessment for so long hangs.
 WORKER_ALIVE_FILE = HOME / "worker-alive"

@@ -16,4 +16,5 @@ urlpatterns = [
     path("", include("core.theories.urls")),
     path("", include("fits.assessments.urls")),
     path("", include("fits.reports.urls")),
+    path("", include("fits.talk.urls")),
 ]

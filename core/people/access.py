@@ -26,6 +26,7 @@ __all__ = [
     "in_overview",
     "load",
     "may",
+    "readers_of",
     "require",
     "role_of",
     "seen_by",
@@ -105,6 +106,20 @@ def sees_data(user: Someone, measurement: Model) -> bool:
     return isinstance(user, User) and _looked_at(user).filter(measurement=key).exists()
 
 
+def readers_of(row: Model) -> QuerySet[User]:
+    """All who may see this row: what `seen_by` says for one of them, said for one row."""
+    here = Membership.objects.filter(collaboration=collaboration_of(row))
+    if path := _desk_path(type(row)):
+        desk = _along(row, path)
+        allowed = Q(role__in=SHARERS) if desk is None else Q(role=Role.LEAD)
+        here = here.filter(allowed | Q(user=desk))
+    measurement = _along(row, path) if (path := getattr(type(row), "SEAL_PATH", "")) else None
+    if isinstance(measurement, Model) and not sees_data(AnonymousUser(), measurement):
+        looks = apps.get_model("measurements", "EarlyLook")._default_manager.filter(measurement=measurement.pk)
+        here = here.filter(role=Role.LEAD, user__in=looks.values("user"))
+    return User.objects.filter(pk__in=here.values("user"))
+
+
 def desk_of(user: User, collaboration: Collaboration) -> User | None:
     """At whose desk what this user brings will stand: a student's own, None for all others."""
     return user if role_of(user, collaboration) is Role.STUDENT else None
@@ -142,12 +157,17 @@ def load(rows: QuerySet[Row], user: Someone, action: Action, pk: int) -> Row:
 
 def collaboration_of(row: Model) -> Collaboration:
     """The collaboration that a row belongs to."""
-    owner: object = row
-    path = _path(type(row))
-    for step in path.split("__") if path else []:
-        owner = getattr(owner, step)
+    owner = _along(row, _path(type(row)))
     assert isinstance(owner, Collaboration)
     return owner
+
+
+def _along(row: Model, path: str) -> object:
+    """What stands at the end of a path that begins at the row."""
+    found: object = row
+    for step in path.split("__") if path else []:
+        found = getattr(found, step)
+    return found
 
 
 def _path(model: type[Model]) -> str:

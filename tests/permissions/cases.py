@@ -65,6 +65,15 @@ def membership_of_member(world: World, who: str) -> tuple[Any, ...]:
     return (world.collaboration.pk, person.pk)
 
 
+def comment(world: World, who: str) -> tuple[Any, ...]:
+    """One on the theory that they work with, by who submitted that."""
+    theory = world.around(who).theory
+    made, _ = theory.comments.get_or_create(
+        collaboration=world.collaboration, author=theory.submitted_by, desk=theory.desk, words="Calm."
+    )
+    return (made.pk,)
+
+
 def with_(key: Key, *rest: Any) -> Key:
     """More arguments behind."""
     return lambda world, who: (*key(world, who), *rest)
@@ -120,6 +129,11 @@ KEYS: dict[str, Key] = {
     "reports:shared_json": secret,
     "reports:shared_csv": secret,
     "reports:shared_features": with_(secret, "features.json"),
+    "talk:comment_theory": theory,
+    "talk:comment_assessment": done,
+    "talk:remove": comment,
+    "talk:log": collaboration,
+    "talk:log_csv": collaboration,
 }
 
 # Addresses that answer 404 to everybody in this world, since what they name is not there: here no features are found.

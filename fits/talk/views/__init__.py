@@ -1,0 +1,1 @@
+"""Pages of talk: what is sent to comments, and the log."""
