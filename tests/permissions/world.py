@@ -61,7 +61,7 @@ def assessment_of(release: Release, curve: Curve, mark: str, **fields: Any) -> A
         release=release,
         settings=SETTINGS,
         seed=1,
-        fingerprint=mark * 64,
+        fingerprint=f"{mark:0>64}",
         requested_by=curve.submitted_by,
         desk=curve.theory.desk,
         **fields,
