@@ -32,7 +32,14 @@ class Heartbeat:
 def finish(lease: Lease[Assessment], outcome: Outcome) -> None:
     """Save what was computed. Raises Cancelled or Superseded where that is no longer wanted."""
     with transaction.atomic():
-        lease.finish(progress=1.0, result=outcome.result, detail=outcome.detail, engine_version=VERSION)
+        lease.finish(
+            progress=1.0,
+            result=outcome.result,
+            detail=outcome.detail,
+            radius=outcome.radius,
+            separations=outcome.separations,
+            engine_version=VERSION,
+        )
         Verdict.objects.bulk_create(
             _verdict(lease.pk, outcome.curve_keys[found["name"]], found) for found in outcome.result["curves"]
         )

@@ -18,16 +18,22 @@ from fits.engine.assess import assess
 from fits.engine.data import CurveTable
 from fits.engine.refusal import InputRefused
 from fits.engine.result import Result
+from fits.engine.separation import MOST_CURVES, separations_of
 from fits.engine.settings import RadiusKind, Settings, Shrinkage
+
+RADIUS_LEVEL = 0.95
 
 
 @dataclass(frozen=True)
 class Outcome:
-    """What an assessment found. `curve_keys` leads from the names in the result back to the rows."""
+    """What an assessment found. `curve_keys` leads from the names in the result back to the rows; `radius` and
+    `separations` are kept in fields of their own, for pages that ask many assessments for them."""
 
     result: dict[str, Any]
     detail: dict[str, Any]
     curve_keys: dict[str, int]
+    radius: float | None = None
+    separations: dict[str, Any] | None = None
 
 
 # Sums split over threads come out otherwise rounded: one thread gives the same bits on every machine of a kind.
@@ -36,14 +42,31 @@ def compute(assessment: Assessment, progress: Callable[[str, float], None]) -> O
     """Compute an assessment from its rows alone; the same rows give the same bits."""
     progress(Assessment.Stage.READING, 0.0)
     names = curve_names(assessment)
+    keys = {name: key for key, name in names.items()}
     curves = [replace(table_of(curve), name=names[curve.pk]) for curve in assessment.curves.order_by("pk")]
     result = _assess(assessment, curves, progress)
     progress(Assessment.Stage.SAVING, 0.0)
     return Outcome(
         result=result_document(result, seed=assessment.seed),
         detail=detail_document(result),
-        curve_keys={name: key for key, name in names.items()},
+        curve_keys=keys,
+        radius=radius_of(result),
+        separations=separations_document(result, [keys[curve.name] for curve in curves]),
     )
+
+
+def radius_of(result: Result) -> float | None:
+    """The radius at 95 %, of the kind that was chosen; None where that level was not asked for."""
+    kind = result.settings.radius.value
+    return next((getattr(radius, kind) for radius in result.ball.radii if radius.level == RADIUS_LEVEL), None)
+
+
+def separations_document(result: Result, keys: Sequence[int]) -> dict[str, Any] | None:
+    """How far its curves, with these keys, are from each other; None where they are too many to keep all pairs."""
+    if len(keys) > MOST_CURVES:
+        return None
+    distances = separations_of([verdict.coordinates for verdict in result.verdicts])
+    return {"curves": list(keys), "distances": distances.tolist()}
 
 
 def fit_and_ball(assessment: Assessment) -> Result:
