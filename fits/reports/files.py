@@ -7,6 +7,7 @@ from django.http import Http404, HttpRequest, HttpResponse
 from fits.reports.exports import ranking_csv, table_csv
 from fits.reports.features.files import feature_file
 from fits.reports.figures import figure_of
+from fits.reports.figures.figure import Figure
 from fits.reports.figures.svg import svg
 from fits.reports.snapshot import Snapshot
 
@@ -16,9 +17,14 @@ def chart_file(request: HttpRequest, snapshot: Snapshot, name: str, form: str) -
     figure = figure_of(name, snapshot, level=request.GET.get("level"), curve=request.GET.get("curve"))
     if figure is None or form not in {"svg", "csv"}:
         raise Http404
+    return figure_file(figure, form)
+
+
+def figure_file(figure: Figure, form: str) -> HttpResponse:
+    """A figure as "svg" or "csv"."""
     if form == "svg":
-        return _file(svg(figure), "image/svg+xml", f"{name}.svg", shown=True)
-    return _file(table_csv(figure.table), "text/csv", f"{name}.csv")
+        return text_file(svg(figure), "image/svg+xml", f"{figure.name}.svg", shown=True)
+    return text_file(table_csv(figure.table), "text/csv", f"{figure.name}.csv")
 
 
 def features_file(request: HttpRequest, snapshot: Snapshot, name: str) -> HttpResponse:
@@ -26,20 +32,21 @@ def features_file(request: HttpRequest, snapshot: Snapshot, name: str) -> HttpRe
     found = feature_file(snapshot, name, level=request.GET.get("level"), curve=request.GET.get("curve"))
     if found is None:
         raise Http404
-    return _file(found.text, found.kind, name)
+    return text_file(found.text, found.kind, name)
 
 
 def result_file(snapshot: Snapshot) -> HttpResponse:
     """The whole result as JSON."""
-    return _file(json.dumps(snapshot.result, indent=1), "application/json", "result.json")
+    return text_file(json.dumps(snapshot.result, indent=1), "application/json", "result.json")
 
 
 def ranking_file(snapshot: Snapshot) -> HttpResponse:
     """The ranking table as CSV."""
-    return _file(ranking_csv(snapshot), "text/csv", "ranking.csv")
+    return text_file(ranking_csv(snapshot), "text/csv", "ranking.csv")
 
 
-def _file(text: str, kind: str, name: str, *, shown: bool = False) -> HttpResponse:
+def text_file(text: str, kind: str, name: str, *, shown: bool = False) -> HttpResponse:
+    """A text as a file to keep, or to be shown as it is."""
     disposition = f'{"inline" if shown else "attachment"}; filename="{name}"'
     response = HttpResponse(text.encode(), content_type=f"{kind}; charset=utf-8")
     response["Content-Disposition"] = disposition
