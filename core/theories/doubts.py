@@ -18,25 +18,25 @@ def doubts(curve: CurveTable, data: Data, errors: FloatArray | None) -> list[str
     """One sentence for each doubt: range, size, grid. errors: in units of y, shape (n,)."""
     low, high = observation_of(data).reach
     if curve.x[-1] < low or curve.x[0] > high:
-        return [
-            f"Your curve covers {_stretch(curve.x[0], curve.x[-1])}, the data {_stretch(low, high)}: "
-            "they have no x in common. Check the unit of x."
-        ]
-    return [*_missing(curve, low, high), *_odd_size(curve, data), *_coarse_grid(curve, data, errors)]
+        return doubts_of_range(curve, low, high)
+    return [*doubts_of_range(curve, low, high), *_odd_size(curve, data), *_coarse_grid(curve, data, errors)]
 
 
-def _missing(curve: CurveTable, low: float, high: float) -> list[str]:
+def doubts_of_range(curve: CurveTable, low: float, high: float, of_what: str = "the data") -> list[str]:
+    """What a curve lacks of a stretch of x."""
+    covers = f"Your curve covers {stretch(curve.x[0], curve.x[-1])}, {of_what} {stretch(low, high)}: "
+    if curve.x[-1] < low or curve.x[0] > high:
+        return [f"{covers}they have no x in common. Check the unit of x."]
     slack = ROUNDING * (high - low)
     missing = []
     if curve.x[0] > low + slack:
-        missing.append(_stretch(low, curve.x[0]))
+        missing.append(stretch(low, curve.x[0]))
     if curve.x[-1] < high - slack:
-        missing.append(_stretch(curve.x[-1], high))
+        missing.append(stretch(curve.x[-1], high))
     if not missing:
         return []
     return [
-        f"Your curve covers {_stretch(curve.x[0], curve.x[-1])}, the data {_stretch(low, high)}: "
-        f"missing stretch {' and '.join(missing)}. "
+        f"{covers}missing stretch {' and '.join(missing)}. "
         "A curve is never continued, so it cannot be assessed on these data."
     ]
 
@@ -81,5 +81,6 @@ def _times(ratio: float) -> str:
     return f"{ratio:.0f}" if ratio < 1e6 else f"{ratio:.1e}"
 
 
-def _stretch(low: float, high: float) -> str:
+def stretch(low: float, high: float) -> str:
+    """From one x to another, in words."""
     return f"{low:.6g}–{high:.6g}" if low >= 0.0 else f"{low:.6g} to {high:.6g}"

@@ -6,6 +6,7 @@ from django import forms
 
 from core.measurements.forms import UploadField
 from core.measurements.models import Measurement
+from core.revision import RevisionForm
 from core.theories.models import Theory
 
 
@@ -21,6 +22,10 @@ class TheoryForm(forms.ModelForm):  # type: ignore[type-arg]
             "proposed_by": "A person or a group.",
             "reference": "Where it is written down.",
         }
+
+
+class EditTheoryForm(TheoryForm, RevisionForm):
+    """Other words for a theory, and which state of them its reader saw."""
 
 
 class CurveForm(forms.Form):
@@ -47,3 +52,17 @@ class CurveForm(forms.Form):
         choice = self.fields["measurement"]
         assert isinstance(choice, forms.ModelChoiceField)
         choice.queryset = measurements
+
+
+class BatchForm(forms.Form):
+    """Many curves to upload for one measurement."""
+
+    table = UploadField(
+        label="Curves",
+        help_text="A zip archive in which each file is a curve, text with two columns, and its name without the ending "
+        "that of the theory; or one text table whose first column is x and every other column a curve, with the names "
+        "of the theories in its first line. Up to 500 curves and 50 MB, unpacked.",
+    )
+    note = forms.CharField(
+        label="What is new in them", required=False, max_length=2000, widget=forms.Textarea(attrs={"rows": 3})
+    )

@@ -15,9 +15,10 @@ from core.people.access import Action, load, may
 from core.people.forms import explain
 from core.people.models import Collaboration
 from core.people.signed_in import SignedInRequest
+from core.revision import CHANGED_MEANWHILE
 from core.theories import services
 from core.theories.curve_page import curve_page
-from core.theories.forms import CurveForm, TheoryForm
+from core.theories.forms import CurveForm, EditTheoryForm, TheoryForm
 from core.theories.models import Curve, Theory
 
 
@@ -49,13 +50,16 @@ def edit_theory(request: SignedInRequest, pk: int) -> HttpResponse:
     ):
         raise PermissionDenied("only who submitted a theory, or a lead, may change its words")
     kept = {name: getattr(theory, name) for name in TheoryForm.Meta.fields}
-    form = TheoryForm(request.POST or None, initial=kept)
+    form = EditTheoryForm(request.POST or None, initial=kept | {"revision": theory.revision})
     if form.is_valid():
+        words = dict(form.cleaned_data)
         try:
-            services.edit_theory(theory=theory, **form.cleaned_data)
+            services.edit_theory(by=request.user, theory=theory, seen=words.pop("revision"), **words)
         except UserError as error:
-            explain(form, error, "name")
+            explain(form, error, "name" if error.code == "name-taken" else None)
             theory.refresh_from_db()
+            if error.code == CHANGED_MEANWHILE:
+                form.show_what_stands_now(theory)
         else:
             return redirect(theory)
     context = {"form": form, "collaboration": theory.collaboration, "theory": theory}
@@ -94,7 +98,7 @@ def new_curve(request: SignedInRequest, pk: int) -> HttpResponse:
 def curve(request: SignedInRequest, pk: int) -> HttpResponse:
     """The curve over the newest data; a draft to submit or discard."""
     row = _curve(request, pk, Action.VIEW)
-    page = curve_page(row)
+    page = curve_page(row, request.user)
     context = {
         "curve": row,
         "theory": row.theory,

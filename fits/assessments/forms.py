@@ -4,6 +4,7 @@ import secrets
 from typing import TYPE_CHECKING, Any
 
 from django import forms
+from django.db.models import QuerySet
 
 from core.measurements.models import Release
 from core.theories.models import Curve
@@ -100,9 +101,8 @@ class AssessmentForm(CoordinatesForm):
         help_text="Starts the simulation. The same inputs, settings and seed give the same numbers to the last digit.",
     )
 
-    def __init__(self, *args: Any, release: Release, **kwargs: Any) -> None:
+    def __init__(self, *args: Any, release: Release, curves: QuerySet[Curve], **kwargs: Any) -> None:
         super().__init__(*args, release=release, **kwargs)
-        curves = submitted_curves(release)
         field = self.fields["curves"]
         assert isinstance(field, CurveChoice)
         field.queryset = curves
@@ -132,8 +132,9 @@ class AssessmentForm(CoordinatesForm):
         }
 
 
-def submitted_curves(release: Release) -> Any:
-    """The curves that a release can be assessed with, newest versions first."""
+def submitted_curves(release: Release) -> QuerySet[Curve]:
+    """The curves that a release can be assessed with, newest versions first; those of one desk, or the shared ones,
+    are assessed together."""
     return (
         Curve.objects.filter(measurement=release.measurement, state=Curve.State.SUBMITTED)
         .select_related("theory")

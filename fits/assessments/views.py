@@ -12,6 +12,7 @@ from core.people.forms import explain
 from core.people.signed_in import SignedInRequest
 from core.user_error import UserError
 from fits.assessments.coordinates_form import CoordinatesForm
+from fits.assessments.desk_choice import desk_choice
 from fits.assessments.forms import AssessmentForm
 from fits.assessments.models import Assessment
 from fits.assessments.services import cancel_assessment, request_assessment
@@ -23,7 +24,8 @@ from fits.assessments.stages import stages_of
 def new_assessment(request: SignedInRequest, pk: int) -> HttpResponse:
     """Choose curves and settings for a release."""
     release = _release_to_assess(request, pk)
-    form = AssessmentForm(request.POST or None, release=release)
+    choice = desk_choice(request.user, release, request.GET.get("desk", ""))
+    form = AssessmentForm(request.POST or None, release=release, curves=choice.curves)
     if form.is_valid():
         try:
             return redirect(
@@ -39,6 +41,7 @@ def new_assessment(request: SignedInRequest, pk: int) -> HttpResponse:
             explain(form, error)
     context = {
         "form": form,
+        "choice": choice,
         "counted": form if form.is_bound else CoordinatesForm.with_defaults(release),
         "release": release,
         "measurement": release.measurement,
@@ -82,5 +85,5 @@ def progress(request: SignedInRequest, pk: int) -> HttpResponse:
 def cancel(request: SignedInRequest, pk: int) -> HttpResponse:
     """Cancel what has not ended."""
     assessment = load(Assessment.objects.defer("result", "detail"), request.user, Action.ASSESS, pk)
-    cancel_assessment(assessment)
+    cancel_assessment(assessment, by=request.user)
     return redirect(assessment)

@@ -13,7 +13,7 @@ from core.measurements.models import Measurement, Release
 from core.people.models import User
 from core.theories.models import Curve
 from fits.assessments.coordinates_form import CoordinatesForm
-from fits.assessments.forms import AssessmentForm
+from fits.assessments.forms import AssessmentForm, submitted_curves
 from tests.conftest import npy
 
 SignedIn = Callable[[User], Client]
@@ -83,11 +83,8 @@ def test_bad_values_are_refused_as_on_submit(
 ) -> None:
     chosen = DEFAULT | chosen
     rest = {"curves": [curve.pk], "levels": "95", "shrinkage": "monotone", "radius": "calibrated", "seed": 1}
-    faults = [
-        str(fault)
-        for faults in AssessmentForm(chosen | rest, release=release).errors.values()
-        for fault in faults
-    ]
+    form = AssessmentForm(chosen | rest, release=release, curves=submitted_curves(release))
+    faults = [str(fault) for faults in form.errors.values() for fault in faults]
     address = reverse("assessments:coordinates", args=[release.pk])
     page = signed_in(member).get(address, chosen).content.decode()
     assert faults

@@ -220,7 +220,7 @@ def test_cancelling_ends_what_waits_and_asks_what_runs_to_end(
     running = search.parts.get(kind=Kind.SPACING)
 
     def compute(part: FeaturePart, look: Callable[[], None]) -> None:
-        cancel_features(search)
+        cancel_features(search, by=search.requested_by)
         look()
 
     monkeypatch.setattr(feature_parts, "compute", compute)
@@ -236,7 +236,7 @@ def test_a_plan_that_ends_after_cancelling_starts_nothing(ask: Ask, monkeypatch:
 
     def compute(part: FeaturePart, look: Callable[[], None]) -> object:
         found: object = real(part, look)
-        cancel_features(search)
+        cancel_features(search, by=search.requested_by)
         return found
 
     monkeypatch.setattr(feature_parts, "compute", compute)
@@ -249,7 +249,7 @@ def test_a_plan_that_ends_after_cancelling_starts_nothing(ask: Ask, monkeypatch:
 def test_cancelling_a_finished_search_changes_nothing(ask: Ask) -> None:
     search = ask()
     run_all(search)
-    cancel_features(search)
+    cancel_features(search, by=search.requested_by)
     assert search.status == Status.DONE
 
 

@@ -194,7 +194,7 @@ def test_the_newest_search_that_was_not_cancelled_is_shown(search: FeatureSearch
     assessment = search.assessment
     newer = request_features(user=member, assessment=assessment, windows=[(1.0, 2.0)])
     assert newest_search(assessment) == newer
-    cancel_features(newer)
+    cancel_features(newer, by=newer.requested_by)
     assert newest_search(assessment) == search
 
 

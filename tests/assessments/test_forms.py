@@ -4,7 +4,7 @@ from typing import Any
 
 from core.measurements.models import Release
 from core.theories.models import Curve
-from fits.assessments.forms import AssessmentForm
+from fits.assessments.forms import AssessmentForm, submitted_curves
 
 
 def asked(release: Release, curve: Curve, **changes: Any) -> AssessmentForm:
@@ -18,7 +18,7 @@ def asked(release: Release, curve: Curve, **changes: Any) -> AssessmentForm:
         "features": "on",
         "seed": "7",
     }
-    return AssessmentForm(data | changes, release=release)
+    return AssessmentForm(data | changes, release=release, curves=submitted_curves(release))
 
 
 def test_the_defaults_are_those_of_the_engine(release: Release, curve: Curve) -> None:
@@ -51,7 +51,7 @@ def test_the_newest_version_is_chosen_and_older_ones_offered(release: Release, c
     values = {field: getattr(curve, field) for field in fields}
     newer = Curve.objects.create(version=2, state=Curve.State.SUBMITTED, **values)
     Curve.objects.create(state=Curve.State.DRAFT, **values)
-    field: Any = AssessmentForm(release=release).fields["curves"]
+    field: Any = AssessmentForm(release=release, curves=submitted_curves(release)).fields["curves"]
     assert field.initial == [newer.pk]
     assert set(field.queryset) == {curve, newer}
 
@@ -80,7 +80,7 @@ def test_full_resolution_is_refused_for_many_points(release: Release, curve: Cur
 
 
 def test_a_seed_is_proposed(release: Release) -> None:
-    assert AssessmentForm(release=release).fields["seed"].initial >= 0
+    assert AssessmentForm(release=release, curves=submitted_curves(release)).fields["seed"].initial >= 0
 
 
 def test_a_curve_whose_key_no_database_holds_is_no_choice(release: Release, curve: Curve) -> None:

@@ -128,18 +128,18 @@ def test_no_curve_at_all_is_refused(member: User, release: Release) -> None:
 
 
 def test_what_waits_is_cancelled_at_once(queued: Assessment) -> None:
-    cancel_assessment(queued)
+    cancel_assessment(queued, by=queued.requested_by)
     assert queued.status == Status.CANCELLED
     assert queued.ended_at is not None
 
 
 def test_what_runs_is_asked_to_end(queued: Assessment) -> None:
     claims.claim(queued.pk)
-    cancel_assessment(queued)
+    cancel_assessment(queued, by=queued.requested_by)
     assert (queued.status, queued.cancel_requested) == (Status.RUNNING, True)
 
 
 def test_what_is_done_stays_done(queued: Assessment) -> None:
     Assessment.objects.filter(pk=queued.pk).update(status=Status.DONE)
-    cancel_assessment(queued)
+    cancel_assessment(queued, by=queued.requested_by)
     assert (queued.status, queued.cancel_requested) == (Status.DONE, False)

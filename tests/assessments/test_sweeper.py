@@ -94,7 +94,7 @@ def test_one_that_was_to_be_cancelled_when_its_worker_was_lost_is_cancelled(
     queued: Assessment, sent: list[int]
 ) -> None:
     claims.claim(queued.pk)
-    cancel_assessment(queued)
+    cancel_assessment(queued, by=queued.requested_by)
     let_the_lease_end(queued)
     tasks.sweep()
     queued.refresh_from_db()

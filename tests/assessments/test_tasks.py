@@ -105,14 +105,14 @@ def test_a_superseded_attempt_ends_at_its_next_progress(queued: Assessment) -> N
 def test_a_cancelled_one_that_is_delivered_late_is_not_computed(
     queued: Assessment, computed: list[int]
 ) -> None:
-    cancel_assessment(queued)
+    cancel_assessment(queued, by=queued.requested_by)
     run_assessment(queued.pk)
     assert computed == []
 
 
 def test_a_running_one_ends_cancelled_at_its_next_progress(queued: Assessment, compute_as: Replace) -> None:
     def compute(assessment: Assessment, progress: Progress) -> Outcome:
-        cancel_assessment(assessment)
+        cancel_assessment(assessment, by=assessment.requested_by)
         progress("judging", 0.5)
         return outcome_of(assessment)
 
@@ -124,7 +124,7 @@ def test_a_running_one_ends_cancelled_at_its_next_progress(queued: Assessment, c
 
 def test_a_cancel_in_the_last_moment_still_counts(queued: Assessment, compute_as: Replace) -> None:
     def compute(assessment: Assessment, progress: Progress) -> Outcome:
-        cancel_assessment(assessment)
+        cancel_assessment(assessment, by=assessment.requested_by)
         return outcome_of(assessment)
 
     compute_as(compute)

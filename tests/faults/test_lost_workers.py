@@ -67,7 +67,7 @@ def test_a_running_assessment_is_cancelled_between_batches(
     with real_worker(tmp_path / "worker.log", app=GATED, GATE=str(tmp_path / "never")):
         assessment = ask(member, release, curve)
         wait_for(assessment, Status.RUNNING)
-        cancel_assessment(assessment)
+        cancel_assessment(assessment, by=assessment.requested_by)
         wait_for(assessment, Status.CANCELLED)
 
 

@@ -16,6 +16,7 @@ from typing import IO, Any
 import numpy as np
 from numpy.typing import NDArray
 
+from core.measurements.reading.batch import BatchCurve
 from core.measurements.reading.limits import CHILD_WALL_SECONDS
 from core.measurements.reading.names import safe_name
 from core.measurements.reading.table import Table
@@ -48,6 +49,22 @@ def read_curve_apart(content: bytes, file_name: str, name: str) -> CurveTable:
     _, (x, y) = _read("curve", content, file_name, name=name)
     x.flags.writeable = y.flags.writeable = False
     return CurveTable(name, x, y)
+
+
+def read_batch_apart(content: bytes, file_name: str) -> list[BatchCurve]:
+    """`read_batch` in a child process."""
+    reply, arrays = _read("batch", content, file_name)
+    columns = iter(arrays)
+    found = []
+    for words in reply["curves"]:
+        fault = words.pop("fault")
+        if fault is not None:
+            found.append(BatchCurve(**words, fault=UserError(**fault)))
+            continue
+        x, y = next(columns), next(columns)
+        x.flags.writeable = y.flags.writeable = False
+        found.append(BatchCurve(**words, curve=CurveTable(words["name"], x, y)))
+    return found
 
 
 def read_covariance_apart(content: bytes, file_name: str, points: int) -> NDArray[np.float64]:

@@ -51,7 +51,27 @@ def answer(kind: str, content: bytes, file_name: str, arguments: dict[str, Any])
         from core.measurements.reading.windows import read_windows
 
         return {}, [read_windows(content, file_name, **arguments)]
+    if kind == "batch":
+        return _batch(content, file_name)
     raise ValueError(f"nothing reads a {kind}")
+
+
+def _batch(content: bytes, file_name: str) -> "Answer":
+    """Each curve in words, and the numbers of those that were read."""
+    from core.measurements.reading.batch import read_batch
+
+    curves = read_batch(content, file_name)
+    words = [
+        {
+            "name": read.name,
+            "source": read.source,
+            "sha256": read.sha256,
+            "fault": None if read.fault is None else dataclasses.asdict(read.fault),
+        }
+        for read in curves
+    ]
+    arrays = [column for read in curves if read.curve for column in (read.curve.x, read.curve.y)]
+    return {"curves": words}, arrays
 
 
 def main(given: BinaryIO, out: BinaryIO) -> None:

@@ -39,3 +39,14 @@ COVARIANCE_TABLE = TableLimits(
 WINDOWS_TABLE = TableLimits(
     rows=MAXIMUM_ROWS, columns=MAXIMUM_WINDOW_GRID, line_length=600_000, cells=MAXIMUM_WINDOW_WEIGHTS
 )
+
+# Of many curves uploaded together: a zip archive, or a table with a column for each.
+MAXIMUM_BATCH_CURVES = 500
+MAXIMUM_BATCH_BYTES = 50 * 1024 * 1024  # unpacked
+MAXIMUM_BATCH_POINTS = 4_000_000
+# Folders and hidden files, which are passed over, may stand beside the curves.
+MAXIMUM_ARCHIVE_ENTRIES = 5000
+MAXIMUM_SOURCE_LENGTH = 300
+BATCH_TABLE = TableLimits(
+    rows=MAXIMUM_ROWS, columns=MAXIMUM_BATCH_CURVES + 1, line_length=40_000, cells=MAXIMUM_BATCH_POINTS
+)

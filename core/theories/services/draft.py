@@ -11,6 +11,7 @@ from core.measurements.reading.names import safe_name
 from core.measurements.reading.stored import to_bytes
 from core.people.models import User
 from core.theories.models import Curve, Theory
+from core.theories.rules import refuse_closed, refuse_short
 
 
 def draft_curve(
@@ -21,7 +22,9 @@ def draft_curve(
         raise UserError(
             "wrong-measurement", f"{measurement} belongs to another collaboration", "Choose one of this one"
         )
+    refuse_closed(measurement)
     table = read_curve_apart(content, file_name, theory.name)
+    refuse_short(measurement, float(table.x[0]), float(table.x[-1]))
     return Curve.objects.create(
         theory=theory,
         measurement=measurement,

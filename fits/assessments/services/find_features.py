@@ -8,12 +8,14 @@ from typing import Any
 import numpy as np
 from django.db import IntegrityError, transaction
 
+from core.people.log import Deed
 from core.people.models import User
 from core.user_error import UserError
 from fits.assessments import leases, searches
 from fits.assessments.feature_parts import refuse_other_engine
 from fits.assessments.models import Assessment, FeaturePart, FeatureSearch
 from fits.assessments.pipeline import user_error
+from fits.assessments.services.logged import record_deed
 from fits.engine import VERSION
 from fits.engine.features.space import refuse_many_windows, window_on
 from fits.engine.refusal import InputRefused
@@ -28,7 +30,8 @@ def request_features(*, user: User, assessment: Assessment, windows: Windows = (
         raise UserError("assessment-not-done", "this assessment has no fit yet", "Wait until it is done")
     refuse_other_engine(assessment)
     _refuse_bad(windows, assessment.result)
-    return _search(user, assessment, sorted({(float(low), float(high)) for low, high in windows}))
+    chosen = sorted({(float(low), float(high)) for low, high in windows})
+    return _search(user, assessment, chosen, is_logged=True)
 
 
 def find_own_features(user: User, assessment: Assessment) -> FeatureSearch:
@@ -41,7 +44,7 @@ def wants_features(settings: Mapping[str, Any]) -> bool:
     return bool(settings.get("features", True))
 
 
-def cancel_features(search: FeatureSearch) -> None:
+def cancel_features(search: FeatureSearch, *, by: User) -> None:
     """Cancel at once what still waits; what runs ends at its worker's next look; what has ended stays."""
     with transaction.atomic():
         found = FeatureSearch.objects.select_for_update().get(pk=search.pk)
@@ -51,6 +54,7 @@ def cancel_features(search: FeatureSearch) -> None:
             leases.end(living.filter(status=Status.QUEUED), Status.CANCELLED)
             found.status = Status.CANCELLED
             found.save(update_fields=["status"])
+            record_deed(Deed.CANCELLED_FEATURES, found.assessment, by)
     search.refresh_from_db()
 
 
@@ -65,7 +69,9 @@ def _refuse_bad(windows: Windows, result: Mapping[str, Any]) -> None:
         raise user_error(refusal) from refusal
 
 
-def _search(user: User, assessment: Assessment, windows: list[tuple[float, float]]) -> FeatureSearch:
+def _search(
+    user: User, assessment: Assessment, windows: list[tuple[float, float]], *, is_logged: bool = False
+) -> FeatureSearch:
     mark = _fingerprint(assessment, windows)
     if same := _same(mark):
         return same
@@ -75,6 +81,8 @@ def _search(user: User, assessment: Assessment, windows: list[tuple[float, float
                 assessment=assessment, windows=windows, fingerprint=mark, requested_by=user
             )
             searches.begin(search)
+            if is_logged:
+                record_deed(Deed.ASKED_FEATURES, assessment, user, detail={"windows": windows})
     except IntegrityError:
         # Somebody asked for the same at the same moment and came first.
         if same := _same(mark):

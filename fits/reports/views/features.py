@@ -59,5 +59,5 @@ def cancel(request: SignedInRequest, pk: int) -> HttpResponse:
     """Cancel the search that is under way."""
     found = load(Assessment.objects.defer("result", "detail"), request.user, Action.ASSESS, pk)
     if running := searches_of(found).running:
-        cancel_features(running)
+        cancel_features(running, by=request.user)
     return redirect(found)
