@@ -1,13 +1,14 @@
-"""Keeps the secrets of share links out of logs."""
+"""Keeps the secrets of share links and invitations out of logs."""
 
 import logging
 import re
 
-SECRET = re.compile(r"(/r/)[A-Za-z0-9_-]{8,}")
+# Also where one is carried along in another address, as the page to come back to after signing in.
+SECRET = re.compile(r"((?:/|%2F)[ri](?:/|%2F))[A-Za-z0-9_-]{8,}", re.IGNORECASE)
 
 
 def masked(text: str) -> str:
-    """The text with "…" in the place of each share link's secret."""
+    """The text with "…" in the place of each link's secret."""
     return SECRET.sub(r"\1…", text)
 
 

@@ -69,6 +69,7 @@ class Rule:
 OWN_DRAFT = "a draft: who uploaded it"
 LEADS_DRAFT = "a draft: leads"
 OWN_OR_LEAD = "who submitted it, or a lead"
+AUTHOR_OR_LEAD = "who wrote it, or a lead"
 
 Methods = Mapping[str, Rule]
 
@@ -91,21 +92,40 @@ RULES: dict[str, Methods] = {
     # overviews
     "overviews:home": _reads(Door.SIGNED_IN),
     "overviews:collaboration": _reads(Action.VIEW),
+    "overviews:comparison": _reads(Action.VIEW),
+    "overviews:comparison_csv": _reads(Action.VIEW),
+    "overviews:separation": _reads(Action.VIEW),
     "overviews:measurement": _reads(Action.VIEW),
+    "overviews:pairs": _reads(Action.VIEW),
+    "overviews:history_chart": _reads(Action.VIEW),
     "overviews:theory": _reads(Action.VIEW),
+    "overviews:desks": _reads(Action.DESKS),
+    "overviews:desks_csv": _reads(Action.DESKS),
     # people
     "people:new_collaboration": _asks(Door.SIGNED_IN),
     "people:edit_collaboration": _asks(Action.MANAGE),
-    "people:people": {"GET": Rule(Action.VIEW), "POST": Rule(Action.MANAGE)},
+    "people:people": _reads(Action.VIEW),
     "people:change_role": _changes(Action.MANAGE),
     "people:remove": _changes(Action.MANAGE),
+    "people:hand_over": _asks(Action.MANAGE),
+    "people:leave": _changes(Action.LEAVE),
+    "people:new_invitation": _changes(Action.MANAGE),
+    "people:mail_invitation": _changes(Action.MANAGE),
+    "people:revoke_invitation": _changes(Action.MANAGE),
+    "people:invitation": _asks(Door.LINK),
+    "people:permissions": _reads(Door.SIGNED_IN),
+    "people:preferences": _asks(Door.SIGNED_IN),
     # measurements
     "measurements:new_measurement": _asks(Action.PUBLISH),
     "measurements:edit_measurement": _asks(Action.PUBLISH),
+    "measurements:seal": _asks(Action.SEAL),
+    "measurements:open": _asks(Action.SEAL),
+    "measurements:look": _changes(Action.SEAL),
     "measurements:upload": _asks(Action.PUBLISH),
     "measurements:release": {"GET": Rule(Action.VIEW, LEADS_DRAFT), "POST": Rule(Action.PUBLISH)},
     "measurements:publish": _changes(Action.PUBLISH),
     "measurements:discard": _changes(Action.PUBLISH),
+    "measurements:withdraw": _asks(Action.PUBLISH),
     "measurements:download": _reads(Action.VIEW, LEADS_DRAFT),
     # theories
     "theories:new_theory": _asks(Action.SUBMIT),
@@ -115,6 +135,12 @@ RULES: dict[str, Methods] = {
     "theories:submit": _changes(Action.SUBMIT, OWN_DRAFT),
     "theories:discard": _changes(Action.SUBMIT, OWN_DRAFT),
     "theories:download": _reads(Action.VIEW, OWN_DRAFT),
+    "theories:register": _reads(Action.VIEW),
+    "theories:register_csv": _reads(Action.VIEW),
+    "theories:new_batch": _asks(Action.SUBMIT),
+    "theories:batch": _reads(Action.VIEW, OWN_DRAFT),
+    "theories:submit_batch": _changes(Action.SUBMIT, OWN_DRAFT),
+    "theories:discard_batch": _changes(Action.SUBMIT, OWN_DRAFT),
     # assessments
     "assessments:new": _asks(Action.ASSESS),
     "assessments:coordinates": _reads(Action.ASSESS),
@@ -143,4 +169,10 @@ RULES: dict[str, Methods] = {
     "reports:shared_json": _reads(Door.LINK),
     "reports:shared_csv": _reads(Door.LINK),
     "reports:shared_features": _reads(Door.LINK),
+    # talk
+    "talk:comment_theory": _changes(Action.COMMENT),
+    "talk:comment_assessment": _changes(Action.COMMENT),
+    "talk:remove": _changes(Action.COMMENT, AUTHOR_OR_LEAD),
+    "talk:log": _reads(Action.READ_LOG),
+    "talk:log_csv": _reads(Action.READ_LOG),
 }

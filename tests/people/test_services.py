@@ -1,4 +1,6 @@
-"""Who is let in and out of a collaboration, and by which rules."""
+"""How collaborations start, change their words, and get people by command."""
+
+from functools import partial
 
 import pytest
 from allauth.core import context
@@ -8,16 +10,36 @@ from pytest_django import DjangoCaptureOnCommitCallbacks
 
 from core.errors import UserError
 from core.people import services
-from core.people.models import Collaboration, Membership, Role, User
-
-
-def membership(user: User, collaboration: Collaboration) -> Membership:
-    return Membership.objects.get(user=user, collaboration=collaboration)
+from core.people.models import Collaboration, LogEntry, Membership, Role, User, UserManager
+from tests.meanwhile import meanwhile
+from tests.people.conftest import membership
 
 
 def test_the_creator_of_a_collaboration_leads_it(stranger: User) -> None:
     collaboration = services.create_collaboration(user=stranger, name="Wave tank", about="A lab class.")
-    assert membership(stranger, collaboration).role == Role.LEAD
+    started = membership(stranger, collaboration)
+    assert (started.role, started.came_by) == (Role.LEAD, Membership.CameBy.START)
+
+
+def test_starting_and_editing_are_in_the_log(stranger: User) -> None:
+    collaboration = services.create_collaboration(user=stranger, name="Wave tank")
+    services.edit_collaboration(
+        user=stranger, collaboration=collaboration, name="Wave tank 2", about="", seen=0
+    )
+    entries = LogEntry.objects.filter(collaboration=collaboration, who=stranger).order_by("pk")
+    assert [(entry.deed, entry.about) for entry in entries] == [
+        ("started", "Wave tank"),
+        ("edited_collaboration", "Wave tank 2"),
+    ]
+
+
+def test_words_that_were_changed_meanwhile_are_not_replaced(collaboration: Collaboration, lead: User) -> None:
+    edit = partial(services.edit_collaboration, user=lead, collaboration=collaboration, about="", seen=0)
+    edit(name="First")
+    with pytest.raises(UserError, match="omebody else has changed this"):
+        edit(name="Second")
+    assert Collaboration.objects.get().name == "First"
+    assert LogEntry.objects.count() == 1
 
 
 def test_a_known_address_is_added_without_regard_to_case(
@@ -47,6 +69,12 @@ def test_an_unknown_address_gets_the_link_that_sets_a_password(
     assert "/accounts/password/reset/key/" in sent.body
 
 
+def test_who_is_added_is_in_the_log_without_an_address(collaboration: Collaboration, lead: User) -> None:
+    services.add_member(collaboration=collaboration, email="new@merrow.example", role=Role.MEMBER, by=lead)
+    entry = LogEntry.objects.get()
+    assert (entry.deed, entry.who, entry.about) == ("added_person", lead, "new, as member")
+
+
 def test_someone_who_is_here_is_not_added_twice(collaboration: Collaboration, member: User) -> None:
     with pytest.raises(UserError, match="is here already"):
         services.add_member(collaboration=collaboration, email=member.email, role=Role.LEAD)
@@ -60,26 +88,17 @@ def test_an_odd_address_or_role_is_refused(collaboration: Collaboration, email: 
     assert collaboration.memberships.count() == 2
 
 
-def test_a_member_can_be_removed(collaboration: Collaboration, member: User) -> None:
-    services.remove_member(membership(member, collaboration))
-    assert not Membership.objects.filter(user=member).exists()
-
-
-def test_the_last_lead_cannot_be_removed(collaboration: Collaboration, lead: User) -> None:
-    with pytest.raises(UserError, match="last lead"):
-        services.remove_member(membership(lead, collaboration))
-
-
-def test_the_last_lead_cannot_become_a_member(collaboration: Collaboration, lead: User) -> None:
-    with pytest.raises(UserError, match="last lead"):
-        services.change_role(membership(lead, collaboration), Role.MEMBER)
-    assert membership(lead, collaboration).role == Role.LEAD
-
-
-def test_one_of_two_leads_can_go(collaboration: Collaboration, lead: User, member: User) -> None:
-    services.change_role(membership(member, collaboration), Role.LEAD)
-    services.remove_member(membership(lead, collaboration))
-    assert list(collaboration.memberships.values_list("user", flat=True)) == [member.pk]
+@pytest.mark.django_db(transaction=True)
+def test_two_collaborations_add_the_same_new_address_at_the_same_moment(
+    collaboration: Collaboration, stranger: User, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    other = services.create_collaboration(user=stranger, name="Wave tank")
+    add = partial(services.add_member, email="new@merrow.example", role=Role.MEMBER)
+    with meanwhile(monkeypatch, UserManager, "create_user", partial(add, collaboration=other)) as refusals:
+        add(collaboration=collaboration)
+    assert refusals == []
+    user = User.objects.get(email="new@merrow.example")
+    assert set(user.collaborations.all()) == {collaboration, other}
 
 
 def test_someone_without_a_name_is_never_shown_by_a_whole_address(db: None) -> None:

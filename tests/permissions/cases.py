@@ -5,8 +5,13 @@ One line an address. `Key` gets the world and the name of who asks ("lead", "mem
 """
 
 from collections.abc import Callable
+from datetime import timedelta
 from typing import Any
 
+from django.utils import timezone
+
+from core.people.models import Invitation
+from core.people.services.invite import hashed
 from tests.permissions.world import World
 
 Key = Callable[[World, str], tuple[Any, ...]]
@@ -74,6 +79,22 @@ def comment(world: World, who: str) -> tuple[Any, ...]:
     return (made.pk,)
 
 
+INVITED = "a-made-up-secret"
+
+
+def invitation(world: World) -> Invitation:
+    """An open invitation, whose link ends in INVITED."""
+    made, _ = Invitation.objects.get_or_create(
+        token_sha256=hashed(INVITED),
+        defaults={
+            "collaboration": world.collaboration,
+            "created_by": world.people["lead"],
+            "expires_at": timezone.now() + timedelta(days=1),
+        },
+    )
+    return made
+
+
 def with_(key: Key, *rest: Any) -> Key:
     """More arguments behind."""
     return lambda world, who: (*key(world, who), *rest)
@@ -82,13 +103,26 @@ def with_(key: Key, *rest: Any) -> Key:
 KEYS: dict[str, Key] = {
     "overviews:home": nothing,
     "overviews:collaboration": collaboration,
+    "overviews:comparison": collaboration,
+    "overviews:comparison_csv": collaboration,
+    "overviews:separation": collaboration,
     "overviews:measurement": measurement,
+    "overviews:pairs": measurement,
+    "overviews:history_chart": with_(measurement, "history", "csv"),
     "overviews:theory": theory,
     "people:new_collaboration": nothing,
     "people:edit_collaboration": collaboration,
     "people:people": collaboration,
     "people:change_role": membership_of_member,
     "people:remove": membership_of_member,
+    "people:hand_over": membership_of_member,
+    "people:leave": collaboration,
+    "people:new_invitation": collaboration,
+    "people:mail_invitation": collaboration,
+    "people:revoke_invitation": lambda world, who: (invitation(world).pk,),
+    "people:invitation": lambda world, who: (invitation(world) and INVITED,),
+    "people:permissions": nothing,
+    "people:preferences": nothing,
     "measurements:new_measurement": collaboration,
     "measurements:edit_measurement": measurement,
     "measurements:upload": measurement,

@@ -13,7 +13,7 @@ from core.people.models import User
 
 
 class Command(BaseCommand):
-    """Makes a user; all others come by being added to a collaboration."""
+    """Makes a user; all others come by an invitation to a collaboration."""
 
     help = "Make a user who can sign in. The password is asked for, or read as one line from standard input."
 

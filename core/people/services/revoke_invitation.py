@@ -1,0 +1,25 @@
+"""Close an invitation."""
+
+from django.db import transaction
+from django.utils import timezone
+
+from core.people.log import Deed, record
+from core.people.models import Invitation, User
+from core.people.services.invite_by_mail import shortened
+from core.people.services.rules import people_page
+
+
+@transaction.atomic
+def revoke_invitation(*, by: User, invitation: Invitation) -> None:
+    """From now on nobody joins by it; revoking it again changes nothing."""
+    still_open = Invitation.objects.filter(pk=invitation.pk, revoked_at=None)
+    if not still_open.update(revoked_at=timezone.now()):
+        return
+    whom = shortened(invitation.email) if invitation.email else invitation.label or "a link"
+    record(
+        Deed.REVOKED_INVITATION,
+        who=by,
+        collaboration=invitation.collaboration,
+        about=f"{whom}, as {invitation.role}",
+        url=people_page(invitation.collaboration),
+    )
