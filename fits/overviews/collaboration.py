@@ -6,17 +6,12 @@ from dataclasses import dataclass
 from django.db.models import Count, Q
 
 from core.measurements.models import Measurement
-from core.people.models import Collaboration, Membership
+from core.people.access import in_overview
+from core.people.models import Collaboration, Membership, User
 from core.theories.models import Curve, Theory
-from fits.overviews.standings import (
-    NewestCurve,
-    ReleaseSummary,
-    Standing,
-    by_theory,
-    newest_curves,
-    releases_of,
-    standings_in,
-)
+from fits.overviews.releases import ReleaseSummary, newest_releases
+from fits.overviews.reports_seen import reports_seen
+from fits.overviews.standings import NewestCurve, Standing, by_theory, newest_curves, standings_in
 from fits.reports.models import Report
 
 MOST_REPORTS = 20
@@ -24,10 +19,15 @@ MOST_REPORTS = 20
 
 @dataclass(frozen=True)
 class MeasurementRow:
-    """A measurement and its newest published release."""
+    """A measurement and the newest release that the reader sees and that is not withdrawn."""
 
     measurement: Measurement
     newest: ReleaseSummary | None
+
+    @property
+    def is_hidden(self) -> bool:
+        """Whether nothing is said of its releases: it is sealed, and the reader sees none."""
+        return self.measurement.is_sealed and self.newest is None
 
 
 @dataclass(frozen=True)
@@ -69,19 +69,16 @@ class CollaborationPage:
         return tuple(row for row in self.measurements if row.newest)
 
 
-def collaboration_page(collaboration: Collaboration) -> CollaborationPage:
-    """Gather the page in seven queries."""
+def collaboration_page(collaboration: Collaboration, reader: User) -> CollaborationPage:
+    """Gather the page, as this reader sees it, in seven queries."""
     measurements = list(Measurement.objects.filter(collaboration=collaboration))
-    releases = releases_of([measurement.pk for measurement in measurements])
-    rows = tuple(
-        MeasurementRow(measurement, next(iter(releases.get(measurement.pk, [])), None))
-        for measurement in measurements
-    )
-    reports = Report.objects.filter(collaboration=collaboration).select_related("author")
+    newest = newest_releases([measurement.pk for measurement in measurements], reader)
+    rows = tuple(MeasurementRow(measurement, newest.get(measurement.pk)) for measurement in measurements)
+    reports = reports_seen(reader, [collaboration.pk]).select_related("author")
     people = Membership.objects.filter(collaboration=collaboration).select_related("user")
     return CollaborationPage(
         measurements=rows,
-        theories=_theories(collaboration, [row for row in rows if row.newest]),
+        theories=_theories(collaboration, reader, [row for row in rows if row.newest]),
         reports=tuple(
             reports.only("title", "created_at", "collaboration", "author__name", "author__email")[
                 :MOST_REPORTS
@@ -91,7 +88,9 @@ def collaboration_page(collaboration: Collaboration) -> CollaborationPage:
     )
 
 
-def _theories(collaboration: Collaboration, released: Sequence[MeasurementRow]) -> tuple[TheoryRow, ...]:
+def _theories(
+    collaboration: Collaboration, reader: User, released: Sequence[MeasurementRow]
+) -> tuple[TheoryRow, ...]:
     assessments = {
         row.measurement.pk: row.newest.assessment for row in released if row.newest and row.newest.assessment
     }
@@ -99,9 +98,9 @@ def _theories(collaboration: Collaboration, released: Sequence[MeasurementRow]) 
     judged = {
         measurement: by_theory(found.get(assessment, [])) for measurement, assessment in assessments.items()
     }
-    newest = newest_curves([row.measurement.pk for row in released])
+    newest = newest_curves([row.measurement.pk for row in released], reader)
     submitted = Count("curves", filter=Q(curves__state=Curve.State.SUBMITTED))
-    theories = Theory.objects.filter(collaboration=collaboration).annotate(submitted=submitted)
+    theories = in_overview(Theory.objects.filter(collaboration=collaboration), reader)
     return tuple(
         TheoryRow(
             theory=theory,
@@ -114,5 +113,5 @@ def _theories(collaboration: Collaboration, released: Sequence[MeasurementRow]) 
                 for row in released
             ),
         )
-        for theory in theories
+        for theory in theories.annotate(submitted=submitted)
     )

@@ -19,10 +19,10 @@ class CollaborationNews:
 
 
 def home_page(reader: User, since: datetime | None) -> list[CollaborationNews]:
-    """The news of each of the reader's collaborations, those with the newest news first. Six queries."""
+    """The news of each of the reader's collaborations, those with the newest news first. Seven queries."""
     memberships = list(Membership.objects.filter(user=reader).select_related("collaboration"))
-    news = digests([membership.collaboration_id for membership in memberships], since)
-    steps = next_steps(memberships)
+    news = digests(reader, [membership.collaboration_id for membership in memberships], since)
+    steps = next_steps(reader, memberships)
     found = [
         CollaborationNews(
             collaboration=membership.collaboration,

@@ -1,18 +1,22 @@
-"""What happened in someone's collaborations: releases published, assessments done, reports written."""
+"""What happened in someone's collaborations, as far as they see it: releases published or withdrawn, sealed
+measurements opened, assessments done, reports written."""
 
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from datetime import datetime
 from typing import Any, TypeVar
 
-from django.db.models import F, Model, QuerySet, Window
-from django.db.models.functions import RowNumber
+from django.db.models import F, Model, Q, QuerySet, Window
+from django.db.models.functions import Coalesce, RowNumber
 from django.urls import reverse
+from django.utils import timezone
 
-from core.measurements.models import Release
+from core.measurements.models import Measurement, Release
+from core.people.access import in_overview
+from core.people.models import User
 from fits.assessments.models import Assessment
+from fits.overviews.reports_seen import reports_seen
 from fits.overviews.standings import Standing, standings_in
-from fits.reports.models import Report
 
 # Of each kind so many a collaboration, newest first; what is older stands on the pages themselves.
 MOST = 20
@@ -60,11 +64,12 @@ class Digest:
     earlier: tuple[News, ...]
 
 
-def digests(collaborations: Iterable[int], since: datetime | None) -> dict[int, Digest]:
-    """The digest of each collaboration; everything is new to someone who never looked. Four queries."""
+def digests(reader: User, collaborations: Iterable[int], since: datetime | None) -> dict[int, Digest]:
+    """The digest of each collaboration; everything is new to someone who never looked. Six queries."""
     keys = list(collaborations)
     found: dict[int, list[News]] = {key: [] for key in keys}
-    for kind in (_releases(keys), _assessments(keys), _reports(keys)):
+    kinds = (_releases, _withdrawals, _openings, _assessments, _reports)
+    for kind in (found_of(reader, keys) for found_of in kinds):
         for collaboration, news in kind:
             found[collaboration].append(news)
     return {key: _digest(news, since) for key, news in found.items()}
@@ -76,10 +81,11 @@ def _digest(news: list[News], since: datetime | None) -> Digest:
     return Digest(new=new, earlier=tuple(ordered[len(new) :][:MOST_EARLIER]))
 
 
-def _releases(collaborations: list[int]) -> list[tuple[int, News]]:
+def _releases(reader: User, collaborations: list[int]) -> list[tuple[int, News]]:
     path = "measurement__collaboration"
     published = Release.objects.filter(state=Release.State.PUBLISHED, **{f"{path}__in": collaborations})
-    rows = _newest(published, path, "published_at", "number", "points", "measurement", "measurement__name")
+    seen = in_overview(published, reader)
+    rows = _newest(seen, path, "published_at", "number", "points", "measurement", "measurement__name")
     return [
         (
             row[path],
@@ -96,13 +102,65 @@ def _releases(collaborations: list[int]) -> list[tuple[int, News]]:
     ]
 
 
-def _assessments(collaborations: list[int]) -> list[tuple[int, News]]:
+def _withdrawals(reader: User, collaborations: list[int]) -> list[tuple[int, News]]:
+    path = "measurement__collaboration"
+    withdrawn = Release.objects.filter(state=Release.State.WITHDRAWN, **{f"{path}__in": collaborations})
+    seen = in_overview(withdrawn, reader)
+    rows = _newest(
+        seen, path, "withdrawn_at", "number", "withdrawal_reason", "measurement", "measurement__name"
+    )
+    return [
+        (
+            row[path],
+            News(
+                at=row["withdrawn_at"],
+                what=f"Release {row['number']} withdrawn",
+                url=reverse("measurements:release", args=[row["pk"]]),
+                where=row["measurement__name"],
+                where_url=reverse("overviews:measurement", args=[row["measurement"]]),
+                detail=row["withdrawal_reason"],
+            ),
+        )
+        for row in rows
+    ]
+
+
+def _openings(reader: User, collaborations: list[int]) -> list[tuple[int, News]]:
+    """Sealed measurements that opened: by a lead's word, or at their time, which needs nobody."""
+    is_open = Q(opened_at__isnull=False) | Q(opens_at__lte=timezone.now())
+    opened = Measurement.objects.filter(is_open, sealed_at__isnull=False, collaboration__in=collaborations)
+    seen = in_overview(opened.annotate(opening=Coalesce("opened_at", "opens_at")), reader)
+    return [
+        (
+            row["collaboration"],
+            News(
+                at=row["opening"],
+                what=f"{row['name']} opened",
+                url=reverse("overviews:measurement", args=[row["pk"]]),
+                where="",
+                where_url="",
+                detail="it was sealed: its data and verdicts are shown now",
+            ),
+        )
+        for row in _newest(seen, "collaboration", "opening", "name")
+    ]
+
+
+def _assessments(reader: User, collaborations: list[int]) -> list[tuple[int, News]]:
     path = "release__measurement__collaboration"
     done = Assessment.objects.filter(
-        status=Assessment.Status.DONE, ended_at__isnull=False, **{f"{path}__in": collaborations}
+        status=Assessment.Status.DONE,
+        ended_at__isnull=False,
+        release__state=Release.State.PUBLISHED,
+        **{f"{path}__in": collaborations},
     )
     rows = _newest(
-        done, path, "ended_at", "release__number", "release__measurement", "release__measurement__name"
+        in_overview(done, reader),
+        path,
+        "ended_at",
+        "release__number",
+        "release__measurement",
+        "release__measurement__name",
     )
     outcomes = standings_in([row["pk"] for row in rows])
     return [
@@ -122,8 +180,8 @@ def _assessments(collaborations: list[int]) -> list[tuple[int, News]]:
     ]
 
 
-def _reports(collaborations: list[int]) -> list[tuple[int, News]]:
-    written = Report.objects.filter(collaboration__in=collaborations)
+def _reports(reader: User, collaborations: list[int]) -> list[tuple[int, News]]:
+    written = reports_seen(reader, collaborations)
     rows = _newest(written, "collaboration", "created_at", "title", "author__name", "author__email")
     return [
         (

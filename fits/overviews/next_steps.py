@@ -3,12 +3,13 @@
 from collections.abc import Iterable
 from dataclasses import dataclass
 
-from django.db.models import Model, OuterRef, QuerySet, Subquery
+from django.db.models import Model, OuterRef, Q, QuerySet, Subquery
 from django.urls import reverse
+from django.utils import timezone
 
 from core.measurements.models import Measurement, Release
-from core.people.access import PERMITTED, Action
-from core.people.models import Membership, Role
+from core.people.access import PERMITTED, Action, in_overview
+from core.people.models import Membership, Role, User
 from core.theories.models import Curve, Theory
 from fits.assessments.models import Assessment
 
@@ -24,23 +25,27 @@ class NextStep:
 
 @dataclass(frozen=True)
 class Found:
-    """The first row of each kind that a collaboration has, by key; None where it has none."""
+    """The first row of each kind that the reader sees in a collaboration, by key; None where there is none.
+
+    sealed  a measurement of whose data the reader is told nothing; curves for it are asked for all the same
+    """
 
     measurement: int | None
+    sealed: int | None
     release: int | None
     theory: int | None
     curve: int | None
     assessment: int | None
 
 
-def next_steps(memberships: Iterable[Membership]) -> dict[int, NextStep]:
+def next_steps(reader: User, memberships: Iterable[Membership]) -> dict[int, NextStep]:
     """The next step of each of these collaborations that has no done assessment yet. One query."""
     roles = {membership.collaboration_id: Role(membership.role) for membership in memberships}
-    steps = {key: _step(key, found, roles[key]) for key, found in _found(roles).items()}
+    steps = {key: _step(key, found, roles[key]) for key, found in _found(reader, roles).items()}
     return {key: step for key, step in steps.items() if step is not None}
 
 
-def _found(collaborations: Iterable[int]) -> dict[int, Found]:
+def _found(reader: User, collaborations: Iterable[int]) -> dict[int, Found]:
     rows = (
         Membership.objects.filter(collaboration__in=collaborations)
         .order_by()
@@ -48,13 +53,23 @@ def _found(collaborations: Iterable[int]) -> dict[int, Found]:
         .distinct()
         .annotate(
             measurement=_first(Measurement.objects.all(), "collaboration"),
-            release=_first(
-                Release.objects.filter(state=Release.State.PUBLISHED), "measurement__collaboration"
+            sealed=_first(
+                Measurement.objects.filter(
+                    Q(opens_at=None) | Q(opens_at__gt=timezone.now()), sealed_at__isnull=False, opened_at=None
+                ),
+                "collaboration",
             ),
-            theory=_first(Theory.objects.all(), "collaboration"),
-            curve=_first(Curve.objects.filter(state=Curve.State.SUBMITTED), "theory__collaboration"),
+            release=_first(
+                in_overview(Release.objects.filter(state=Release.State.PUBLISHED), reader),
+                "measurement__collaboration",
+            ),
+            theory=_first(in_overview(Theory.objects.all(), reader), "collaboration"),
+            curve=_first(
+                in_overview(Curve.objects.filter(state=Curve.State.SUBMITTED), reader),
+                "theory__collaboration",
+            ),
             assessment=_first(
-                Assessment.objects.filter(status=Assessment.Status.DONE),
+                in_overview(Assessment.objects.filter(status=Assessment.Status.DONE), reader),
                 "release__measurement__collaboration",
             ),
         )
@@ -62,6 +77,7 @@ def _found(collaborations: Iterable[int]) -> dict[int, Found]:
     return {
         row["collaboration"]: Found(
             measurement=row["measurement"],
+            sealed=row["sealed"],
             release=row["release"],
             theory=row["theory"],
             curve=row["curve"],
@@ -82,7 +98,7 @@ def _step(collaboration: int, found: Found, role: Role) -> NextStep | None:
     if not found.measurement:
         url = reverse("measurements:new_measurement", args=[collaboration])
         return _offer(role, Action.PUBLISH, "There is no measurement yet.", "Add the first measurement", url)
-    if not found.release:
+    if not found.release and not found.sealed:
         url = reverse("measurements:upload", args=[found.measurement])
         return _offer(role, Action.PUBLISH, "No release is published yet.", "Upload the first release", url)
     if not found.theory:
@@ -91,6 +107,8 @@ def _step(collaboration: int, found: Found, role: Role) -> NextStep | None:
     if not found.curve:
         url = reverse("theories:new_curve", args=[found.theory])
         return _offer(role, Action.SUBMIT, "No curve is submitted yet.", "Submit the first curve", url)
+    if not found.release:
+        return None
     url = reverse("assessments:new", args=[found.release])
     return _offer(role, Action.ASSESS, "Nothing is assessed yet.", "Assess the curves", url)
 

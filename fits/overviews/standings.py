@@ -4,17 +4,20 @@ Each function makes as many queries as it says, however many rows there are, and
 a covariance, a result or a detail.
 """
 
+from collections import Counter
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
-from datetime import datetime
 from typing import Any
 
 from django.db.models import Count, F, Max, OuterRef, QuerySet, Subquery
 
-from core.measurements.models import Release
+from core.people.access import in_overview, seen_by
+from core.people.models import User
 from core.theories.models import Curve
 from fits.assessments.models import Assessment, Verdict
+from fits.engine.ball import is_above
 from fits.engine.scales import TABLE_DRAWS
+from fits.engine.settings import DEFAULT_DRAWS
 from fits.reports import numbers
 
 LEVEL = 0.95
@@ -23,27 +26,15 @@ SMALLEST_SCALE_P_VALUE = numbers.smallest_p_value(TABLE_DRAWS)
 
 
 @dataclass(frozen=True)
-class ReleaseSummary:
-    """A published release without its table. `assessment` is the newest done one, if any."""
-
-    pk: int
-    measurement: int
-    number: int
-    published_at: datetime
-    points: int
-    note: str
-    file_name: str
-    assessment: int | None
-
-
-@dataclass(frozen=True)
 class Standing:
-    """What an assessment says of one curve, and where it says so."""
+    """What an assessment says of one curve, and where it says so. `radius` is that at 95 %, None where it is not
+    known."""
 
     measurement: int
     measurement_name: str
     release: int
     release_number: int
+    is_withdrawn: bool
     assessment: int
     theory: int
     theory_name: str
@@ -52,6 +43,8 @@ class Standing:
     rank: int
     of: int
     distance: float
+    radius: float | None
+    entry_level: float
     p_value: float
     scale_p_value: float
     is_inside: bool
@@ -68,6 +61,15 @@ class Standing:
         if self.is_off:
             return "inside, but off"
         return "inside" if self.is_inside else "outside"
+
+    def is_inside_at(self, level: float) -> bool:
+        """Whether the exact ball set of this level holds the curve."""
+        return self.is_inside if level == LEVEL else is_above(self.p_value, level)
+
+    @property
+    def share_of_radius(self) -> float | None:
+        """d/s_95; None without a radius, and where the ball is empty."""
+        return self.distance / self.radius if self.radius else None
 
     @property
     def distance_written(self) -> str:
@@ -91,61 +93,43 @@ class NewestCurve:
     version: int
 
 
-@dataclass(frozen=True)
-class History:
-    """A theory over the releases of a measurement, oldest first; None where it was not judged."""
-
-    theory: int
-    theory_name: str
-    standings: tuple[Standing | None, ...]
-
-
-def releases_of(measurements: Iterable[int]) -> dict[int, list[ReleaseSummary]]:
-    """The published releases of each measurement, newest first. One query."""
-    done = Assessment.objects.filter(release=OuterRef("pk"), status=Assessment.Status.DONE)
-    newest = done.order_by(F("ended_at").desc(nulls_last=True), "-pk").values("pk")[:1]
-    rows: Iterable[Mapping[str, Any]] = (
-        Release.objects.filter(measurement__in=measurements, state=Release.State.PUBLISHED)
-        .annotate(assessment=Subquery(newest))
-        .order_by("measurement", "-number")
-        .values("pk", "measurement", "number", "published_at", "points", "note", "file_name", "assessment")
-    )
-    found: dict[int, list[ReleaseSummary]] = {}
-    for row in rows:
-        found.setdefault(row["measurement"], []).append(ReleaseSummary(**row))
-    return found
-
-
 def standings_in(assessments: Iterable[int]) -> dict[int, list[Standing]]:
-    """All standings of each assessment, by rank. One query."""
-    found: dict[int, list[Standing]] = {}
+    """All standings of each assessment that the reader was found to see, by rank. One query."""
     verdicts = Verdict.objects.filter(assessment__in=assessments).order_by("assessment", "rank")
-    for standing in _standings(verdicts):
-        found.setdefault(standing.assessment, []).append(standing)
+    rows = list(_fields_of(verdicts))
+    judged = Counter(row["assessment"] for row in rows)
+    found: dict[int, list[Standing]] = {}
+    for row in rows:
+        found.setdefault(row["assessment"], []).append(_standing(row, judged[row["assessment"]]))
     return found
 
 
-def standings_of_theory(theory: int) -> list[Standing]:
+def standings_of_theory(theory: int, reader: User) -> list[Standing]:
     """Where a theory was judged: per release by the newest done assessment that judged it. One query."""
-    verdicts = Verdict.objects.filter(
-        curve__theory=theory, assessment__status=Assessment.Status.DONE
-    ).order_by(
-        "assessment__release__measurement__name",
-        "-assessment__release__number",
-        F("assessment__ended_at").desc(nulls_last=True),
-        "-assessment",
-        "-curve__version",
+    judged = Verdict.objects.filter(curve__theory=theory, assessment__status=Assessment.Status.DONE)
+    together = Verdict.objects.filter(assessment=OuterRef("assessment")).order_by().values("assessment")
+    verdicts = (
+        seen_by(judged, reader)
+        .annotate(of=Subquery(together.annotate(count=Count("pk")).values("count")))
+        .order_by(
+            "assessment__release__measurement__name",
+            "-assessment__release__number",
+            F("assessment__ended_at").desc(nulls_last=True),
+            "-assessment",
+            "-curve__version",
+        )
     )
     newest: dict[int, Standing] = {}
-    for standing in _standings(verdicts):
-        newest.setdefault(standing.release, standing)
+    for row in _fields_of(verdicts, "of"):
+        newest.setdefault(row["assessment__release"], _standing(row, row["of"]))
     return list(newest.values())
 
 
-def newest_curves(measurements: Iterable[int]) -> dict[tuple[int, int], NewestCurve]:
+def newest_curves(measurements: Iterable[int], reader: User) -> dict[tuple[int, int], NewestCurve]:
     """The newest submitted curve by theory and measurement. One query."""
+    submitted = Curve.objects.filter(measurement__in=measurements, state=Curve.State.SUBMITTED)
     rows = (
-        Curve.objects.filter(measurement__in=measurements, state=Curve.State.SUBMITTED)
+        in_overview(submitted, reader)
         .order_by("theory__name")
         .values("theory", "theory__name", "measurement")
         .annotate(version=Max("version"))
@@ -168,33 +152,14 @@ def by_theory(standings: Iterable[Standing]) -> dict[int, Standing]:
     return found
 
 
-def histories(releases: Iterable[ReleaseSummary], standings: dict[int, list[Standing]]) -> list[History]:
-    """Each judged theory over the releases, oldest first; ordered as on the newest release that judged it."""
-    columns = [
-        by_theory(standings.get(release.assessment or 0, []))
-        for release in sorted(releases, key=lambda release: release.number)
-    ]
-    names = {key: standing.theory_name for column in columns for key, standing in column.items()}
-
-    def place(theory: int) -> tuple[int, int]:
-        judged = [
-            (age, column[theory].rank) for age, column in enumerate(reversed(columns)) if theory in column
-        ]
-        return judged[0]
-
-    return [
-        History(theory, names[theory], tuple(column.get(theory) for column in columns))
-        for theory in sorted(names, key=place)
-    ]
-
-
-def _standings(verdicts: QuerySet[Verdict]) -> list[Standing]:
-    together = Verdict.objects.filter(assessment=OuterRef("assessment")).order_by().values("assessment")
-    rows = verdicts.annotate(of=Subquery(together.annotate(count=Count("pk")).values("count"))).values(
+def _fields_of(verdicts: QuerySet[Verdict], *more: str) -> Iterable[Mapping[str, Any]]:
+    rows: Iterable[Mapping[str, Any]] = verdicts.values(
         "assessment",
-        "assessment__settings",
+        "assessment__settings__draws",
+        "assessment__radius",
         "assessment__release",
         "assessment__release__number",
+        "assessment__release__state",
         "assessment__release__measurement",
         "assessment__release__measurement__name",
         "curve",
@@ -202,32 +167,36 @@ def _standings(verdicts: QuerySet[Verdict]) -> list[Standing]:
         "curve__theory",
         "curve__theory__name",
         "rank",
-        "of",
         "distance",
+        "entry_level",
         "p_value",
         "scale_p_value",
         "inside",
+        *more,
     )
-    return [_standing(row) for row in rows]
+    return rows
 
 
-def _standing(row: Mapping[str, Any]) -> Standing:
+def _standing(row: Mapping[str, Any], judged: int) -> Standing:
     return Standing(
         measurement=row["assessment__release__measurement"],
         measurement_name=row["assessment__release__measurement__name"],
         release=row["assessment__release"],
         release_number=row["assessment__release__number"],
+        is_withdrawn=row["assessment__release__state"] == "withdrawn",
         assessment=row["assessment"],
         theory=row["curve__theory"],
         theory_name=row["curve__theory__name"],
         curve=row["curve"],
         version=row["curve__version"],
         rank=row["rank"],
-        of=row["of"],
+        of=judged,
         distance=row["distance"],
+        radius=row["assessment__radius"],
+        entry_level=row["entry_level"],
         p_value=row["p_value"],
         scale_p_value=row["scale_p_value"],
         # An assessment may have asked for other levels; its p-value answers for each.
-        is_inside=row["inside"].get(LEVEL_KEY, row["p_value"] > 1.0 - LEVEL),
-        draws=row["assessment__settings"].get("draws", 2000),
+        is_inside=row["inside"].get(LEVEL_KEY, is_above(row["p_value"], LEVEL)),
+        draws=row["assessment__settings__draws"] or DEFAULT_DRAWS,
     )

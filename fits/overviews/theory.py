@@ -2,6 +2,7 @@
 
 from dataclasses import dataclass
 
+from core.people.access import seen_by
 from core.people.models import User
 from core.theories.models import Curve, Theory
 from fits.overviews.standings import Standing, standings_of_theory
@@ -19,7 +20,7 @@ class TheoryPage:
 def theory_page(theory: Theory, reader: User) -> TheoryPage:
     """Gather the page in two queries."""
     curves = list(
-        Curve.objects.filter(theory=theory)
+        seen_by(Curve.objects.filter(theory=theory), reader)
         .select_related("measurement", "submitted_by")
         .defer("table")
         .order_by("measurement__name", "measurement", "-version", "-pk")
@@ -31,5 +32,5 @@ def theory_page(theory: Theory, reader: User) -> TheoryPage:
             for curve in curves
             if curve.state == Curve.State.DRAFT and curve.submitted_by_id == reader.pk
         ),
-        standings=tuple(standings_of_theory(theory.pk)),
+        standings=tuple(standings_of_theory(theory.pk, reader)),
     )

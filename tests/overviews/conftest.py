@@ -1,7 +1,7 @@
 """Assessments with verdicts, made without a computation."""
 
 import itertools
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, field
 from datetime import datetime, timedelta
 
@@ -9,7 +9,7 @@ import pytest
 from django.utils import timezone
 
 from core.measurements.models import Measurement, Release
-from core.people.models import Collaboration, User
+from core.people.models import Collaboration, Membership, Role, User
 from core.theories.models import Curve, Theory
 from fits.assessments.models import Assessment, Verdict
 from fits.reports.models import Report
@@ -36,6 +36,35 @@ class Maker:
             created_by=self.lead,
         )
 
+    def sealed(self) -> Measurement:
+        """Another measurement, sealed until a lead opens it."""
+        measurement = self.measurement()
+        Measurement.objects.filter(pk=measurement.pk).update(sealed_at=timezone.now())
+        measurement.refresh_from_db()
+        return measurement
+
+    def withdrawn(self, release: Release, reason: str = "A wrong clock") -> Release:
+        """The release, taken back."""
+        Release.objects.filter(pk=release.pk).update(
+            state=Release.State.WITHDRAWN,
+            withdrawn_at=timezone.now(),
+            withdrawn_by=self.lead,
+            withdrawal_reason=reason,
+        )
+        release.refresh_from_db()
+        return release
+
+    def student(self, name: str = "Stu Student") -> User:
+        """A student of the collaboration."""
+        user = User.objects.create_user(f"{next(self.counter)}@merrow.example", name=name)
+        self.joined(user, Role.STUDENT)
+        return user
+
+    def joined(self, user: User, role: Role) -> None:
+        """Let someone belong to the collaboration in this role."""
+        collaboration = self.line.theory.collaboration
+        Membership.objects.create(user=user, collaboration=collaboration, role=role)
+
     def release(
         self, measurement: Measurement, number: int | None, published_at: datetime | None = None
     ) -> Release:
@@ -55,13 +84,14 @@ class Maker:
             published_at=(published_at or timezone.now()) if number else None,
         )
 
-    def theory(self, name: str) -> Theory:
-        """Another theory of the collaboration."""
+    def theory(self, name: str, desk: User | None = None) -> Theory:
+        """Another theory of the collaboration; of a student's desk, if one is given."""
         return Theory.objects.create(
             collaboration=self.line.theory.collaboration,
             name=name,
             proposed_by="Group F (made up)",
-            submitted_by=self.line.submitted_by,
+            submitted_by=desk or self.line.submitted_by,
+            desk=desk,
         )
 
     def curve(
@@ -91,8 +121,13 @@ class Maker:
         status: str = Assessment.Status.DONE,
         ended_at: datetime | None = None,
         scale_p_value: float = 0.6,
+        radius: float | None = 0.5,
+        apart: Sequence[float] | None = None,
     ) -> Assessment:
-        """An assessment that gave these p-values, ranked in the order given."""
+        """An assessment that gave these p-values, ranked in the order given, at distances of 0.25, 0.5, …
+
+        apart  the distances of its curves from each other, pair by pair in the order given; None: not kept
+        """
         assessment = Assessment.objects.create(
             release=release,
             settings=SETTINGS,
@@ -101,6 +136,11 @@ class Maker:
             requested_by=self.lead,
             status=status,
             ended_at=ended_at or timezone.now(),
+            desk=next((curve.theory.desk for curve in p_values), None),
+            radius=radius,
+            separations=None
+            if apart is None
+            else {"curves": [curve.pk for curve in p_values], "distances": list(apart)},
         )
         assessment.curves.set(p_values)
         Verdict.objects.bulk_create(

@@ -17,11 +17,11 @@ Ago = Callable[[int], datetime]
 
 
 @pytest.fixture
-def cell(collaboration: Collaboration) -> Callable[[str], Cell]:
+def cell(collaboration: Collaboration, lead: User) -> Callable[[str], Cell]:
     """The cell of a theory on the first measurement."""
 
     def found(theory: str) -> Cell:
-        rows = {row.theory.name: row for row in collaboration_page(collaboration).theories}
+        rows = {row.theory.name: row for row in collaboration_page(collaboration, lead).theories}
         return rows[theory].cells[0]
 
     return found
@@ -126,10 +126,12 @@ def test_the_page_links_verdicts_to_their_assessment_and_names_who_is_here(
     assert "Mo Member" in page
 
 
-def test_curves_are_counted_without_drafts(collaboration: Collaboration, make: Maker, curve: Curve) -> None:
+def test_curves_are_counted_without_drafts(
+    collaboration: Collaboration, lead: User, make: Maker, curve: Curve
+) -> None:
     make.curve(curve.theory, curve.measurement, 2)
     make.curve(curve.theory, curve.measurement, None)
-    assert collaboration_page(collaboration).theories[0].curves == 2
+    assert collaboration_page(collaboration, lead).theories[0].curves == 2
 
 
 def test_an_empty_collaboration_shows_its_page(

@@ -48,7 +48,7 @@ def test_the_history_runs_from_the_oldest_release_to_the_newest(
     make.assessment(release, {curve: 0.4, rival: 0.3})
     make.release(release.measurement, 2)
     make.assessment(make.release(release.measurement, 3), {rival: 0.2, curve: 0.001})
-    first, second = measurement_page(release.measurement, with_drafts=False).histories
+    first, second = measurement_page(release.measurement, make.lead, with_drafts=False).histories
     assert [first.theory_name, second.theory_name] == ["Flat floor", "Parabolic floor"]
     assert [standing and standing.word for standing in second.standings] == ["inside", None, "outside"]
 
@@ -58,7 +58,10 @@ def test_a_theory_that_dropped_out_stays_in_the_history_after_the_others(
 ) -> None:
     make.assessment(release, {curve: 0.4, rival: 0.3})
     make.assessment(make.release(release.measurement, 2), {rival: 0.2})
-    names = [row.theory_name for row in measurement_page(release.measurement, with_drafts=False).histories]
+    names = [
+        row.theory_name
+        for row in measurement_page(release.measurement, make.lead, with_drafts=False).histories
+    ]
     assert names == ["Flat floor", "Parabolic floor"]
 
 
@@ -67,7 +70,7 @@ def test_curves_that_were_not_judged_are_named(
 ) -> None:
     make.assessment(release, {curve: 0.4})
     make.curve(curve.theory, curve.measurement, 2)
-    unjudged = measurement_page(release.measurement, with_drafts=False).unjudged
+    unjudged = measurement_page(release.measurement, make.lead, with_drafts=False).unjudged
     assert [(row.theory_name, row.version) for row in unjudged] == [("Flat floor", 1), ("Parabolic floor", 2)]
 
 

@@ -35,7 +35,7 @@ def test_curves_stand_newest_version_first(
 def test_a_theory_fares_by_release_newest_first(make: Maker, release: Release, curve: Curve) -> None:
     make.assessment(release, {curve: 0.4})
     make.assessment(make.release(release.measurement, 2), {curve: 0.01})
-    found = standings_of_theory(curve.theory_id)
+    found = standings_of_theory(curve.theory_id, make.lead)
     assert [(row.release_number, row.word) for row in found] == [(2, "outside"), (1, "inside")]
 
 
@@ -45,7 +45,7 @@ def test_the_newest_assessment_that_judged_it_counts(
     make.assessment(release, {curve: 0.4}, ended_at=ago(3))
     newer = make.assessment(release, {rival: 0.5, curve: 0.01}, ended_at=ago(2))
     make.assessment(release, {rival: 0.5}, ended_at=ago(1))
-    [standing] = standings_of_theory(curve.theory_id)
+    [standing] = standings_of_theory(curve.theory_id, make.lead)
     assert (standing.assessment, standing.rank, standing.of) == (newer.pk, 2, 2)
 
 
