@@ -189,9 +189,14 @@ CELERY_BROKER_TRANSPORT_OPTIONS = {
 }
 CELERY_RESULT_BACKEND_TRANSPORT_OPTIONS = {"visibility_timeout": 7200}
 CELERY_BEAT_SCHEDULE_FILENAME = str(HOME / "schedule")
-# Both expire, so that they do not pile up while every worker process is busy.
+# Those that come often expire, so that they do not pile up while every worker process is busy.
 CELERY_BEAT_SCHEDULE = {
     "sweep": {"task": "fits.assessments.tasks.sweep", "schedule": 30.0, "options": {"expires": 30.0}},
+    "openings": {
+        "task": "fits.assessments.tasks.note_openings",
+        "schedule": 30.0,
+        "options": {"expires": 30.0},
+    },
     "canary": {"task": "fits.assessments.tasks.canary", "schedule": 60.0, "options": {"expires": 60.0}},
     "digests": {"task": "fits.talk.tasks.send_digests", "schedule": 3600.0, "options": {"expires": 3600.0}},
 }

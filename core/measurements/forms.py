@@ -10,7 +10,9 @@ from core.measurements.models import Measurement, Release
 from core.measurements.reading.limits import MAXIMUM_HEADER_LENGTH
 from core.measurements.reading.roles import SHARED, UNUSED
 from core.measurements.said_of_errors import SENTENCES, SaidOfErrors
+from core.measurements.services.locked_draft import reading_of
 from core.measurements.stored_release import said_of
+from core.revision import RevisionForm
 
 SHARED_CHOICE = "shared"
 ROLE_CHOICES = (
@@ -55,6 +57,10 @@ class MeasurementForm(forms.ModelForm):  # type: ignore[type-arg]
             "Logarithmic: it spans the same ratio of x, as in spectra over decades; every x must be above 0. "
             "It is settled with the first release.",
         }
+
+
+class EditMeasurementForm(MeasurementForm, RevisionForm):
+    """Other words for a measurement, and which state of them its reader saw."""
 
 
 class ErrorsField(forms.ChoiceField):
@@ -159,11 +165,14 @@ class UploadForm(SaidForm):
 
 
 class ColumnsForm(SaidForm):
-    """What each column of a draft is, and where its errors come from."""
+    """What each column of a draft is, and where its errors come from. `seen`: the reading that its reader saw."""
+
+    seen = forms.CharField(required=False, widget=forms.HiddenInput)
 
     def __init__(self, release: Release, *args: Any, **kwargs: Any) -> None:
         super().__init__(*args, **kwargs)
         self.release = release
+        self.fields["seen"].initial = reading_of(release)
         has_covariance = release.variances is not None
         self.fields["errors_from"] = errors_field(has_covariance)
         self.fields["errors_from"].initial = said_of(release).value

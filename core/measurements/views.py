@@ -9,15 +9,18 @@ from django.views.decorators.http import require_http_methods, require_POST, req
 from core.errors import UserError
 from core.measurements import services
 from core.measurements.export import csv_lines
-from core.measurements.forms import ColumnsForm, MeasurementForm, UploadForm
+from core.measurements.forms import ColumnsForm, EditMeasurementForm, MeasurementForm, UploadForm
 from core.measurements.models import Measurement, Release
 from core.measurements.preview_figure import plotly_json
 from core.measurements.release_page import release_page
+from core.measurements.seal_page import seal_of
+from core.measurements.services.locked_draft import reading_of
 from core.measurements.stored_release import table_of
 from core.people.access import Action, load, may, require
 from core.people.forms import explain
 from core.people.models import Collaboration
 from core.people.signed_in import SignedInRequest
+from core.revision import CHANGED_MEANWHILE
 
 
 @login_required
@@ -45,13 +48,18 @@ def edit_measurement(request: SignedInRequest, pk: int) -> HttpResponse:
     """Change a measurement's words."""
     measurement = _measurement(request, pk)
     kept = {name: getattr(measurement, name) for name in MeasurementForm.Meta.fields}
-    form = MeasurementForm(request.POST or None, initial=kept)
+    form = EditMeasurementForm(request.POST or None, initial=kept | {"revision": measurement.revision})
     if form.is_valid():
+        words = dict(form.cleaned_data)
         try:
-            services.edit_measurement(measurement=measurement, **form.cleaned_data)
+            services.edit_measurement(
+                user=request.user, measurement=measurement, seen=words.pop("revision"), **words
+            )
         except UserError as error:
-            explain(form, error, "axis" if error.code == "axis-settled" else "name")
+            explain(form, error, {"axis-settled": "axis", "name-taken": "name"}.get(error.code))
             measurement.refresh_from_db()
+            if error.code == CHANGED_MEANWHILE:
+                form.show_what_stands_now(measurement)
         else:
             return redirect(measurement)
     context = {"form": form, "collaboration": measurement.collaboration, "measurement": measurement}
@@ -90,6 +98,7 @@ def upload(request: SignedInRequest, pk: int) -> HttpResponse:
         "fault": fault,
         "measurement": measurement,
         "collaboration": measurement.collaboration,
+        "seal": seal_of(measurement, request.user),
     }
     return render(request, "measurements/upload.html", context, status=400 if fault or form.errors else 200)
 
@@ -99,15 +108,26 @@ def upload(request: SignedInRequest, pk: int) -> HttpResponse:
 def release(request: SignedInRequest, pk: int) -> HttpResponse:
     """A draft to check and map, or a published release to read. Posting maps a draft's columns."""
     row = _release(request, pk, Action.PUBLISH if request.method == "POST" else Action.VIEW)
-    if row.state == Release.State.PUBLISHED:
+    if row.state != Release.State.DRAFT:
         return redirect(row) if request.method == "POST" else _show(request, row, "measurements/release.html")
     form = ColumnsForm(row, request.POST or None)
     fault = None
     if form.is_valid():
         try:
-            services.map_columns(row, form.roles, said=form.said, calibration=form.calibration)
+            services.map_columns(
+                row,
+                form.roles,
+                user=request.user,
+                said=form.said,
+                calibration=form.calibration,
+                seen=form.cleaned_data["seen"] or None,
+            )
         except UserError as error:
             fault = error
+            if error.code == CHANGED_MEANWHILE:
+                # As it is read now, in the form as in all else.
+                row = _release(request, pk, Action.PUBLISH)
+                form = ColumnsForm(row)
         else:
             return redirect(row)
     return _show(request, row, "measurements/draft.html", form=form, fault=fault)
@@ -117,7 +137,9 @@ def release(request: SignedInRequest, pk: int) -> HttpResponse:
 @require_POST
 def publish(request: SignedInRequest, pk: int) -> HttpResponse:
     """Publish a draft."""
-    published = services.publish_release(_release(request, pk, Action.PUBLISH), request.user)
+    published = services.publish_release(
+        _release(request, pk, Action.PUBLISH), request.user, seen=request.POST.get("seen") or None
+    )
     messages.success(request, f"Release {published.number} is published.")
     return redirect(published)
 
@@ -127,7 +149,7 @@ def publish(request: SignedInRequest, pk: int) -> HttpResponse:
 def discard(request: SignedInRequest, pk: int) -> HttpResponse:
     """Throw a draft away."""
     row = _release(request, pk, Action.PUBLISH)
-    services.discard_release(row)
+    services.discard_release(row, request.user, seen=request.POST.get("seen") or None)
     messages.success(request, "The draft is gone.")
     return redirect(row.measurement)
 
@@ -153,7 +175,7 @@ def _measurement(request: SignedInRequest, pk: int) -> Measurement:
 
 def _release(request: SignedInRequest, pk: int, action: Action) -> Release:
     """The release; a draft is for those alone who may publish it."""
-    rows = Release.objects.select_related("measurement__collaboration", "created_by")
+    rows = Release.objects.select_related("measurement__collaboration", "created_by", "withdrawn_by")
     row = load(rows, request.user, action, pk)
     if row.state == Release.State.DRAFT:
         require(request.user, Action.PUBLISH, row.measurement.collaboration)
@@ -178,6 +200,9 @@ def _show(
         "figure": plotly_json(page.figure) if page.figure else None,
         "form": form,
         "fault": fault,
-        "may_assess": may(request.user, Action.ASSESS, collaboration),
+        "reading": reading_of(row),
+        "seal": seal_of(row.measurement, request.user),
+        "may_assess": may(request.user, Action.ASSESS, collaboration) and not row.is_withdrawn,
+        "may_withdraw": may(request.user, Action.PUBLISH, collaboration) and not row.is_withdrawn,
     }
     return render(request, template, context, status=400 if fault else 200)

@@ -8,6 +8,7 @@ from django.urls import reverse
 from core.measurements.models import Release
 from core.people.models import User
 from core.theories.models import Curve
+from fits.assessments.current_curves import current_curves
 from fits.assessments.job import Job
 
 
@@ -75,6 +76,16 @@ class Assessment(Job):
 
     def get_absolute_url(self) -> str:
         return reverse("reports:assessment", args=[self.pk])
+
+    @property
+    def left_out(self) -> list[Curve]:
+        """Where nobody chose the curves: the current ones of its desk that it was made without, since they do not
+        reach over the release's x. Two queries."""
+        if not self.is_automatic:
+            return []
+        judged = set(self.curves.values_list("pk", flat=True))
+        current = current_curves(self.release.measurement_id, until=self.created_at)
+        return [curve for curve in current if curve.theory.desk_id == self.desk_id and curve.pk not in judged]
 
 
 class Verdict(models.Model):

@@ -11,6 +11,7 @@ from django.db import transaction
 
 from core import alive
 from core.errors import UserError, record_fault
+from core.measurements import services
 from core.worker import app
 from fits.assessments import claims, feature_parts, leases, pipeline, searches, sweeper
 from fits.assessments.dispatch import enqueue
@@ -89,6 +90,13 @@ def sweep() -> None:
             if enqueue(jobs, pk):
                 sweeper.note_enqueued(jobs, pk)
     searches.settle()
+    alive.touch()
+
+
+@app.task(name="fits.assessments.tasks.note_openings")  # type: ignore[untyped-decorator]
+def note_openings() -> None:
+    """Write down which measurements have opened at their time, and assess their curves."""
+    services.note_openings()
     alive.touch()
 
 

@@ -230,7 +230,7 @@ def test_windows_stay_in_the_database_until_they_are_asked_for(measurement: Meas
 
 def test_columns_and_errors_are_changed_together(measurement: Measurement, lead: User) -> None:
     draft = drafted(measurement, lead)
-    services.map_columns(draft, ["x", "y", ""], said=SaidOfErrors.PROFILE, calibration=0.1)
+    services.map_columns(draft, ["x", "y", ""], user=lead, said=SaidOfErrors.PROFILE, calibration=0.1)
     draft.refresh_from_db()
     data = data_of(draft)
     assert (data.source, data.calibration, data.errors) == (ErrorSource.PROFILE, 0.1, None)
@@ -252,15 +252,15 @@ def test_columns_and_words_that_contradict_each_other_change_nothing(
 ) -> None:
     draft = drafted(measurement, lead, table(x=X, y=np.round(Y), error=0.5))
     with pytest.raises(UserError, match=f"(?i){reason}") as refusal:
-        services.map_columns(draft, roles, said=said)
+        services.map_columns(draft, roles, user=lead, said=said)
     assert refusal.value.remedy
     draft.refresh_from_db()
     assert said_of(draft) is SaidOfErrors.COLUMN
 
 
-def test_what_is_said_of_a_published_release_stays(release: Release) -> None:
+def test_what_is_said_of_a_published_release_stays(release: Release, lead: User) -> None:
     with pytest.raises(UserError, match="draft no more"):
-        services.map_columns(release, ["x", "y", "error"], said=SaidOfErrors.RELATIVE)
+        services.map_columns(release, ["x", "y", "error"], user=lead, said=SaidOfErrors.RELATIVE)
     with pytest.raises(TypeError):
         release.save()
 

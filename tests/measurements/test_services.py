@@ -75,7 +75,7 @@ def test_columns_with_other_headers_wait_to_be_mapped(measurement: Measurement, 
     draft = drafted(measurement, lead, HEADED)
     with pytest.raises(UserError):
         services.publish_release(draft, lead)
-    services.map_columns(draft, ["x", "y", "error"])
+    services.map_columns(draft, ["x", "y", "error"], user=lead)
     assert services.publish_release(draft, lead).number == 1
 
 
@@ -83,7 +83,7 @@ def test_a_mapping_under_which_a_rule_breaks_changes_nothing(measurement: Measur
     draft = drafted(measurement, lead, HEADED.replace("5,25,0.1", "5,25,-0.1"))
     before = draft.columns
     with pytest.raises(UserError, match="line 6"):
-        services.map_columns(draft, ["x", "y", "error"])
+        services.map_columns(draft, ["x", "y", "error"], user=lead)
     draft.refresh_from_db()
     assert draft.columns == before
 
@@ -101,24 +101,27 @@ def test_a_release_is_published_once(release: Release, lead: User) -> None:
         services.publish_release(release, lead)
 
 
-def test_a_published_release_is_neither_discarded_nor_mapped(release: Release) -> None:
+def test_a_published_release_is_neither_discarded_nor_mapped(release: Release, lead: User) -> None:
     with pytest.raises(UserError):
-        services.discard_release(release)
+        services.discard_release(release, lead)
     with pytest.raises(UserError):
-        services.map_columns(release, ["x", "y", "error"])
+        services.map_columns(release, ["x", "y", "error"], user=lead)
     assert Release.objects.filter(pk=release.pk).exists()
 
 
 def test_a_discarded_draft_is_gone(measurement: Measurement, lead: User) -> None:
-    services.discard_release(drafted(measurement, lead))
+    services.discard_release(drafted(measurement, lead), lead)
     assert not Release.objects.exists()
 
 
-def test_the_axis_is_settled_with_the_first_release(release: Release, measurement: Measurement) -> None:
-    words = {"name": "Seiches", "about": "", "x_name": "f", "x_unit": "", "y_name": "P", "y_unit": ""}
+def test_the_axis_is_settled_with_the_first_release(
+    release: Release, measurement: Measurement, lead: User
+) -> None:
+    words: dict[str, Any] = {"user": lead, "measurement": measurement, "seen": measurement.revision}
+    words |= {"name": "Seiches", "about": "", "x_name": "f", "x_unit": "", "y_name": "P", "y_unit": ""}
     with pytest.raises(UserError, match="published already"):
-        services.edit_measurement(measurement=measurement, axis="log", **words)
-    services.edit_measurement(measurement=measurement, axis="linear", **words)
+        services.edit_measurement(axis="log", **words)
+    services.edit_measurement(axis="linear", **words)
     assert Measurement.objects.get().name == "Seiches"
 
 
@@ -156,9 +159,11 @@ def test_nothing_is_published_between_the_check_of_an_axis_and_its_change(
     measurement: Measurement, lead: User, monkeypatch: pytest.MonkeyPatch
 ) -> None:
     draft = drafted(measurement, lead, PLAIN.replace("1,1,0.1", "0,1,0.1"))
-    words = {"name": "Seiches", "about": "", "x_name": "f", "x_unit": "", "y_name": "P", "y_unit": ""}
-    with meanwhile(monkeypatch, editing, "_save", partial(services.publish_release, draft, lead)) as refusals:
-        services.edit_measurement(measurement=measurement, axis="log", **words)
+    words: dict[str, Any] = {"user": lead, "measurement": measurement, "seen": measurement.revision}
+    words |= {"name": "Seiches", "about": "", "x_name": "f", "x_unit": "", "y_name": "P", "y_unit": ""}
+    publish = partial(services.publish_release, draft, lead)
+    with meanwhile(monkeypatch, editing, "save_if_current", publish) as refusals:
+        services.edit_measurement(axis="log", **words)
     # 0 has no logarithm.
     assert len(refusals) == 1
     assert not Release.objects.filter(state=Release.State.PUBLISHED).exists()
@@ -169,7 +174,7 @@ def test_a_draft_that_is_being_published_is_not_discarded(
     measurement: Measurement, lead: User, monkeypatch: pytest.MonkeyPatch
 ) -> None:
     draft = drafted(measurement, lead)
-    discard = partial(services.discard_release, draft)
+    discard = partial(services.discard_release, draft, lead)
     with meanwhile(monkeypatch, Release, "save", discard) as refusals:
         services.publish_release(draft, lead)
     assert refusals == ["not-a-draft"]

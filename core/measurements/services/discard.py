@@ -2,15 +2,27 @@
 
 from django.db import transaction
 
-from core.errors import UserError
-from core.measurements.models import Release
+from core.measurements.models import Measurement, Release
+from core.measurements.services.locked_draft import locked_draft, reading_of
+from core.people.log import Deed, record
+from core.people.models import User
 
 
 @transaction.atomic
-def discard_release(release: Release) -> None:
-    """Delete the draft with all that was uploaded for it."""
+def discard_release(release: Release, user: User, *, seen: str | None = None) -> None:
+    """Delete the draft with all that was uploaded for it.
+
+    seen  the reading of it that was looked at; without a word, the one that `release` has
+    """
+    measurement = Measurement.objects.select_related("collaboration").get(pk=release.measurement_id)
     # Django deletes by key what it has looked up before: without the lock it may have been published meanwhile.
-    drafts = Release.objects.select_for_update().filter(pk=release.pk, state=Release.State.DRAFT)
-    if not drafts.values_list("pk", flat=True).first():
-        raise UserError("not-a-draft", "a published release stays", "Publish a correction as a new release")
+    draft = locked_draft(release, seen=reading_of(release) if seen is None else seen)
+    record(
+        Deed.DISCARDED_DRAFT,
+        who=user,
+        collaboration=measurement.collaboration,
+        about=f"{draft.file_name}, for {measurement}",
+        url=measurement.get_absolute_url(),
+        hidden_with=measurement,
+    )
     Release.objects.filter(pk=release.pk).delete()

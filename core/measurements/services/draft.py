@@ -4,8 +4,9 @@ import hashlib
 from collections.abc import Sequence
 
 import numpy as np
+from django.db import transaction
 
-from core.measurements.models import Measurement, Release
+from core.measurements.models import EarlyLook, Measurement, Release
 from core.measurements.reading.apart import read_covariance_apart, read_table_apart, read_windows_apart
 from core.measurements.reading.names import safe_name
 from core.measurements.reading.release import release_data
@@ -13,6 +14,8 @@ from core.measurements.reading.roles import UNUSED, guess_roles, problems_of_rol
 from core.measurements.reading.stored import to_bytes
 from core.measurements.reading.table import Table
 from core.measurements.said_of_errors import SaidOfErrors, refuse_contradiction, roles_under
+from core.measurements.services.look import record_look
+from core.people.log import Deed, record
 from core.people.models import User
 from fits.engine.data import Axis, ErrorSource
 
@@ -31,7 +34,8 @@ def draft_release(
     windows_name: str = "",
     note: str = "",
 ) -> Release:
-    """A draft to look at before it is published. A UserError for what cannot be read; nothing is kept then.
+    """A draft to look at before it is published. A UserError for what cannot be read; nothing is kept then. Whoever
+    uploads the data of a sealed measurement has seen them, which is noted.
 
     said  where the errors come from; without a word, from the covariance if there is one, else from a column
     """
@@ -66,7 +70,7 @@ def draft_release(
             windows=windows,
             windows_name=windows_name,
         )
-    return Release.objects.create(
+    draft = Release(
         measurement=measurement,
         note=note,
         table=to_bytes(table.values),
@@ -86,6 +90,26 @@ def draft_release(
         points=points,
         created_by=user,
     )
+    _keep(draft, user)
+    return draft
+
+
+@transaction.atomic
+def _keep(draft: Release, user: User) -> None:
+    # Whoever seals it at this moment holds the same lock.
+    measurement = Measurement.objects.select_for_update().get(pk=draft.measurement_id)
+    draft.save()
+    record(
+        Deed.UPLOADED,
+        who=user,
+        collaboration=measurement.collaboration,
+        about=f"{draft.file_name}, for {measurement}",
+        url=draft.get_absolute_url(),
+        detail={"points": draft.points, "sha256": draft.file_sha256},
+        hidden_with=measurement,
+    )
+    if measurement.is_sealed:
+        record_look(measurement, user, EarlyLook.How.UPLOADED)
 
 
 def _sha256(content: bytes | None) -> str:

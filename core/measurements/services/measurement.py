@@ -4,9 +4,14 @@ from django.db import IntegrityError, transaction
 
 from core.errors import UserError
 from core.measurements.models import Axis, Measurement, Release
+from core.people.log import Deed, record
 from core.people.models import Collaboration, User
+from core.revision import save_if_current
+
+WORDS = ("name", "about", "x_name", "x_unit", "y_name", "y_unit", "axis")
 
 
+@transaction.atomic
 def create_measurement(
     *,
     user: User,
@@ -31,14 +36,27 @@ def create_measurement(
         axis=axis,
         created_by=user,
     )
-    _save(measurement)
+    try:
+        with transaction.atomic():
+            measurement.save()
+    except IntegrityError as error:
+        _refuse_taken(measurement, error)
+    record(
+        Deed.ADDED_MEASUREMENT,
+        who=user,
+        collaboration=collaboration,
+        about=measurement.name,
+        url=measurement.get_absolute_url(),
+    )
     return measurement
 
 
 @transaction.atomic
 def edit_measurement(
     *,
+    user: User,
     measurement: Measurement,
+    seen: int,
     name: str,
     about: str,
     x_name: str,
@@ -47,26 +65,49 @@ def edit_measurement(
     y_unit: str,
     axis: str,
 ) -> None:
-    """Other words for it. Its axis is settled once a release is published: verdicts rest on it."""
+    """Other words for it, unless somebody has changed them since revision `seen`. Its axis is settled once a release
+    is published, as verdicts rest on it, and while it is sealed, as curves are made for it."""
     # Whoever publishes at this moment holds the same lock.
     kept = Measurement.objects.select_for_update().get(pk=measurement.pk)
-    if axis != kept.axis and measurement.releases.filter(state=Release.State.PUBLISHED).exists():
+    if axis != kept.axis:
+        _refuse_settled(kept)
+    before = {word: getattr(kept, word) for word in WORDS}
+    kept.name, kept.about, kept.axis = name, about, axis
+    kept.x_name, kept.x_unit = x_name, x_unit
+    kept.y_name, kept.y_unit = y_name, y_unit
+    try:
+        with transaction.atomic():
+            save_if_current(kept, seen=seen, fields=WORDS)
+    except IntegrityError as error:
+        _refuse_taken(kept, error)
+    record(
+        Deed.EDITED_MEASUREMENT,
+        who=user,
+        collaboration=kept.collaboration,
+        about=kept.name,
+        url=kept.get_absolute_url(),
+        detail={
+            word: f"{before[word] or '–'} → {getattr(kept, word) or '–'}"
+            for word in WORDS
+            if before[word] != getattr(kept, word)
+        },
+    )
+    measurement.refresh_from_db()
+
+
+def _refuse_settled(kept: Measurement) -> None:
+    # While it is sealed, whether anything is published is nobody's to learn.
+    if kept.is_sealed:
+        raise UserError("axis-settled", "the measurement is sealed", "Wait until it is open")
+    if kept.releases.exclude(state=Release.State.DRAFT).exists():
         raise UserError(
             "axis-settled", "a release is published already", "Add a new measurement for another axis"
         )
-    measurement.name, measurement.about, measurement.axis = name, about, axis
-    measurement.x_name, measurement.x_unit = x_name, x_unit
-    measurement.y_name, measurement.y_unit = y_name, y_unit
-    _save(measurement)
 
 
-def _save(measurement: Measurement) -> None:
-    try:
-        with transaction.atomic():
-            measurement.save()
-    except IntegrityError as error:
-        same = Measurement.objects.filter(collaboration=measurement.collaboration, name=measurement.name)
-        if not same.exclude(pk=measurement.pk).exists():
-            raise
-        reason = f"a measurement named “{measurement.name}” is here already"
-        raise UserError("name-taken", reason, "Choose another name") from error
+def _refuse_taken(measurement: Measurement, error: IntegrityError) -> None:
+    same = Measurement.objects.filter(collaboration=measurement.collaboration, name=measurement.name)
+    if not same.exclude(pk=measurement.pk).exists():
+        raise error
+    reason = f"a measurement named “{measurement.name}” is here already"
+    raise UserError("name-taken", reason, "Choose another name") from error

@@ -1,0 +1,8 @@
+"""What upper layers are told of measurements, inside the transaction of the change itself."""
+
+from django.dispatch import Signal
+
+# release: the Release, just published; by: the User who published it.
+release_published = Signal()
+# measurement: the Measurement, whose data are seen from now on; by: the User who opened it, None at its time.
+measurement_opened = Signal()

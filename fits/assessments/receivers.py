@@ -1,0 +1,22 @@
+"""What follows for assessments when a release is published or a measurement opens."""
+
+from typing import Any
+
+from django.dispatch import receiver
+
+from core.measurements.models import Measurement, Release
+from core.measurements.signals import measurement_opened, release_published
+from core.people.models import User
+from fits.assessments.services import assess_current
+
+
+@receiver(release_published)
+def assess_published(*, release: Release, by: User, **_: Any) -> None:
+    """Judge all current curves on it, unless its data are sealed."""
+    assess_current(release.measurement, by=by)
+
+
+@receiver(measurement_opened)
+def assess_opened(*, measurement: Measurement, by: User | None, **_: Any) -> None:
+    """Judge all curves that were submitted while the data were hidden."""
+    assess_current(measurement, by=by)
