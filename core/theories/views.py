@@ -11,7 +11,7 @@ from core.errors import UserError
 from core.measurements.export import csv_lines
 from core.measurements.preview_figure import plotly_json
 from core.measurements.reading.stored import from_bytes
-from core.people.access import Action, load, may
+from core.people.access import Action, desk_of, load, may
 from core.people.forms import explain
 from core.people.models import Collaboration
 from core.people.signed_in import SignedInRequest
@@ -37,7 +37,12 @@ def new_theory(request: SignedInRequest, pk: int) -> HttpResponse:
             explain(form, error, "name")
         else:
             return redirect(theory)
-    return render(request, "theories/theory_form.html", {"form": form, "collaboration": collaboration})
+    context = {
+        "form": form,
+        "collaboration": collaboration,
+        "desk": desk_of(request.user, collaboration),
+    }
+    return render(request, "theories/theory_form.html", context)
 
 
 @login_required
