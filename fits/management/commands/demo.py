@@ -7,6 +7,7 @@ from django.core.management.base import CommandParser
 from core.management.site_command import SiteCommand
 from core.single_machine import Site
 from fits.management.demo import load, show
+from fits.management.demo.accounts import LEAD
 
 SECONDS_TO_ASSESS = 300.0
 
@@ -45,7 +46,7 @@ class Command(SiteCommand):
             site.watch()
         self.stdout.write(f"\n{show.rankings(assessments)}\n")
         newest = max(
-            (found for found in assessments if found.requested_by.email == load.LEAD.email),
+            (found for found in assessments if found.requested_by.email == LEAD.email),
             key=lambda found: found.release.number or 0,
         )
         sentence = show.open_by_share_link(newest, site.address)

@@ -5,6 +5,7 @@ theories differ in the overtones.
 """
 
 from collections.abc import Callable
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
@@ -68,12 +69,28 @@ def joined_basins(mean_depth: float) -> FloatArray:
     return np.asarray(SECONDS_PER_HOUR * roots / (2.0 * np.pi), dtype=np.float64)
 
 
-def spectrum(frequency: FloatArray, floor: Callable[[float], FloatArray]) -> FloatArray:
-    """Power in mm²: a line for each seiche, fainter for each overtone, on a falling background."""
+@dataclass(frozen=True)
+class Gauge:
+    """How strongly it sees the seiches: power of the slowest, by what each overtone is fainter, and the background at
+    1 cycle per hour."""
+
+    slowest: float
+    fainter: float
+    background: float
+
+
+SURFACE = Gauge(6.0, 0.72, 0.8)  # mm²
+NARROWS = Gauge(3.0, 0.9, 0.6)  # (cm/s)²: the current there has its strongest overtones higher up
+
+
+def spectrum(
+    frequency: FloatArray, floor: Callable[[float], FloatArray], gauge: Gauge = SURFACE
+) -> FloatArray:
+    """Power as a gauge sees it: a line for each seiche, fainter for each overtone, on a falling background."""
     # All frequencies go with the square root of the depth, so that one ratio sets the depth.
     depth = (SLOWEST / floor(1.0)[0]) ** 2
-    power = 0.8 / frequency
+    power = gauge.background / frequency
     for mode, centre in enumerate(floor(depth)):
-        height = 6.0 * 0.72**mode
+        height = gauge.slowest * gauge.fainter**mode
         power = power + height * LINE_WIDTH**2 / ((frequency - centre) ** 2 + LINE_WIDTH**2)
     return np.asarray(power, dtype=np.float64)

@@ -7,7 +7,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from fits.management.demo.lake import (
+    SURFACE,
     FloatArray,
+    Gauge,
     flat_floor,
     joined_basins,
     parabolic_floor,
@@ -63,7 +65,13 @@ STAGES = (
     SurveyStage("Twelve gauges, six summers (invented).", 240, 0.5, 3),
 )
 
-FLOORS: tuple[tuple[Callable[[float], FloatArray], TheoryInWords], ...] = (
+# The current in the narrows, measured once; and a winter of which nobody has seen the data yet.
+CURRENT = SurveyStage("One current meter, one autumn (invented).", 140, 1.7, 6)
+WINTER = SurveyStage("Sixteen gauges under the ice (invented).", 200, 0.8, 7)
+
+Floor = Callable[[float], FloatArray]
+
+FLOORS: tuple[tuple[Floor, TheoryInWords], ...] = (
     (
         flat_floor,
         TheoryInWords(
@@ -104,12 +112,12 @@ FLOORS: tuple[tuple[Callable[[float], FloatArray], TheoryInWords], ...] = (
 
 
 def survey_release(stage: SurveyStage, number: int) -> ReleaseFiles:
-    """A release with noise that is drawn once, by its seed: the same bytes each time."""
+    """A release of the surface's power, with errors that are correlated between neighbours."""
     x = np.linspace(*FREQUENCIES, stage.points)
     errors = stage.error * (0.5 + 0.5 * x)
     lag = np.abs(np.subtract.outer(np.arange(x.size), np.arange(x.size)))
     covariance = np.outer(errors, errors) * NEIGHBOUR_CORRELATION**lag
-    noise = np.linalg.cholesky(covariance) @ np.random.default_rng(stage.seed).standard_normal(x.size)
+    noise = np.linalg.cholesky(covariance) @ _drawn(stage)
     table = text_table(
         "Lake Merrow, an invented lake: surface seiche power (mm²) against frequency (cycles per hour)",
         x=x,
@@ -122,10 +130,28 @@ def survey_release(stage: SurveyStage, number: int) -> ReleaseFiles:
     )
 
 
-def floor_curve(floor: Callable[[float], FloatArray], words: TheoryInWords) -> File:
+def plain_release(stage: SurveyStage, name: str, gauge: Gauge, quantity: str) -> ReleaseFiles:
+    """A release with an error for each point."""
+    x = np.linspace(*FREQUENCIES, stage.points)
+    errors = stage.error * (0.5 + 0.5 * x)
+    table = text_table(
+        f"Lake Merrow, an invented lake: {quantity} against frequency (cycles per hour)",
+        x=x,
+        y=spectrum(x, parabolic_floor, gauge) + errors * _drawn(stage),
+        error=errors,
+    )
+    return ReleaseFiles(stage.note, File(f"{name}.csv", table))
+
+
+def _drawn(stage: SurveyStage) -> FloatArray:
+    """Noise that is drawn once, by its seed: the same bytes each time."""
+    return np.random.default_rng(stage.seed).standard_normal(stage.points)
+
+
+def floor_curve(floor: Floor, name: str, gauge: Gauge = SURFACE) -> File:
     """A theory's curve on a grid of its own."""
-    content = text_table(words.name, x=CURVE_GRID, y=spectrum(CURVE_GRID, floor))
-    return File(f"{words.name.lower().replace(' ', '-')}.csv", content)
+    content = text_table(name, x=CURVE_GRID, y=spectrum(CURVE_GRID, floor, gauge))
+    return File(f"{name.lower().replace(' ', '-')}.csv", content)
 
 
 def text_table(comment: str, **columns: FloatArray) -> bytes:

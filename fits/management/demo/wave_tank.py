@@ -12,14 +12,26 @@ CURVE_GRID = np.linspace(0.55, 1.45, 181)
 
 ONE = TheoryInWords(
     "One resonance",
-    "Bench 1 (made up)",
+    "The class (made up)",
     "The tank as one damped oscillator.",
     "A damped oscillator that a paddle drives",
 )
 TWO = TheoryInWords(
     "Two resonances",
-    "Bench 2 (made up)",
+    "The class (made up)",
     "Lengthwise and crosswise sloshing, close together.",
+    "Two damped oscillators that a paddle drives",
+)
+FIRST_BENCH = TheoryInWords(
+    "Our one peak",
+    "Bench 1 (made up)",
+    "One resonance, read off by eye.",
+    "A damped oscillator that a paddle drives",
+)
+SECOND_BENCH = TheoryInWords(
+    "Our two peaks",
+    "Bench 2 (made up)",
+    "Two resonances; the second one guessed a little too high.",
     "Two damped oscillators that a paddle drives",
 )
 
@@ -38,7 +50,22 @@ def two_resonances(frequency: FloatArray) -> FloatArray:
     return 0.8 + _peak(frequency, 0.96, 5.0, 0.08) + _peak(frequency, 1.06, 4.0, 0.08)
 
 
-THEORIES = ((one_resonance, ONE), (two_resonances, TWO))
+def one_peak_by_eye(frequency: FloatArray) -> FloatArray:
+    """What bench 1 drew."""
+    return 0.6 + _peak(frequency, 1.0, 6.6, 0.11)
+
+
+def two_peaks_guessed(frequency: FloatArray) -> FloatArray:
+    """What bench 2 drew."""
+    return 0.8 + _peak(frequency, 0.96, 5.0, 0.08) + _peak(frequency, 1.06, 4.3, 0.08)
+
+
+THEORIES = (
+    (one_resonance, ONE),
+    (two_resonances, TWO),
+    (one_peak_by_eye, FIRST_BENCH),
+    (two_peaks_guessed, SECOND_BENCH),
+)
 
 
 def class_release() -> ReleaseFiles:
