@@ -62,4 +62,3 @@ def comments_on(target: Subject, reader: User) -> CommentsPage:
         if may_comment
         else (),
     )
-

@@ -13,7 +13,7 @@ from core.people.models import User
 
 MOST_LETTERS = 4000
 # No blanks, no quotes or brackets of a sentence, and none of the marks that turn the direction of what is read.
-LINK = r"\bhttps?://[^\s<>\"'`\\\u200b-\u200f\u202a-\u202e\u2060-\u2069\ufeff]+"
+LINK = r"\bhttps?://[^\s<>\"'`“”«»\\\u200b-\u200f\u202a-\u202e\u2060-\u2069\ufeff]+"
 # What ends a sentence and not its address.
 AFTER_LINK = ".,;:!?*_"
 
