@@ -2,13 +2,17 @@
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from datetime import timedelta
 
 from allauth.account.forms import default_token_generator
 from allauth.account.utils import user_pk_to_url_str
 from django.urls import reverse
+from django.utils import timezone
 from playwright.sync_api import FilePayload
 from playwright.sync_api import Page as BrowserPage
 
+from core.people.models import Role
+from core.people.services import invite_by_link
 from tests.browser.survey import Survey
 
 
@@ -42,7 +46,8 @@ def ask_for_too_much(page: BrowserPage) -> None:
 
 def take_the_last_lead_away(page: BrowserPage) -> None:
     """Ask for what a rule forbids."""
-    page.get_by_role("button", name="Remove Lin Lead").click()
+    page.get_by_text("Leave this collaboration").click()
+    page.get_by_role("button", name="Leave").click()
 
 
 def upload_nonsense(page: BrowserPage) -> None:
@@ -57,6 +62,32 @@ def make_a_link(page: BrowserPage) -> None:
     """Make a share link, whose secret is shown once."""
     page.get_by_label("For whom").fill("the harbour office")
     page.get_by_role("button", name="Make a link").click()
+
+
+def invited(survey: Survey) -> str:
+    """The secret of an invitation that was made for one."""
+    return invite_by_link(
+        by=survey.lead,
+        collaboration=survey.collaboration,
+        role=Role.STUDENT,
+        expires_at=timezone.now() + timedelta(days=7),
+        label="The second year",
+    ).secret
+
+
+def make_an_invitation(page: BrowserPage) -> None:
+    """Make the link of an invitation, which is shown once."""
+    page.get_by_label("For whom").fill("the second year")
+    page.get_by_role("button", name="Make an invitation link").click()
+
+
+def give_two_passwords(page: BrowserPage) -> None:
+    """Have the form of a newcomer come back with faults."""
+    page.get_by_label("E-mail address").fill("nell@merrow.example")
+    page.get_by_label("Name").fill("Nell New")
+    page.get_by_label("Password", exact=True).fill("a calm made-up lake")
+    page.get_by_label("Password, once more").fill("another calm lake")
+    page.get_by_role("button", name="Make the account and join").click()
 
 
 def unfold_the_numbers(page: BrowserPage) -> None:
@@ -90,6 +121,24 @@ PAGES = [
     Row("edit-collaboration", "people:edit_collaboration", lambda survey: survey.collaboration.pk),
     Row("people", "people:people", lambda survey: survey.collaboration.pk),
     Row("people-as-a-member", "people:people", lambda survey: survey.collaboration.pk, who="member"),
+    Row(
+        "people-with-new-invitation",
+        "people:people",
+        lambda survey: survey.collaboration.pk,
+        then=make_an_invitation,
+    ),
+    Row(
+        "hand-over",
+        "people:hand_over",
+        lambda survey: (survey.collaboration.pk, survey.member.memberships.get().pk),
+    ),
+    Row("permissions", "people:permissions", who="stranger"),
+    Row("preferences", "people:preferences", who="stranger"),
+    Row("invitation", "people:invitation", invited, who="nobody"),
+    Row("invitation-with-faults", "people:invitation", invited, who="nobody", then=give_two_passwords),
+    Row("invitation-signed-in", "people:invitation", invited, who="stranger"),
+    Row("invitation-here-already", "people:invitation", invited, who="member"),
+    Row("invitation-closed", "people:invitation", lambda survey: "unknown", who="nobody", status=404),
     Row("new-measurement", "measurements:new_measurement", lambda survey: survey.collaboration.pk),
     Row("edit-measurement", "measurements:edit_measurement", lambda survey: survey.measurement.pk),
     Row("upload", "measurements:upload", lambda survey: survey.measurement.pk),

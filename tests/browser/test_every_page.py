@@ -9,6 +9,7 @@ import pytest
 from axe_playwright_python.base import AXE_SCRIPT
 from django.test import Client
 from django.urls import URLPattern, URLResolver, get_resolver, reverse
+from django.utils import timezone
 from playwright.sync_api import Page, expect
 
 from core.measurements.models import Release
@@ -33,7 +34,8 @@ NO_PAGES = {
     *("account_request_reauthentication_code", "account_email", "account_email_verification_sent"),
     *("account_confirm_email", "assessments:cancel", "assessments:progress", "assessments:coordinates"),
     *("measurements:discard", "measurements:download", "measurements:publish"),
-    *("people:change_role", "people:remove"),
+    *("people:change_role", "people:remove", "people:leave"),
+    *("people:new_invitation", "people:mail_invitation", "people:revoke_invitation"),
     *("reports:assessment_chart", "reports:assessment_csv", "reports:assessment_json"),
     *("reports:report_chart", "reports:report_csv", "reports:report_json"),
     *("reports:shared_chart", "reports:shared_csv", "reports:shared_json"),
@@ -129,6 +131,9 @@ def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None
         "assessments": survey.done.pk,
         "collaborations": survey.collaboration.pk,
         "curves": survey.curve.pk,
+        "invitations": survey.collaboration.invitations.create(
+            created_by=survey.lead, expires_at=timezone.now()
+        ).pk,
         "links": ShareLink.objects.latest("pk").pk,
         "r": survey.secret,
         "releases": survey.release.pk,
