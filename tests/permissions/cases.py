@@ -10,6 +10,7 @@ from typing import Any
 
 from django.utils import timezone
 
+from core.measurements.models import Measurement
 from core.people.models import Invitation
 from core.people.services.invite import hashed
 from tests.permissions.world import World
@@ -27,6 +28,16 @@ def collaboration(world: World, who: str) -> tuple[Any, ...]:
 
 def measurement(world: World, who: str) -> tuple[Any, ...]:
     return (world.measurement.pk,)
+
+
+def sealed(world: World, who: str) -> tuple[Any, ...]:
+    """A sealed measurement, made anew where a test before has taken it back."""
+    lead = world.people["lead"]
+    words = {"x_name": "frequency", "y_name": "power", "created_by": lead, "sealed_at": timezone.now()}
+    made, _ = Measurement.objects.get_or_create(
+        collaboration=world.collaboration, name="Power at the outflow", defaults=words
+    )
+    return (made.pk,)
 
 
 def release(world: World, who: str) -> tuple[Any, ...]:
@@ -125,10 +136,14 @@ KEYS: dict[str, Key] = {
     "people:preferences": nothing,
     "measurements:new_measurement": collaboration,
     "measurements:edit_measurement": measurement,
+    "measurements:seal": sealed,
+    "measurements:open": sealed,
+    "measurements:look": sealed,
     "measurements:upload": measurement,
     "measurements:release": release,
     "measurements:publish": draft_release,
     "measurements:discard": draft_release,
+    "measurements:withdraw": release,
     "measurements:download": release,
     "theories:new_theory": collaboration,
     "theories:edit_theory": theory,
@@ -137,6 +152,8 @@ KEYS: dict[str, Key] = {
     "theories:submit": draft_curve,
     "theories:discard": draft_curve,
     "theories:download": curve,
+    "theories:register": sealed,
+    "theories:register_csv": sealed,
     "assessments:new": release,
     "assessments:coordinates": release,
     "assessments:progress": running,
