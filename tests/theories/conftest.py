@@ -1,8 +1,11 @@
-"""People who bring theories from a desk, or only read."""
+"""People who bring theories from a desk, or only read; uploads read without a child process, which takes its time."""
 
 import pytest
 
+from core.measurements.reading.batch import read_batch
+from core.measurements.reading.curve import read_curve
 from core.people.models import Collaboration, Membership, Role, User
+from core.theories.services import batch_draft, draft
 
 
 def person(collaboration: Collaboration, name: str, role: Role) -> User:
@@ -25,3 +28,10 @@ def neighbour(collaboration: Collaboration) -> User:
 @pytest.fixture
 def observer(collaboration: Collaboration) -> User:
     return person(collaboration, "observer", Role.OBSERVER)
+
+
+@pytest.fixture
+def read_in_this_process(monkeypatch: pytest.MonkeyPatch) -> None:
+    """For tests of what becomes of a curve; tests of reading have a child process of their own."""
+    monkeypatch.setattr(draft, "read_curve_apart", read_curve)
+    monkeypatch.setattr(batch_draft, "read_batch_apart", read_batch)

@@ -13,6 +13,7 @@ from core.people.models import Collaboration, LogEntry, User
 from core.theories import services
 from core.theories.models import Curve, Theory
 
+pytestmark = pytest.mark.usefixtures("read_in_this_process")
 SignedIn = Callable[[User], Client]
 CURVE = b"x,y\n1,1\n2,4\n3,9\n"
 

@@ -14,6 +14,7 @@ from core.theories import services
 from core.theories.models import Curve, Theory
 from core.theories.rules import refuse_short
 
+pytestmark = pytest.mark.usefixtures("read_in_this_process")
 CURVE = "x,y\n" + "".join(f"{x},{x * x}\n" for x in (3, 1, 2, 4))
 Seal = Callable[..., None]
 

@@ -14,6 +14,7 @@ from core.theories.models import Theory
 from core.theories.services import theory as theory_services
 from tests.meanwhile import meanwhile
 
+pytestmark = pytest.mark.usefixtures("read_in_this_process")
 SignedIn = Callable[[User], Client]
 CURVE = b"x,y\n1,1\n2,4\n3,9\n"
 
