@@ -1,9 +1,11 @@
 """The made-up scenario tells the story that it is there for."""
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 
 import pytest
+from django.db import transaction
 from django.test import Client
+from pytest_django import DjangoDbBlocker
 
 from core.measurements.models import Measurement, Release
 from core.measurements.services import open_measurement
@@ -14,7 +16,7 @@ from fits.assessments.tasks import run_assessment
 from fits.management.demo import load
 from fits.management.demo.accounts import FIRST_BENCH, LEAD, MEMBER, SECOND_BENCH, TEACHER, Account, user_of
 
-pytestmark = pytest.mark.django_db
+pytestmark = [pytest.mark.django_db, pytest.mark.usefixtures("loaded")]
 
 SURFACE, CURRENT, WINTER = "Surface seiche power", "Current in the narrows", "Surface seiche power under ice"
 
@@ -28,13 +30,22 @@ def done(assessments: Iterable[Assessment]) -> list[Assessment]:
     return found
 
 
+@pytest.fixture(scope="module")
+def loaded(django_db_setup: None, django_db_blocker: DjangoDbBlocker) -> Iterator[list[Assessment]]:
+    """The demo's assessments, loaded once; each test works in a savepoint of its own."""
+    with django_db_blocker.unblock(), transaction.atomic():
+        yield load.load()
+        transaction.set_rollback(True)
+
+
 def on(measurement: str) -> list[Assessment]:
     """The demo's assessments of a measurement, by release."""
-    return [found for found in load.load() if found.release.measurement.name == measurement]
+    assessments = Assessment.objects.select_related("release__measurement").order_by("release__number")
+    return [found for found in assessments if found.release.measurement.name == measurement]
 
 
 @pytest.fixture
-def survey() -> list[Assessment]:
+def survey(loaded: list[Assessment]) -> list[Assessment]:
     """The assessments of the lake's three releases, done."""
     return done(on(SURFACE))
 
@@ -91,7 +102,6 @@ def test_one_release_of_the_current_leaves_open_what_the_surface_settles(survey:
 
 
 def test_the_winter_is_sealed_and_shows_what_it_says_once_the_lead_opens_it() -> None:
-    load.load()
     winter = Measurement.objects.get(name=WINTER)
     assert winter.is_sealed
     assert not on(WINTER)
@@ -102,9 +112,9 @@ def test_the_winter_is_sealed_and_shows_what_it_says_once_the_lead_opens_it() ->
     assert "release 1" in page(MEMBER, winter.get_absolute_url())
 
 
-def test_the_class_sees_two_resonances() -> None:
+def test_the_class_sees_two_resonances(loaded: list[Assessment]) -> None:
     assessment, *desks = done(
-        found for found in load.load() if found.release.measurement.collaboration.name == "Wave tank class"
+        found for found in loaded if found.release.measurement.collaboration.name == "Wave tank class"
     )
     assert assessment.requested_by == user_of(TEACHER)
     assert verdict(assessment, "Two resonances").rank == 1
@@ -114,16 +124,14 @@ def test_the_class_sees_two_resonances() -> None:
     assert [found.desk for found in desks] == [user_of(FIRST_BENCH), user_of(SECOND_BENCH)]
 
 
-def test_loading_twice_doubles_nothing() -> None:
-    first = load.load()
+def test_loading_twice_doubles_nothing(loaded: list[Assessment]) -> None:
     kinds = (User, Collaboration, Measurement, Release, Curve, Assessment)
     counts = [kind.objects.count() for kind in kinds]
-    assert load.load() == first
+    assert load.load() == loaded
     assert [kind.objects.count() for kind in kinds] == counts == [6, 2, 4, 6, 15, 7]
 
 
 def test_each_start_has_passwords_of_its_own() -> None:
-    load.load()
     first, second = load.fresh_passwords(), load.fresh_passwords()
     assert set(first.values()).isdisjoint(second.values())
     for account, password in second.items():

@@ -6,7 +6,7 @@ from core.measurements.models import Measurement, Release
 from core.measurements.services import draft_release, publish_release
 from core.people.models import User
 from core.theories.models import Curve, Theory
-from core.theories.services import create_theory, draft_curve, submit_curve
+from core.theories.services import create_theory, draft_batch, draft_curve, submit_batch, submit_curve
 from fits.assessments.default_settings import DEFAULT_SEED, default_settings
 from fits.assessments.models import Assessment
 from fits.assessments.services import request_assessment
@@ -39,6 +39,12 @@ def submit(user: User, theory: Theory, measurement: Measurement, file: File) -> 
         user=user, theory=theory, measurement=measurement, content=file.content, file_name=file.name
     )
     return submit_curve(draft)
+
+
+def submit_together(user: User, measurement: Measurement, file: File) -> None:
+    """Upload a table of curves and submit all of them."""
+    batch = draft_batch(user=user, measurement=measurement, content=file.content, file_name=file.name)
+    submit_batch(batch)
 
 
 def assess(user: User, release: Release, curves: list[Curve]) -> Assessment:

@@ -10,7 +10,7 @@ from core.theories.models import Theory
 from fits.assessments.models import Assessment
 from fits.management.demo import survey
 from fits.management.demo.accounts import LEAD, MARK, MEMBER, OBSERVER, collaboration_of, user_of
-from fits.management.demo.bringing import assess, propose, publish, submit
+from fits.management.demo.bringing import assess, propose, publish, submit, submit_together
 from fits.management.demo.lake import NARROWS, SURFACE
 from fits.talk.services import comment
 
@@ -59,8 +59,8 @@ def _measure_current(
     lead: User, member: User, collaboration: Collaboration, theories: list[tuple[survey.Floor, Theory]]
 ) -> None:
     current = _measurement(lead, collaboration, "Current in the narrows", "power of the current", "(cm/s)²")
-    for floor, theory in theories:
-        submit(member, theory, current, survey.floor_curve(floor, theory.name, NARROWS))
+    curves = [(floor, theory.name) for floor, theory in theories]
+    submit_together(member, current, survey.table_of_curves("narrows-curves", curves, NARROWS))
     publish(
         lead, current, survey.plain_release(survey.CURRENT, "merrow-narrows", NARROWS, "power of the current")
     )
@@ -75,8 +75,8 @@ def _seal_winter(
     low, high = survey.FREQUENCIES
     terms = SealTerms(announced_x_min=low, announced_x_max=high)
     seal_measurement(user=lead, measurement=winter, seen=winter.revision, terms=terms)
-    for floor, theory in theories[:3]:
-        submit(member, theory, winter, survey.floor_curve(floor, theory.name))
+    curves = [(floor, theory.name) for floor, theory in theories[:3]]
+    submit_together(member, winter, survey.table_of_curves("winter-curves", curves, SURFACE))
     publish(
         lead, winter, survey.plain_release(survey.WINTER, "merrow-winter", SURFACE, "surface seiche power")
     )

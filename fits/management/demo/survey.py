@@ -1,13 +1,12 @@
 """The survey of Lake Merrow: three releases drawn from the parabolic floor, and the four theories' curves."""
 
 import io
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 
 import numpy as np
 
 from fits.management.demo.lake import (
-    SURFACE,
     FloatArray,
     Gauge,
     flat_floor,
@@ -148,10 +147,16 @@ def _drawn(stage: SurveyStage) -> FloatArray:
     return np.random.default_rng(stage.seed).standard_normal(stage.points)
 
 
-def floor_curve(floor: Floor, name: str, gauge: Gauge = SURFACE) -> File:
+def floor_curve(floor: Floor, name: str) -> File:
     """A theory's curve on a grid of its own."""
-    content = text_table(name, x=CURVE_GRID, y=spectrum(CURVE_GRID, floor, gauge))
+    content = text_table(name, x=CURVE_GRID, y=spectrum(CURVE_GRID, floor))
     return File(f"{name.lower().replace(' ', '-')}.csv", content)
+
+
+def table_of_curves(name: str, floors: Iterable[tuple[Floor, str]], gauge: Gauge) -> File:
+    """Curves of several theories as one table, a column each."""
+    columns = {theory: spectrum(CURVE_GRID, floor, gauge) for floor, theory in floors}
+    return File(f"{name}.csv", text_table("Curves of several theories", x=CURVE_GRID, **columns))
 
 
 def text_table(comment: str, **columns: FloatArray) -> bytes:
