@@ -13,6 +13,7 @@ from django.utils import timezone
 from core.measurements.models import Measurement
 from core.people.models import Invitation
 from core.people.services.invite import hashed
+from core.theories.models import Batch
 from tests.permissions.world import World
 
 Key = Callable[[World, str], tuple[Any, ...]]
@@ -54,6 +55,33 @@ def theory(world: World, who: str) -> tuple[Any, ...]:
 
 def curve(world: World, who: str) -> tuple[Any, ...]:
     return (world.around(who).curve.pk,)
+
+
+def batch(world: World, who: str) -> tuple[Any, ...]:
+    """Curves that were submitted together, at the same desk as the others that they work with."""
+    theory = world.around(who).theory
+    made, _ = Batch.objects.get_or_create(
+        collaboration=world.collaboration,
+        measurement=world.measurement,
+        desk=theory.desk,
+        uploaded_by=theory.submitted_by,
+        file_name="submitted.zip",
+        defaults={"submitted_at": timezone.now()},
+    )
+    return (made.pk,)
+
+
+def waiting_batch(world: World, who: str) -> tuple[Any, ...]:
+    """Curves of theirs that wait to be submitted; of the lead's for those who have none."""
+    owner = who if who in ("lead", "member", "student") else "lead"
+    made, _ = Batch.objects.get_or_create(
+        collaboration=world.collaboration,
+        measurement=world.measurement,
+        desk=world.around(owner).theory.desk,
+        uploaded_by=world.people[owner],
+        file_name="waiting.zip",
+    )
+    return (made.pk,)
 
 
 def draft_curve(world: World, who: str) -> tuple[Any, ...]:
@@ -117,6 +145,8 @@ KEYS: dict[str, Key] = {
     "overviews:comparison": collaboration,
     "overviews:comparison_csv": collaboration,
     "overviews:separation": collaboration,
+    "overviews:desks": collaboration,
+    "overviews:desks_csv": collaboration,
     "overviews:measurement": measurement,
     "overviews:pairs": measurement,
     "overviews:history_chart": with_(measurement, "history", "csv"),
@@ -154,6 +184,10 @@ KEYS: dict[str, Key] = {
     "theories:download": curve,
     "theories:register": sealed,
     "theories:register_csv": sealed,
+    "theories:new_batch": measurement,
+    "theories:batch": batch,
+    "theories:submit_batch": waiting_batch,
+    "theories:discard_batch": waiting_batch,
     "assessments:new": release,
     "assessments:coordinates": release,
     "assessments:progress": running,
