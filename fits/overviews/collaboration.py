@@ -2,8 +2,12 @@
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import cached_property
 
 from django.db.models import Count, Q
+from django.urls import reverse
+from django.utils.html import format_html
+from django.utils.safestring import SafeString
 
 from core.measurements.models import Measurement
 from core.people.access import in_overview
@@ -15,6 +19,9 @@ from fits.overviews.standings import NewestCurve, Standing, by_theory, newest_cu
 from fits.reports.models import Report
 
 MOST_REPORTS = 20
+JUDGED = '<td><span class="nowrap">{} <a href="{}">rank {} of {}</a></span>{}</td>'
+NEWER = '<br><span class="quiet small">version {} not judged yet</span>'
+UNJUDGED = '<td class="quiet">{}</td>'
 
 
 @dataclass(frozen=True)
@@ -23,6 +30,12 @@ class MeasurementRow:
 
     measurement: Measurement
     newest: ReleaseSummary | None
+
+    @cached_property
+    def assessment_url(self) -> str:
+        """Where the newest assessment of that release is read; many cells lead there."""
+        newest = self.newest
+        return reverse("reports:assessment", args=[newest.assessment]) if newest and newest.assessment else ""
 
     @property
     def is_hidden(self) -> bool:
@@ -36,6 +49,15 @@ class Cell:
 
     standing: Standing | None
     newest: NewestCurve | None
+    url: str = ""  # of the assessment
+
+    @property
+    def html(self) -> SafeString:
+        """As it stands in its row. There are hundreds: a template for each would take longer than the page may."""
+        if self.standing is None:
+            return format_html(UNJUDGED, "not judged" if self.newest else "no curve")
+        newer = format_html(NEWER, self.unjudged.version) if self.unjudged else ""
+        return format_html(JUDGED, self.standing.sign, self.url, self.standing.rank, self.standing.of, newer)
 
     @property
     def unjudged(self) -> NewestCurve | None:
@@ -109,6 +131,7 @@ def _theories(
                 Cell(
                     standing=judged.get(row.measurement.pk, {}).get(theory.pk),
                     newest=newest.get((theory.pk, row.measurement.pk)),
+                    url=row.assessment_url,
                 )
                 for row in released
             ),

@@ -8,6 +8,8 @@ from dataclasses import dataclass
 
 from django.http import QueryDict
 from django.urls import reverse
+from django.utils.html import format_html
+from django.utils.safestring import SafeString
 
 from core.measurements.models import Measurement
 from core.people.access import in_overview
@@ -17,7 +19,14 @@ from fits.engine.joint import Joint, joint_bound, joint_of, joint_p_value
 from fits.overviews.comparison_choice import JOINT, NAME, Choice, choice_of
 from fits.overviews.releases import ReleaseSummary, newest_releases
 from fits.overviews.standings import Standing, by_theory, newest_curves, standings_in
+from fits.overviews.signs import INSIDE, OUTSIDE, sign_of
 from fits.reports import numbers
+
+# As text: a template that is filled for each of hundreds of cells takes longer than all else of the page.
+UNJUDGED = '<td class="quiet">{}</td>'
+JUDGED = (
+    '<td>{}<br><a class="small" href="{}">rank {} of {}</a><br><span class="quiet small">p {}</span></td>'
+)
 
 
 @dataclass(frozen=True)
@@ -35,17 +44,11 @@ class Column:
 
 @dataclass(frozen=True)
 class MatrixCell:
-    """A theory on a measurement. word: "inside" or "outside"; without a standing, why there is none."""
+    """A theory on a measurement. word: the verdict at the chosen level; without a standing, why there is none."""
 
     standing: Standing | None
     word: str
-    url: str = ""
-    rank: str = ""
-    p_value: str = ""
-
-    @property
-    def is_inside(self) -> bool:
-        return self.word == "inside"
+    html: SafeString
 
 
 @dataclass(frozen=True)
@@ -64,6 +67,11 @@ class MatrixRow:
     def judged(self) -> int:
         """m: on how many of the columns it is judged."""
         return self.joint.measurements if self.joint else 0
+
+    @property
+    def sign(self) -> SafeString:
+        """The joint verdict as shape and word."""
+        return sign_of(INSIDE if self.joint and self.joint.is_inside else OUTSIDE)
 
 
 @dataclass(frozen=True)
@@ -213,13 +221,15 @@ def _row(
 def _cell(theory: int, column: Column, submitted: Iterable[tuple[int, int]], level: float) -> MatrixCell:
     standing = column.standings.get(theory)
     if standing is None:
-        return MatrixCell(None, "not judged" if (theory, column.key) in submitted else "no curve")
+        word = "not judged" if (theory, column.key) in submitted else "no curve"
+        return MatrixCell(None, word, format_html(UNJUDGED, word))
+    word = standing.word_at(level)
     return MatrixCell(
-        standing=standing,
-        word="inside" if standing.is_inside_at(level) else "outside",
-        url=column.assessment_url,
-        rank=f"{standing.rank} of {standing.of}",
-        p_value=standing.p_value_written,
+        standing,
+        word,
+        format_html(
+            JUDGED, sign_of(word), column.assessment_url, standing.rank, standing.of, standing.p_value_written
+        ),
     )
 
 

@@ -10,6 +10,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from django.db.models import Count, F, Max, OuterRef, QuerySet, Subquery
+from django.utils.safestring import SafeString
 
 from core.people.access import in_overview, seen_by
 from core.people.models import User
@@ -18,6 +19,7 @@ from fits.assessments.models import Assessment, Verdict
 from fits.engine.ball import is_above
 from fits.engine.scales import TABLE_DRAWS
 from fits.engine.settings import DEFAULT_DRAWS
+from fits.overviews.signs import INSIDE, OFF, OUTSIDE, sign_of
 from fits.reports import numbers
 
 LEVEL = 0.95
@@ -51,20 +53,25 @@ class Standing:
     draws: int
 
     @property
-    def is_off(self) -> bool:
-        """Whether the ball admits the curve at 95 % and the scale set rejects it."""
-        return self.is_inside and self.scale_p_value <= 1.0 - LEVEL
-
-    @property
     def word(self) -> str:
         """The verdict at 95 % in words."""
-        if self.is_off:
-            return "inside, but off"
-        return "inside" if self.is_inside else "outside"
+        return self.word_at(LEVEL)
 
-    def is_inside_at(self, level: float) -> bool:
-        """Whether the exact ball set of this level holds the curve."""
-        return self.is_inside if level == LEVEL else is_above(self.p_value, level)
+    @property
+    def is_off(self) -> bool:
+        """Whether the ball admits the curve at 95 % and the scale set rejects it."""
+        return self.word == OFF
+
+    @property
+    def sign(self) -> SafeString:
+        """The verdict at 95 % as shape and word."""
+        return sign_of(self.word)
+
+    def word_at(self, level: float) -> str:
+        """The verdict at a level in words."""
+        if not (self.is_inside if level == LEVEL else is_above(self.p_value, level)):
+            return OUTSIDE
+        return INSIDE if is_above(self.scale_p_value, level) else OFF
 
     @property
     def share_of_radius(self) -> float | None:

@@ -1,0 +1,15 @@
+"""The sign of a verdict, drawn once by its template: pages write it hundreds of times."""
+
+from functools import cache
+
+from django.template.loader import render_to_string
+from django.utils.safestring import SafeString
+
+INSIDE, OFF, OUTSIDE = "inside", "inside, but off", "outside"
+
+
+@cache
+def sign_of(word: str) -> SafeString:
+    """Shape and word of "inside", "inside, but off" or "outside"."""
+    standing = {"is_off": word == OFF, "is_inside": word != OUTSIDE}
+    return render_to_string("overviews/parts/standing.html", {"standing": standing})
