@@ -137,8 +137,19 @@ def test_who_ceases_to_lead_keeps_no_way_back(
     else:
         services.hand_over(by=lead, membership=other, seen=Role.LEAD)
     assert not Invitation.objects.get().is_open
+    assert ("those that Lin Lead made as a lead", "revoked_invitation") in {
+        (about, deed) for _, deed, about in told()
+    }
     with pytest.raises(UserError, match="opens nothing"):
         services.join(user=User.objects.create_user("back@merrow.example"), invitation=for_one.invitation)
+
+
+def test_an_invitation_that_was_used_stays_so_when_its_maker_leaves(
+    collaboration: Collaboration, lead: User, second_lead: User, stranger: User, for_one: NewInvitation
+) -> None:
+    services.join(user=stranger, invitation=for_one.invitation)
+    services.leave(membership(lead, collaboration))
+    assert Invitation.objects.get().revoked_at is None
 
 
 @pytest.mark.django_db(transaction=True)

@@ -19,7 +19,7 @@ def change_role(*, by: User, membership: Membership, role: str, seen: str) -> No
     refuse_if_changed(kept, seen)
     if role == kept.role:
         return
-    give_up_lead(kept)
+    give_up_lead(kept, by=by)
     before, kept.role = kept.role, role
     kept.save(update_fields=["role"])
     record(

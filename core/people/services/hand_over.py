@@ -20,7 +20,7 @@ def hand_over(*, by: User, membership: Membership, seen: str) -> None:
     refuse_if_changed(heir, seen)
     heir.role = Role.LEAD
     heir.save(update_fields=["role"])
-    give_up_lead(own)
+    give_up_lead(own, by=by)
     own.role = Role.MEMBER
     own.save(update_fields=["role"])
     record(

@@ -4,7 +4,6 @@ from dataclasses import dataclass
 from datetime import datetime
 
 from django.db import transaction
-from django.utils import timezone
 
 from core.errors import UserError, record_fault
 from core.people.log import Deed, record
@@ -15,6 +14,7 @@ from core.people.services.rules import (
     known_address,
     known_role,
     lock,
+    open_invitations,
     people_page,
     refuse_who_is_here,
     still_lead,
@@ -75,9 +75,6 @@ def shortened(address: str) -> str:
 
 
 def _refuse_second(address: str, collaboration: Collaboration) -> None:
-    open_ones = Invitation.objects.filter(
-        collaboration=collaboration, email=address, uses=0, revoked_at=None, expires_at__gt=timezone.now()
-    )
-    if open_ones.exists():
+    if open_invitations().filter(collaboration=collaboration, email=address).exists():
         reason = f"an invitation to {address} is open already"
         raise UserError("already-invited", reason, "Revoke that one first to send another")

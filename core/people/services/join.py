@@ -1,14 +1,14 @@
 """Join a collaboration by an invitation."""
 
 from django.db import IntegrityError, transaction
-from django.db.models import F, Q
+from django.db.models import F
 from django.utils import timezone
 
 from core.errors import UserError
 from core.people.log import Deed, record
 from core.people.models import Invitation, Membership, User
 from core.people.services.invite_by_mail import shortened
-from core.people.services.rules import known_address, lock, people_page
+from core.people.services.rules import known_address, lock, open_invitations, people_page
 
 
 @transaction.atomic
@@ -56,9 +56,8 @@ def join_as_newcomer(*, invitation: Invitation, email: str, name: str, password:
 
 def _use(invitation: Invitation) -> None:
     """Count the use. Of two who use a link for one at the same moment, the condition lets one through."""
-    now = timezone.now()
-    usable = Invitation.objects.filter(Q(is_for_many=True) | Q(uses=0), revoked_at=None, expires_at__gt=now)
-    if not usable.filter(pk=invitation.pk).update(uses=F("uses") + 1, last_used_at=now):
+    still_open = open_invitations().filter(pk=invitation.pk)
+    if not still_open.update(uses=F("uses") + 1, last_used_at=timezone.now()):
         raise UserError(
             "invitation-closed", "this invitation opens nothing any more", "Ask a lead for a new one"
         )

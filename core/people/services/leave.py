@@ -12,7 +12,7 @@ def leave(membership: Membership) -> None:
     """Go; what they brought stays. The last lead cannot."""
     lock(membership.collaboration)
     kept = still_here(membership)
-    give_up_lead(kept)
+    give_up_lead(kept, by=kept.user)
     record(
         Deed.LEFT,
         who=kept.user,

@@ -13,7 +13,7 @@ def remove_member(*, by: User, membership: Membership) -> None:
     lock(membership.collaboration)
     still_lead(by, membership.collaboration)
     kept = still_here(membership)
-    give_up_lead(kept)
+    give_up_lead(kept, by=by)
     record(
         Deed.REMOVED_PERSON,
         who=by,

@@ -6,14 +6,13 @@ from django.utils import timezone
 from core.people.log import Deed, record
 from core.people.models import Invitation, User
 from core.people.services.invite_by_mail import shortened
-from core.people.services.rules import people_page
+from core.people.services.rules import open_invitations, people_page
 
 
 @transaction.atomic
 def revoke_invitation(*, by: User, invitation: Invitation) -> None:
-    """From now on nobody joins by it; revoking it again changes nothing."""
-    still_open = Invitation.objects.filter(pk=invitation.pk, revoked_at=None)
-    if not still_open.update(revoked_at=timezone.now()):
+    """From now on nobody joins by it; one that is closed already stays as it is."""
+    if not open_invitations().filter(pk=invitation.pk).update(revoked_at=timezone.now()):
         return
     whom = shortened(invitation.email) if invitation.email else invitation.label or "a link"
     record(

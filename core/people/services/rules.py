@@ -2,11 +2,13 @@
 
 from django.core.exceptions import ValidationError
 from django.core.validators import validate_email
+from django.db.models import Q, QuerySet
 from django.urls import reverse
 from django.utils import timezone
 
 from core.errors import UserError
-from core.people.models import Collaboration, Membership, Role, User
+from core.people.log import Deed, record
+from core.people.models import Collaboration, Invitation, Membership, Role, User
 
 
 def lock(collaboration: Collaboration) -> None:
@@ -53,17 +55,28 @@ def still_lead(user: User, collaboration: Collaboration) -> Membership:
     return led
 
 
-def give_up_lead(membership: Membership) -> None:
+def give_up_lead(membership: Membership, *, by: User) -> None:
     """Before a lead leaves or takes another role: another has to be there. Invitations of theirs end with it, or they
     would come back as a lead by a link of their own."""
     if membership.role != Role.LEAD:
         return
-    leads = Membership.objects.filter(collaboration=membership.collaboration_id, role=Role.LEAD)
+    collaboration = membership.collaboration
+    leads = Membership.objects.filter(collaboration=collaboration, role=Role.LEAD)
     if not leads.exclude(pk=membership.pk).exists():
         reason = f"{membership.user} is the last lead here"
         raise UserError("last-lead", reason, "Make someone else a lead first")
-    open_ones = membership.collaboration.invitations.filter(created_by=membership.user_id, revoked_at=None)
-    open_ones.update(revoked_at=timezone.now())
+    theirs = open_invitations().filter(collaboration=collaboration, created_by=membership.user_id)
+    if theirs.update(revoked_at=timezone.now()):
+        about = f"those that {membership.user} made as a lead"
+        url = people_page(collaboration)
+        record(Deed.REVOKED_INVITATION, who=by, collaboration=collaboration, about=about, url=url)
+
+
+def open_invitations() -> QuerySet[Invitation]:
+    """Those by which somebody can still join; as a condition in the database, for changes that race."""
+    return Invitation.objects.filter(
+        Q(is_for_many=True) | Q(uses=0), revoked_at=None, expires_at__gt=timezone.now()
+    )
 
 
 def people_page(collaboration: Collaboration) -> str:
