@@ -8,7 +8,7 @@ from pytest_django import DjangoCaptureOnCommitCallbacks
 
 from core.errors import UserError
 from core.measurements.models import Release
-from core.people.models import User
+from core.people.models import LogEntry, User
 from core.theories.models import Curve
 from fits.assessments import feature_parts, searches
 from fits.assessments.models import Assessment, FeaturePart, FeatureSearch
@@ -266,3 +266,15 @@ def test_a_search_that_cannot_start_leaves_the_assessment_running(
     queued.refresh_from_db()
     assert (queued.status, queued.failure_code, queued.result) == (Status.FAILED, "fault", None)
     assert not queued.feature_searches.exists()
+
+
+def test_the_log_tells_once_who_asked_for_features_and_who_cancelled(ask: Ask, lead: User) -> None:
+    search = ask((1.0, 2.0))
+    ask((1.0, 2.0))
+    for _ in range(2):
+        cancel_features(search, by=lead)
+    entries = LogEntry.objects.filter(deed__contains="features").order_by("pk")
+    assert [(entry.deed, entry.who) for entry in entries] == [
+        ("asked_features", search.requested_by),
+        ("cancelled_features", lead),
+    ]

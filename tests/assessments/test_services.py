@@ -8,7 +8,7 @@ from pytest_django import DjangoCaptureOnCommitCallbacks
 
 from core.errors import UserError
 from core.measurements.models import Release
-from core.people.models import User
+from core.people.models import LogEntry, User
 from core.theories.models import Curve
 from fits.assessments import claims
 from fits.assessments.dispatch import enqueue
@@ -143,3 +143,41 @@ def test_what_is_done_stays_done(queued: Assessment) -> None:
     Assessment.objects.filter(pk=queued.pk).update(status=Status.DONE)
     cancel_assessment(queued, by=queued.requested_by)
     assert (queued.status, queued.cancel_requested) == (Status.DONE, False)
+
+
+def test_what_is_about_to_be_cancelled_is_not_given_to_who_asks_again(
+    ask: Callable[..., Assessment], member: User
+) -> None:
+    first = ask()
+    claims.claim(first.pk)
+    cancel_assessment(first, by=member)
+    with pytest.raises(UserError) as refused:
+        ask()
+    assert refused.value.code == "being-cancelled"
+    # Its worker has looked.
+    Assessment.objects.filter(pk=first.pk).update(status=Status.CANCELLED)
+    assert ask() != first
+
+
+def test_the_log_tells_once_who_asked_and_who_cancelled(
+    ask: Callable[..., Assessment], member: User, lead: User
+) -> None:
+    assessment = ask()
+    ask()
+    for _ in range(2):
+        cancel_assessment(assessment, by=lead)
+    asked, cancelled = LogEntry.objects.order_by("pk")
+    assert [(entry.deed, entry.who) for entry in (asked, cancelled)] == [
+        ("asked_assessment", member),
+        ("cancelled_assessment", lead),
+    ]
+    assert {entry.hidden_with for entry in (asked, cancelled)} == {assessment.release.measurement}
+    assert asked.detail["curves"] == ["Parabolic floor, version 1"]
+
+
+def test_an_automatic_one_is_nobodys_deed(member: User, release: Release, curve: Curve) -> None:
+    request_assessment(
+        user=member, release=release, curves=[curve], settings=SETTINGS, seed=1, is_automatic=True
+    )
+    entry = LogEntry.objects.get(deed="asked_assessment")
+    assert (entry.who, "release 1" in entry.about) == (None, True)
