@@ -11,8 +11,10 @@ from django.utils import timezone
 from playwright.sync_api import FilePayload
 from playwright.sync_api import Page as BrowserPage
 
+from core.people.log import Deed, record
 from core.people.models import Role
 from core.people.services import invite_by_link
+from fits.talk.services import comment, remove_comment
 from tests.browser.survey import Survey
 
 
@@ -90,6 +92,44 @@ def give_two_passwords(page: BrowserPage) -> None:
     page.get_by_role("button", name="Make the account and join").click()
 
 
+def talk_about(survey: Survey) -> int:
+    """A theory that two have spoken about, one of them too soon."""
+    said = comment(
+        by=survey.member,
+        on=survey.theory,
+        words="@Lin Lead, is the third rise in\nhttps://merrow.example/tables/a-long-address-of-a-table?of=2026&and=more\n"
+        "the same?",
+    )
+    remove_comment(by=survey.lead, comment=comment(by=survey.member, on=survey.theory, words="It is not."))
+    comment(by=survey.lead, on=survey.theory, words="As far as the gauge can tell.")
+    return int(said.theory_id or 0)
+
+
+def unfold_a_removal(page: BrowserPage) -> None:
+    """Ask to remove a comment, and whom a comment can mention."""
+    page.get_by_text("Remove this comment").first.click()
+    page.get_by_text("Who can be mentioned here").click()
+
+
+def say_nothing(page: BrowserPage) -> None:
+    """Send a comment without words."""
+    page.get_by_label("Your comment").fill("  ")
+    page.get_by_role("button", name="Comment").click()
+
+
+def logged(survey: Survey) -> int:
+    """A collaboration whose log tells of something."""
+    talk_about(survey)
+    record(
+        Deed.CHANGED_ROLE,
+        who=survey.lead,
+        collaboration=survey.collaboration,
+        about="Mo Member",
+        detail={"role_before": "observer", "role": "member"},
+    )
+    return survey.collaboration.pk
+
+
 def unfold_the_numbers(page: BrowserPage) -> None:
     """Open the table behind a plot."""
     page.get_by_text("The curve’s numbers").click()
@@ -115,8 +155,14 @@ PAGES = [
     Row("home", "overviews:home"),
     Row("home-of-a-stranger", "overviews:home", who="stranger"),
     Row("collaboration", "overviews:collaboration", lambda survey: survey.collaboration.pk),
+    Row("comparison", "overviews:comparison", lambda survey: survey.collaboration.pk),
+    Row("separation", "overviews:separation", lambda survey: survey.collaboration.pk, then=compare_two),
     Row("measurement", "overviews:measurement", lambda survey: survey.measurement.pk),
+    Row("pairs", "overviews:pairs", lambda survey: survey.measurement.pk),
     Row("theory", "overviews:theory", lambda survey: survey.theory.pk),
+    Row("theory-with-comments", "overviews:theory", talk_about, then=unfold_a_removal),
+    Row("comment-with-faults", "overviews:theory", talk_about, status=400, then=say_nothing),
+    Row("log", "talk:log", logged),
     Row("new-collaboration", "people:new_collaboration"),
     Row("edit-collaboration", "people:edit_collaboration", lambda survey: survey.collaboration.pk),
     Row("people", "people:people", lambda survey: survey.collaboration.pk),

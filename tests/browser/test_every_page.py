@@ -42,6 +42,7 @@ NO_PAGES = {
     *("reports:assessment_features", "reports:report_features", "reports:shared_features"),
     *("reports:ask_features", "reports:cancel_features", "reports:features_progress"),
     *("reports:new_link", "reports:revoke"),
+    *("talk:comment_theory", "talk:comment_assessment", "talk:remove", "talk:log_csv"),
     *("theories:discard", "theories:download", "theories:submit"),
 }
 
@@ -130,6 +131,7 @@ def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None
     keys = {
         "assessments": survey.done.pk,
         "collaborations": survey.collaboration.pk,
+        "comments": 1,
         "curves": survey.curve.pk,
         "invitations": survey.collaboration.invitations.create(
             created_by=survey.lead, expires_at=timezone.now()
@@ -138,6 +140,7 @@ def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None
         "r": survey.secret,
         "releases": survey.release.pk,
         "reports": survey.report.pk,
+        "theories": survey.theory.pk,
     }
     survey.report.snapshot["features"] = features_of(stored_search(survey.done, NOTHING_FOUND, survey.member))
     survey.report.save()
