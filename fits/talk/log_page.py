@@ -103,8 +103,9 @@ def line_of(entry: LogEntry) -> LogLine:
 
 
 def in_words(detail: Mapping[str, Any]) -> str:
-    """The detail of an entry: "role: member; label: the class of May"."""
-    return "; ".join(f"{name.replace('_', ' ')}: {_value(value)}" for name, value in detail.items())
+    """The detail of an entry: "label: the class of May; role: member"."""
+    # In an order of its own: not every database keeps that in which it was written.
+    return "; ".join(f"{name.replace('_', ' ')}: {_value(value)}" for name, value in sorted(detail.items()))
 
 
 def csv_lines(entries: QuerySet[LogEntry], site: str) -> Iterator[str]:

@@ -44,7 +44,9 @@ def test_a_member_comments_and_is_led_to_the_comment(
     made = Comment.objects.get()
     assert answer.headers["Location"] == f"{theory.get_absolute_url()}#comment-{made.pk}"
     assert (made.words, made.author, made.theory) == ("Too flat\nat the end.", member, theory)
-    assert "Too flat<br>at the end." in page_of(signed_in, member, theory)
+    page = page_of(signed_in, member, theory)
+    assert "Too flat<br>at the end." in page
+    assert page.count('id="comments"') == 1
 
 
 def test_a_comment_on_an_assessment_stands_on_its_page(

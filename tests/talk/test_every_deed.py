@@ -23,7 +23,7 @@ QUIET = {
     "core/people/services/rules.py": "what the others have in common",
     "core/theories/services/discard.py": "a draft that nobody else has seen",
     "core/theories/services/draft.py": "a draft that nobody else sees",
-    "core/theories/services/draft_batch.py": "drafts that nobody else sees",
+    "core/theories/services/batch_draft.py": "drafts that nobody else sees",
 }
 
 

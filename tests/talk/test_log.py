@@ -263,7 +263,7 @@ def test_the_page_says_who_did_what_to_what(
     record(Deed.OPENED, who=None, collaboration=collaboration, about="Gauge 3")
     page = signed_in(member).get(log_of(collaboration)).content.decode()
     assert '<strong>Mo Member</strong> changed a role: <a href="/somewhere/">&lt;Obi&gt;</a>' in page
-    assert "role before: member; role: observer" in page
+    assert "role: observer; role before: member" in page
     assert "<strong>by itself</strong> opened a measurement: Gauge 3" in page
 
 
@@ -285,7 +285,7 @@ def test_the_table_is_safe_to_open_and_gives_times_in_utc(
 
 def test_details_are_put_in_words() -> None:
     detail = {"left_out": ["A", "B"], "note": "", "many": True, "seal": {"opens_at": None, "points": 40}}
-    assert in_words(detail) == "left out: A, B; note: –; many: yes; seal: opens at: –; points: 40"
+    assert in_words(detail) == "left out: A, B; many: yes; note: –; seal: opens at: –; points: 40"
 
 
 def test_an_entry_is_of_the_moment_at_which_it_is_written(collaboration: Collaboration) -> None:
