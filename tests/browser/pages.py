@@ -12,10 +12,13 @@ from playwright.sync_api import FilePayload
 from playwright.sync_api import Page as BrowserPage
 
 from core.people.log import Deed, record
-from core.people.models import Role
+from core.people.models import Role, User
 from core.people.services import invite_by_link
+from core.theories.models import Batch, Theory
+from core.theories.services import draft_batch, submit_batch
 from fits.talk.services import comment, remove_comment
-from tests.browser.survey import Survey
+from tests.browser.survey import Survey, computed, curve_of
+from tests.permissions.world import assessment_of
 
 
 @dataclass(frozen=True)
@@ -33,6 +36,13 @@ class Row:
         """Where it is."""
         key = () if self.key is None else self.key(survey)
         return reverse(self.route, args=key if isinstance(key, tuple) else (key,))
+
+
+def compare_two(page: BrowserPage) -> None:
+    """Choose two theories."""
+    page.get_by_label("The other").select_option(index=1)
+    page.get_by_role("button", name="Compare").click()
+    page.get_by_text("best: their curves are").wait_for()
 
 
 def key_of_a_new_password(survey: Survey) -> tuple[str, str]:
@@ -140,6 +150,33 @@ def unfold_the_ball(page: BrowserPage) -> None:
     page.get_by_text("Table: The ball seen from above").click()
 
 
+def a_batch(survey: Survey) -> Batch:
+    """Curves for the measurement, uploaded together: two that are accepted and one that is not."""
+    rows = [f"{0.4 + 0.03 * step:.2f},{1.5 + 0.01 * step:.2f},{1.0 + 0.02 * step:.2f}" for step in range(141)]
+    table = "\n".join(["x,Flat floor of the lake,Deep floor,Odd floor", *(f"{row}," for row in rows)])
+    return draft_batch(
+        user=survey.lead, measurement=survey.measurement, content=table.encode(), file_name="many.csv"
+    )
+
+
+def waiting_batch(survey: Survey) -> int:
+    """A measurement for which curves wait to be submitted."""
+    return a_batch(survey).measurement_id
+
+
+def desks(survey: Survey) -> int:
+    """A collaboration with two students, one of whom has submitted a curve."""
+    for name in ("Ada Able", "Bo Brief"):
+        student = User.objects.create_user(f"{name[:2]}@merrow.example", name=name)
+        survey.collaboration.memberships.create(user=student, role=Role.STUDENT)
+    theory = Theory.objects.create(
+        collaboration=survey.collaboration, name="Flat floor", submitted_by=student, desk=student
+    )
+    curve = curve_of(theory, survey.measurement, student, stretch=1.1, version=1)
+    computed(assessment_of(survey.release, curve, "desk"))
+    return survey.collaboration.pk
+
+
 PAGES = [
     Row("sign-in", "account_login", who="nobody"),
     Row("sign-up-closed", "account_signup", who="nobody"),
@@ -157,6 +194,7 @@ PAGES = [
     Row("collaboration", "overviews:collaboration", lambda survey: survey.collaboration.pk),
     Row("comparison", "overviews:comparison", lambda survey: survey.collaboration.pk),
     Row("separation", "overviews:separation", lambda survey: survey.collaboration.pk, then=compare_two),
+    Row("desks", "overviews:desks", desks),
     Row("measurement", "overviews:measurement", lambda survey: survey.measurement.pk),
     Row("pairs", "overviews:pairs", lambda survey: survey.measurement.pk),
     Row("theory", "overviews:theory", lambda survey: survey.theory.pk),
@@ -196,6 +234,9 @@ PAGES = [
     Row("new-curve", "theories:new_curve", lambda survey: survey.theory.pk),
     Row("draft-curve", "theories:curve", lambda survey: survey.draft_curve.pk, then=unfold_the_numbers),
     Row("curve", "theories:curve", lambda survey: survey.curve.pk),
+    Row("new-batch", "theories:new_batch", waiting_batch),
+    Row("batch", "theories:batch", lambda survey: a_batch(survey).pk),
+    Row("batch-submitted", "theories:batch", lambda survey: submit_batch(a_batch(survey)).pk),
     Row("assess", "assessments:new", lambda survey: survey.release.pk),
     Row("assess-with-faults", "assessments:new", lambda survey: survey.release.pk, then=ask_for_too_much),
     Row("assessment-queued", "reports:assessment", lambda survey: survey.queued.pk),

@@ -33,6 +33,7 @@ NO_PAGES = {
     *("account_confirm_login_code", "account_confirm_reauthentication_code", "account_set_password"),
     *("account_request_reauthentication_code", "account_email", "account_email_verification_sent"),
     *("account_confirm_email", "assessments:cancel", "assessments:progress", "assessments:coordinates"),
+    *("overviews:comparison_csv", "overviews:history_chart"),
     *("measurements:discard", "measurements:download", "measurements:publish"),
     *("people:change_role", "people:remove", "people:leave"),
     *("people:new_invitation", "people:mail_invitation", "people:revoke_invitation"),
@@ -44,6 +45,7 @@ NO_PAGES = {
     *("reports:new_link", "reports:revoke"),
     *("talk:comment_theory", "talk:comment_assessment", "talk:remove", "talk:log_csv"),
     *("theories:discard", "theories:download", "theories:submit"),
+    *("theories:discard_batch", "theories:submit_batch", "overviews:desks_csv"),
 }
 
 

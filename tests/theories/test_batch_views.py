@@ -48,7 +48,7 @@ def test_a_member_uploads_looks_and_submits(release: Release, member: User, sign
     for words in (
         "Submit the 2 accepted",
         "a new theory",
-        "line 2, column 4 (Odd floor)",
+        "Line 2, column 4 (Odd floor)",
         "Over the data of release 1",
     ):
         assert words in page
