@@ -13,7 +13,7 @@ from core.measurements.models import Measurement, Release
 from core.measurements.reading.limits import CHILD_WALL_SECONDS, MAXIMUM_ROWS
 from core.people.models import User
 from core.single_machine import web_server
-from core.theories.models import Curve, Theory
+from core.theories.models import Batch, Curve, Theory
 from tests.real_processes import BASE_DIR
 from tests.real_web_server import Server, real_web_server
 
@@ -63,6 +63,15 @@ def zip_bomb() -> bytes:
     buffer = io.BytesIO()
     with zipfile.ZipFile(buffer, "w", zipfile.ZIP_DEFLATED) as archive:
         archive.writestr("lake.csv", b"0" * (100 * MEGABYTE))
+    return buffer.getvalue()
+
+
+def hundred_thousand_files() -> bytes:
+    """An archive of many empty files."""
+    buffer = io.BytesIO()
+    with zipfile.ZipFile(buffer, "w") as archive:
+        for number in range(100_000):
+            archive.writestr(zipfile.ZipInfo(f"{number}.csv"), b"")
     return buffer.getvalue()
 
 
@@ -167,6 +176,28 @@ def test_a_hostile_curve_is_refused_on_the_page_and_nothing_is_kept(
     assert answer.status == 400
     assert "is not text" in facts(answer.page)
     assert not Curve.objects.exists()
+
+
+@pytest.mark.usefixtures("unharmed")
+@pytest.mark.parametrize(
+    ("make", "words"),
+    [
+        (zip_bomb, "holds more than the 50 MB allowed, unpacked"),
+        (hundred_thousand_files, "holds more than the 500 curves allowed"),
+        (lambda: b"PK\x03\x04" + bytes(range(256)) * 1000, "is no zip archive that can be read"),
+    ],
+    ids=["zip bomb", "100 000 files", "nonsense"],
+)
+def test_a_hostile_archive_of_curves_is_refused_on_the_page_and_nothing_is_kept(
+    make: Callable[[], bytes], words: str, server: Server, measurement: Measurement, lead: User
+) -> None:
+    address = reverse("theories:new_batch", args=[measurement.pk])
+    answer = server.ask(address, lead, {"table": make()})
+    assert answer.status == 400
+    told = facts(answer.page)
+    assert words in told
+    assert f"File{SHOWN_NAME}" in told
+    assert not Batch.objects.exists()
 
 
 @pytest.mark.usefixtures("unharmed")
