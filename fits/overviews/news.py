@@ -1,5 +1,5 @@
 """What happened in someone's collaborations, as far as they see it: releases published or withdrawn, sealed
-measurements opened, assessments done, reports written."""
+measurements opened, assessments done, reports frozen, comments that mention them."""
 
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
@@ -12,11 +12,13 @@ from django.urls import reverse
 from django.utils import timezone
 
 from core.measurements.models import Measurement, Release
-from core.people.access import in_overview
+from core.people.access import in_overview, seen_by
 from core.people.models import User
 from fits.assessments.models import Assessment
 from fits.overviews.reports_seen import reports_seen
 from fits.overviews.standings import Standing, standings_in
+from fits.reports.models import Report
+from fits.talk.models import Comment
 
 # Of each kind so many a collaboration, newest first; what is older stands on the pages themselves.
 MOST = 20
@@ -65,10 +67,10 @@ class Digest:
 
 
 def digests(reader: User, collaborations: Iterable[int], since: datetime | None) -> dict[int, Digest]:
-    """The digest of each collaboration; everything is new to someone who never looked. Six queries."""
+    """The digest of each collaboration; everything is new to someone who never looked. Seven queries."""
     keys = list(collaborations)
     found: dict[int, list[News]] = {key: [] for key in keys}
-    kinds = (_releases, _withdrawals, _openings, _assessments, _reports)
+    kinds = (_releases, _withdrawals, _openings, _assessments, _reports, _mentions)
     for kind in (found_of(reader, keys) for found_of in kinds):
         for collaboration, news in kind:
             found[collaboration].append(news)
@@ -181,13 +183,13 @@ def _assessments(reader: User, collaborations: list[int]) -> list[tuple[int, New
 
 
 def _reports(reader: User, collaborations: list[int]) -> list[tuple[int, News]]:
-    written = reports_seen(reader, collaborations)
-    rows = _newest(written, "collaboration", "created_at", "title", "author__name", "author__email")
+    frozen = reports_seen(reader, collaborations).filter(state=Report.State.FROZEN)
+    rows = _newest(frozen, "collaboration", "frozen_at", "title", "author__name", "author__email")
     return [
         (
             row["collaboration"],
             News(
-                at=row["created_at"],
+                at=row["frozen_at"],
                 what=f"Report: {row['title']}",
                 url=reverse("reports:report", args=[row["pk"]]),
                 where="",
@@ -197,6 +199,35 @@ def _reports(reader: User, collaborations: list[int]) -> list[tuple[int, News]]:
         )
         for row in rows
     ]
+
+
+def _mentions(reader: User, collaborations: list[int]) -> list[tuple[int, News]]:
+    naming = Comment.objects.filter(mentions__user=reader, removed_at=None, collaboration__in=collaborations)
+    rows = _newest(
+        seen_by(naming.exclude(author=reader), reader),
+        "collaboration",
+        "created_at",
+        "author__name",
+        "author__email",
+        "theory",
+        "theory__name",
+        "assessment",
+        "measurement__name",
+    )
+    found = []
+    for row in rows:
+        route, key = ("overviews:theory", "theory") if row["theory"] else ("reports:assessment", "assessment")
+        url = reverse(route, args=[row[key]])
+        news = News(
+            at=row["created_at"],
+            what="You are mentioned",
+            url=f"{url}#comment-{row['pk']}",
+            where=row["theory__name"] or row["measurement__name"],
+            where_url=url,
+            detail=f"by {row['author__name'] or row['author__email'].partition('@')[0]}",
+        )
+        found.append((row["collaboration"], news))
+    return found
 
 
 def _newest(rows: QuerySet[Row], collaboration: str, moment: str, *fields: str) -> list[Mapping[str, Any]]:

@@ -87,7 +87,7 @@ def digest_of(reader: User, window: Window) -> Digest:
         _part("Releases published", _published(reader, window), "published_at", _release),
         _part("Releases withdrawn", _withdrawn(reader, window), "withdrawn_at", _release),
         _assessed(reader, window),
-        _part("Reports", _reports(reader, window), "created_at", _report),
+        _part("Reports", _reports(reader, window), "frozen_at", _report),
         _part("Who joined", _joined(reader, window), "joined_at", _joining),
     )
     return Digest(tuple(part for part in parts if part.items))
@@ -170,7 +170,11 @@ def _release(release: Release) -> Item:
 
 
 def _assessed(reader: User, window: Window) -> Part:
-    done = Assessment.objects.filter(window.of("ended_at"), status=Assessment.Status.DONE)
+    done = Assessment.objects.filter(
+        window.of("ended_at"),
+        status=Assessment.Status.DONE,
+        release__state=Release.State.PUBLISHED,
+    )
     rows = in_overview(done, reader).select_related("release__measurement__collaboration")
     few = rows.only(
         "release__number", "release__measurement__name", "release__measurement__collaboration__name"
@@ -191,9 +195,9 @@ def _assessed(reader: User, window: Window) -> Part:
 
 def _reports(reader: User, window: Window) -> QuerySet[Report]:
     readers = Membership.objects.filter(user=reader, role__in=PERMITTED[Action.READ_REPORTS])
-    rows = Report.objects.filter(window.of("created_at"), collaboration__in=readers.values("collaboration"))
-    rows = in_overview(rows.exclude(author=reader), reader)
-    return rows.select_related("collaboration", "author").defer("snapshot", "words")
+    frozen = Report.objects.filter(window.of("frozen_at"), state=Report.State.FROZEN)
+    rows = in_overview(frozen.filter(collaboration__in=readers.values("collaboration")), reader)
+    return rows.exclude(author=reader).select_related("collaboration", "author").defer("words", "words_html")
 
 
 def _report(report: Report) -> Item:

@@ -160,6 +160,22 @@ def test_at_a_desk_the_leads_and_the_student_can_be_mentioned(
     assert "<li>@Mo Member</li>" not in page
 
 
+def test_the_home_page_tells_whom_a_comment_mentions_and_nobody_else(
+    signed_in: SignedIn, lead: User, member: User, observer: User, theory: Theory, sealed: Assessment
+) -> None:
+    made = comment(by=lead, on=theory, words="@Mo Member, @Obi Observer")
+    address = f"{theory.get_absolute_url()}#comment-{made.pk}"
+    home = reverse("overviews:home")
+    assert address in signed_in(member).get(home).content.decode()
+    assert "by Lin Lead" in signed_in(member).get(home).content.decode()
+    assert "You are mentioned" not in signed_in(lead).get(home).content.decode()
+    # A role that no longer sees it is told no longer.
+    Membership.objects.filter(user=observer).update(role=Role.STUDENT)
+    assert "You are mentioned" not in signed_in(observer).get(home).content.decode()
+    remove_comment(by=lead, comment=made)
+    assert "You are mentioned" not in signed_in(member).get(home).content.decode()
+
+
 # ---- Removing ----
 
 

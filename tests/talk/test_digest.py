@@ -20,6 +20,7 @@ from core.theories.models import Curve, Theory
 from core.worker import app
 from fits.assessments.models import Assessment
 from fits.overviews.standings import standings_in
+from fits.reports.models import Report
 from fits.talk import sending
 from fits.talk.digest import MOST, Digest, Window, digest_of
 from fits.talk.models import Comment
@@ -145,6 +146,19 @@ def test_an_opening_is_told(
     assert "Measurements opened" in headings(told_to(member))
     assert "Measurements opened" in headings(told_to(second_lead))
     assert ("Measurements opened" in headings(told_to(lead))) is not by_word
+
+
+def test_a_report_is_told_once_it_is_frozen_to_those_who_read_reports(
+    collaboration: Collaboration, lead: User, member: User, observer: User, student: User
+) -> None:
+    report = Report.objects.create(collaboration=collaboration, title="The floor", author=lead)
+    assert headings(told_to(member)) == ["Who joined"]
+    Report.objects.filter(pk=report.pk).update(state=Report.State.FROZEN, frozen_at=timezone.now())
+    for reader in (member, observer):
+        assert headings(told_to(reader)) == ["Reports", "Who joined"]
+        assert "“The floor” by Lin Lead" in words_of(told_to(reader))
+    for reader in (student, lead):
+        assert headings(told_to(reader)) == ["Who joined"]
 
 
 def test_of_many_the_newest_are_told_and_the_others_counted(lead: User, member: User, theory: Theory) -> None:
