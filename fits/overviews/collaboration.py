@@ -6,7 +6,7 @@ from functools import cached_property
 
 from django.db.models import Count, Q
 from django.urls import reverse
-from django.utils.html import format_html
+from django.utils.html import format_html, format_html_join
 from django.utils.safestring import SafeString
 
 from core.measurements.models import Measurement
@@ -75,6 +75,11 @@ class TheoryRow:
     curves: int
     cells: tuple[Cell, ...]
 
+    @property
+    def cells_html(self) -> SafeString:
+        """Its cells, one after the other."""
+        return format_html_join("", "{}", ((cell.html,) for cell in self.cells))
+
 
 @dataclass(frozen=True)
 class CollaborationPage:
@@ -102,9 +107,9 @@ def collaboration_page(collaboration: Collaboration, reader: User) -> Collaborat
         measurements=rows,
         theories=_theories(collaboration, reader, [row for row in rows if row.newest]),
         reports=tuple(
-            reports.only("title", "created_at", "collaboration", "author__name", "author__email")[
-                :MOST_REPORTS
-            ]
+            reports.only(
+                "title", "state", "created_at", "frozen_at", "collaboration", "author__name", "author__email"
+            )[:MOST_REPORTS]
         ),
         people=tuple(people),
     )
@@ -136,5 +141,5 @@ def _theories(
                 for row in released
             ),
         )
-        for theory in theories.annotate(submitted=submitted)
+        for theory in theories.annotate(submitted=submitted).order_by("name", "pk")
     )

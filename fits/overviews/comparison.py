@@ -1,6 +1,6 @@
 """Theories × measurements on the newest releases, with what the measurements say jointly.
 
-The page holds hundreds of cells: what they show is made once here, so that the template only writes it.
+The page holds hundreds of cells: nothing is looked up or reversed for each of them.
 """
 
 from collections.abc import Iterable, Mapping, Sequence
@@ -8,7 +8,6 @@ from dataclasses import dataclass
 
 from django.http import QueryDict
 from django.urls import reverse
-from django.utils.html import format_html
 from django.utils.safestring import SafeString
 
 from core.measurements.models import Measurement
@@ -17,16 +16,10 @@ from core.people.models import Collaboration, User
 from core.theories.models import Theory
 from fits.engine.joint import Joint, joint_bound, joint_of, joint_p_value
 from fits.overviews.comparison_choice import JOINT, NAME, Choice, choice_of
+from fits.overviews.matrix_html import cell_html, joint_html, row_html
 from fits.overviews.releases import ReleaseSummary, newest_releases
 from fits.overviews.standings import Standing, by_theory, newest_curves, standings_in
-from fits.overviews.signs import INSIDE, OUTSIDE, sign_of
 from fits.reports import numbers
-
-# As text: a template that is filled for each of hundreds of cells takes longer than all else of the page.
-UNJUDGED = '<td class="quiet">{}</td>'
-JUDGED = (
-    '<td>{}<br><a class="small" href="{}">rank {} of {}</a><br><span class="quiet small">p {}</span></td>'
-)
 
 
 @dataclass(frozen=True)
@@ -48,7 +41,7 @@ class MatrixCell:
 
     standing: Standing | None
     word: str
-    html: SafeString
+    url: str = ""  # of the assessment
 
 
 @dataclass(frozen=True)
@@ -69,9 +62,11 @@ class MatrixRow:
         return self.joint.measurements if self.joint else 0
 
     @property
-    def sign(self) -> SafeString:
-        """The joint verdict as shape and word."""
-        return sign_of(INSIDE if self.joint and self.joint.is_inside else OUTSIDE)
+    def html(self) -> SafeString:
+        """As it stands in the table."""
+        joint = joint_html(self.joint, self.p_value, self.entry_level)
+        cells = (cell_html(cell.standing, cell.word, cell.url) for cell in self.cells)
+        return row_html(self.url, self.name, joint, cells)
 
 
 @dataclass(frozen=True)
@@ -221,16 +216,8 @@ def _row(
 def _cell(theory: int, column: Column, submitted: Iterable[tuple[int, int]], level: float) -> MatrixCell:
     standing = column.standings.get(theory)
     if standing is None:
-        word = "not judged" if (theory, column.key) in submitted else "no curve"
-        return MatrixCell(None, word, format_html(UNJUDGED, word))
-    word = standing.word_at(level)
-    return MatrixCell(
-        standing,
-        word,
-        format_html(
-            JUDGED, sign_of(word), column.assessment_url, standing.rank, standing.of, standing.p_value_written
-        ),
-    )
+        return MatrixCell(None, "not judged" if (theory, column.key) in submitted else "no curve")
+    return MatrixCell(standing, standing.word_at(level), column.assessment_url)
 
 
 def _is_kept(row: MatrixRow, choice: Choice, columns: int) -> bool:

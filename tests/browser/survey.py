@@ -110,6 +110,7 @@ def computed(assessment: Assessment) -> Assessment:
     """The assessment with its result, computed here rather than by a worker."""
     outcome = pipeline.compute(assessment, lambda stage, share: None)
     assessment.result, assessment.detail = outcome.result, outcome.detail
+    assessment.radius, assessment.separations = outcome.radius, outcome.separations
     assessment.status, assessment.stage = Assessment.Status.DONE, Assessment.Stage.ENDED
     assessment.started_at = assessment.ended_at = timezone.now()
     assessment.engine_version = outcome.result["engine"]

@@ -12,7 +12,7 @@ from core.measurements.models import Measurement, Release
 from core.people.models import Collaboration, Membership, Role, User
 from core.theories.models import Curve, Theory
 from fits.assessments.models import Assessment, Verdict
-from fits.reports.models import Report
+from fits.reports.models import Report, ReportPart
 
 SETTINGS = {"levels": [0.67, 0.9, 0.95, 0.99], "shrinkage": "monotone", "draws": 2000}
 
@@ -158,17 +158,21 @@ class Maker:
         )
         return assessment
 
-    def report(self, assessment: Assessment, title: str, created_at: datetime | None = None) -> Report:
-        """A report of an assessment."""
-        report = Report.objects.create(
-            collaboration=assessment.release.measurement.collaboration,
-            assessment=assessment,
-            title=title,
-            snapshot={},
-            author=self.lead,
+    def report(self, assessment: Assessment, title: str, frozen_at: datetime | None = None) -> Report:
+        """A frozen report of an assessment."""
+        report = self.draft_report(assessment, title)
+        Report.objects.filter(pk=report.pk).update(
+            state=Report.State.FROZEN, frozen_at=frozen_at or timezone.now()
         )
-        if created_at:
-            Report.objects.filter(pk=report.pk).update(created_at=created_at)
+        report.refresh_from_db()
+        return report
+
+    def draft_report(self, assessment: Assessment, title: str) -> Report:
+        """A report that is being written."""
+        report = Report.objects.create(
+            collaboration=assessment.release.measurement.collaboration, title=title, author=self.lead
+        )
+        ReportPart.objects.create(report=report, order=1, assessment=assessment)
         return report
 
 

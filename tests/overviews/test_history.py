@@ -155,9 +155,8 @@ def test_a_line_a_theory_in_radii_and_in_entry_levels(
     drawn = {(line.label, line.panel): line.y for line in lines if line.label in {"Flat floor"}}
     # Distances of 0.5 with a radius of 0.5.
     assert drawn[("Flat floor", 0)] == (1.0, 1.0)
-    assert [line.y for line in lines if line.panel == 1 and line.y[0] == pytest.approx(0.7)] == [
-        (pytest.approx(0.7), pytest.approx(0.999))
-    ]
+    [levels] = [line.y for line in lines if line.panel == 1 and line.y[1] > 0.99]
+    assert levels == pytest.approx((0.7, 0.999))
     assert {line.y for line in lines if line.label == "edge of the 95 % set" or not line.label} >= {
         (1.0, 1.0),
         (0.95, 0.95),

@@ -83,7 +83,7 @@ def test_releases_assessments_and_reports_stand_newest_first(
 ) -> None:
     make.release(release.measurement, 2, published_at=ago(3))
     assessment = make.assessment(release, {curve: 0.4}, ended_at=ago(2))
-    make.report(assessment, "What the survey says", created_at=ago(1))
+    make.report(assessment, "What the survey says", frozen_at=ago(1))
     [news] = look(member)
     assert [item.what for item in news.digest.new] == [
         "Release 1",
