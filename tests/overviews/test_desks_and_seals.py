@@ -138,23 +138,6 @@ def test_data_and_verdicts_of_a_sealed_measurement_change_no_page(
     assert pages_of(client, sealed, *theories) == before
 
 
-def test_a_report_on_what_is_sealed_is_sealed_with_it(
-    signed_in: SignedIn, make: Maker, member: User, collaboration: Collaboration, curve: Curve
-) -> None:
-    sealed = make.sealed()
-    assessment = make.assessment(make.release(sealed, 1), {make.curve(curve.theory, sealed): 0.4})
-    make.report(assessment, "The flat floor is out")
-    client = signed_in(member)
-
-    def pages() -> str:
-        found = (client.get(address) for address in ("/", collaboration.get_absolute_url()))
-        return " ".join(page.content.decode() for page in found)
-
-    assert "The flat floor is out" not in pages()
-    Measurement.objects.filter(pk=sealed.pk).update(opened_at=timezone.now())
-    assert "The flat floor is out" in pages()
-
-
 @pytest.mark.parametrize("role", Role)
 def test_a_draft_report_is_for_leads_alone_and_no_news(
     signed_in: SignedIn, make: Maker, release: Release, curve: Curve, role: Role

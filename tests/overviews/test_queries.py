@@ -87,7 +87,7 @@ def fill(make: Maker, release: Release, curve: Curve, desk: User | None, reader:
         make.curve(curve.theory, release.measurement, None, by=reader)
 
 
-@pytest.mark.parametrize("role", Role)
+@pytest.mark.parametrize("role", [Role.LEAD, Role.STUDENT, Role.OBSERVER])
 def test_queries_do_not_grow_with_rows(
     signed_in: SignedIn,
     lead: User,

@@ -8,7 +8,7 @@ from django.test import Client
 from django.urls import reverse
 
 from core.measurements.models import Measurement, Release
-from core.people.models import Collaboration, User
+from core.people.models import Collaboration, Role, User
 from core.theories.models import Curve, Theory
 from tests.overviews.conftest import Maker
 
@@ -104,3 +104,43 @@ def test_a_theory_is_offered_for_editing_to_who_added_it_and_to_leads(
     assert edit in signed_in(lead).get(address).content.decode()
     Theory.objects.filter(pk=theory.pk).update(submitted_by=lead)
     assert edit not in signed_in(member).get(address).content.decode()
+
+
+@pytest.mark.parametrize(
+    ("role", "offered"),
+    [
+        (
+            Role.LEAD,
+            {"overviews:comparison", "people:people", "overviews:desks", "talk:log", "reports:reports"},
+        ),
+        (Role.MEMBER, {"overviews:comparison", "people:people", "talk:log", "reports:reports"}),
+        (Role.OBSERVER, {"overviews:comparison", "people:people", "talk:log", "reports:reports"}),
+        (Role.STUDENT, {"overviews:comparison", "people:people"}),
+    ],
+)
+def test_a_collaboration_leads_where_its_reader_may_go(
+    signed_in: SignedIn, make: Maker, collaboration: Collaboration, role: Role, offered: set[str]
+) -> None:
+    reader = User.objects.create_user("reader@merrow.example")
+    make.joined(reader, role)
+    page = signed_in(reader).get(collaboration.get_absolute_url()).content.decode()
+    ways = ("overviews:comparison", "people:people", "overviews:desks", "talk:log", "reports:reports")
+    addresses = {way: f'href="{reverse(way, args=[collaboration.pk])}"' for way in ways}
+    assert {way for way, address in addresses.items() if address in page} == offered
+
+
+def test_a_lead_may_withdraw_a_release_that_is_not_withdrawn(
+    signed_in: SignedIn, lead: User, member: User, make: Maker, release: Release
+) -> None:
+    address, withdraw = (
+        release.measurement.get_absolute_url(),
+        reverse("measurements:withdraw", args=[release.pk]),
+    )
+    assert withdraw in signed_in(lead).get(address).content.decode()
+    assert withdraw not in signed_in(member).get(address).content.decode()
+    make.withdrawn(release, "The clock ran slow")
+    page = signed_in(lead).get(address).content.decode()
+    assert withdraw not in page
+    assert "Every release is withdrawn." in page
+    assert "The clock ran slow" in page
+    assert reverse("assessments:new", args=[release.pk]) not in page
