@@ -11,7 +11,7 @@ os.environ.setdefault("DJANGO_SETTINGS_MODULE", "core.settings")
 
 app = Celery("inradius")
 app.config_from_object("django.conf:settings", namespace="CELERY")
-app.autodiscover_tasks(["fits.assessments", "fits.talk"])
+app.autodiscover_tasks(["fits.assessments", "fits.reports", "fits.talk"])
 
 
 @worker_init.connect  # type: ignore[untyped-decorator]

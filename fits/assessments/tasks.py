@@ -32,7 +32,7 @@ def run_assessment(pk: int) -> None:
     lease = claims.claim(pk)
     if lease is None:
         return
-    with _ending(lease, f"computing assessment {pk}"):
+    with ending(lease, f"computing assessment {pk}"):
         assessment = Assessment.objects.get(pk=pk)
         outcome = pipeline.compute(assessment, claims.Heartbeat(lease))
         with transaction.atomic():
@@ -52,7 +52,7 @@ def run_feature_part(pk: int) -> None:
         return
     parts = FeaturePart.objects.select_related("search__assessment__release__measurement")
     part = parts.defer("search__assessment__result", "search__assessment__detail").get(pk=pk)
-    with _ending(lease, f"computing part {pk}, {part}"):
+    with ending(lease, f"computing part {pk}, {part}"):
         result = feature_parts.compute(part, leases.Heartbeat(lease))
         searches.finish(lease, part, result)
     searches.settle(pk=part.search_id)
@@ -60,7 +60,7 @@ def run_feature_part(pk: int) -> None:
 
 
 @contextlib.contextmanager
-def _ending(lease: Lease[Any], doing: str) -> Iterator[None]:
+def ending(lease: Lease[Any], doing: str) -> Iterator[None]:
     """See to it that the job ends, whatever its computation raises."""
     try:
         yield

@@ -15,20 +15,21 @@ class RouteAddresses:
     kind: str
     key: int | str
     search: int | None = None  # the search for features that is shown, where there may be several
+    part: int | None = None  # the page of a report, where it has several
 
     def chart(self, figure: Figure, form: str) -> str:
         """The chart as "svg" or "csv", under the level and curve that it has chosen."""
         path = reverse(f"reports:{self.kind}_chart", args=[self.key, figure.name, form])
-        asked = {"level": figure.level, "curve": figure.curve} | self._search()
+        asked = {"level": figure.level, "curve": figure.curve} | self._which()
         return f"{path}?{urlencode(asked)}"
 
     def result_json(self) -> str:
         """The whole result."""
-        return reverse(f"reports:{self.kind}_json", args=[self.key])
+        return self._with_which(reverse(f"reports:{self.kind}_json", args=[self.key]))
 
     def ranking_csv(self) -> str:
         """The ranking table."""
-        return reverse(f"reports:{self.kind}_csv", args=[self.key])
+        return self._with_which(reverse(f"reports:{self.kind}_csv", args=[self.key]))
 
     def explained(self) -> str:
         """The page that explains words and notes."""
@@ -36,8 +37,13 @@ class RouteAddresses:
 
     def features(self, name: str) -> str:
         """A file of the features."""
-        path = reverse(f"reports:{self.kind}_features", args=[self.key, name])
-        return f"{path}?{urlencode(self._search())}" if self.search else path
+        return self._with_which(reverse(f"reports:{self.kind}_features", args=[self.key, name]))
 
-    def _search(self) -> dict[str, int]:
-        return {"search": self.search} if self.search else {}
+    def _with_which(self, path: str) -> str:
+        which = self._which()
+        return f"{path}?{urlencode(which)}" if which else path
+
+    def _which(self) -> dict[str, int]:
+        """What of several is meant."""
+        meant = {"search": self.search, "part": self.part}
+        return {name: key for name, key in meant.items() if key}

@@ -29,6 +29,8 @@ def ranking_csv(snapshot: Snapshot) -> str:
     """One row for each curve: everything of its verdict."""
     levels = snapshot.levels
     kinds = ("exact", "published", "calibrated", "scales")
+    # Where some are not shown, their number says what the ranks are among.
+    judged = (len(snapshot.curves) + snapshot.hidden,) if snapshot.hidden else ()
     columns = (
         "rank",
         "curve",
@@ -44,6 +46,7 @@ def ranking_csv(snapshot: Snapshot) -> str:
         "worst_scale_p_value",
         "interpolation_error",
         *(f"{kind}_{level}" for kind in kinds for level in levels),
+        *("curves_judged" for _ in judged),
     )
     rows = []
     for curve in snapshot.curves:
@@ -65,6 +68,7 @@ def ranking_csv(snapshot: Snapshot) -> str:
                 worst["p_value"],
                 curve["interpolation_error"],
                 *("inside" if sets[kind][level] else "outside" for kind in kinds for level in levels),
+                *judged,
             )
         )
     return csv_text(columns, rows)

@@ -1,4 +1,4 @@
-"""What is asked for on the pages of results and reports."""
+"""What is asked for on the pages of results and of frozen reports."""
 
 import math
 import re
@@ -9,19 +9,6 @@ from django import forms
 from django.utils import timezone
 
 from fits.assessments.models import Assessment
-from fits.reports.models import Report
-
-
-class ReportForm(forms.ModelForm):  # type: ignore[type-arg]
-    """Title and words of a report."""
-
-    class Meta:
-        model = Report
-        fields = ("title", "words")
-        labels = {"words": "Your words"}  # noqa: RUF012
-        help_texts = {  # noqa: RUF012
-            "words": "Plain text, shown above the result: what was asked, and what you make of the answer."
-        }
 
 
 class WindowsForm(forms.Form):
@@ -78,7 +65,7 @@ class LinkForm(forms.Form):
         label="For whom",
         max_length=80,
         required=False,
-        help_text="So that you know later which link to revoke.",
+        help_text="So that you know later which link to revoke. Members read it in the log.",
     )
     days = forms.TypedChoiceField(
         label="Open for",
@@ -92,8 +79,25 @@ class LinkForm(forms.Form):
         ),
         initial=30,
     )
+    passphrase = forms.CharField(
+        min_length=8,
+        max_length=200,
+        required=False,
+        strip=False,
+        help_text="Asked for when the link is opened. At least eight characters; tell it by another way than the link. "
+        "It cannot be looked up later.",
+        widget=forms.PasswordInput(attrs={"autocomplete": "new-password"}),
+    )
 
     def expires_at(self) -> datetime | None:
         """The moment from which the link no longer opens the report."""
         days: Any = self.cleaned_data["days"]
         return timezone.now() + timedelta(days=days) if days else None
+
+
+class PassphraseForm(forms.Form):
+    """What opens a link that is not open to all who hold it."""
+
+    passphrase = forms.CharField(
+        max_length=200, strip=False, widget=forms.PasswordInput(attrs={"autocomplete": "current-password"})
+    )

@@ -135,6 +135,7 @@ def result_page(
         "explained": addresses.explained(),
         "nouns": words.nouns(snapshot),
         "heading": _heading(snapshot),
+        "shown_words": words.shown_words(snapshot),
     }
 
 

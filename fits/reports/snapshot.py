@@ -35,6 +35,11 @@ class Snapshot:
         }
 
     @property
+    def hidden(self) -> int:
+        """How many curves were judged and are not shown."""
+        return int(self.context.get("hidden") or 0)
+
+    @property
     def levels(self) -> tuple[str, ...]:
         """Level keys, increasing: "0.67", "0.9", …"""
         return tuple(level_key(radius["level"]) for radius in self.result["radii"])

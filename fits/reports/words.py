@@ -1,33 +1,58 @@
 """The finding in one sentence, made from the numbers: never vaguer and never bolder than they are."""
 
 from collections.abc import Sequence
+from itertools import pairwise
 
 from fits.reports import numbers
 from fits.reports.snapshot import Document, Snapshot
 
 
 def finding(snapshot: Snapshot, level: str) -> str:
-    """One sentence: how many stay inside at this level, which is closest, and what is unsettled about that."""
+    """One sentence: how many stay inside at this level, which is closest, and what is unsettled about that. Where some
+    curves are not shown it speaks of those that are, and says so."""
     inside = [curve for curve in snapshot.curves if snapshot.inside(curve)[level]]
     total = len(snapshot.curves)
     one, many = nouns(snapshot)
+    shown, these = "", ""
+    if hidden := snapshot.hidden:
+        one, many = f"{one} shown", f"{many} shown"
+        shown, these = f", of {total + hidden} judged,", " of these"
     where = f"the {numbers.level_words(level)} set of {data_name(snapshot)}"
     first = snapshot.curves[0]
+    name = f"{first['name']}, rank {first['rank']} of {total + hidden}" if hidden else first["name"]
     at = f"{numbers.significant(first['distance'])} error bars from the fit"
     if total == 1:
         verb = "stays inside" if inside else "is outside"
-        return f"The one {one}, {first['name']}, {verb} {where}, at {at}{_broad(snapshot, inside, level)}."
+        return (
+            f"The one {one}{shown or ','} {name}, {verb} {where}, at {at}{_broad(snapshot, inside, level)}."
+        )
     if not inside:
-        start = f"None of {total} {many} stays inside {where}"
+        start = f"None of the {total} {many}{shown}" if shown else f"None of {total} {many}"
+        start += f" stays inside {where}"
     elif len(inside) == total:
-        start = f"All {total} {many} stay inside {where}, which rules none of them out"
+        start = (
+            f"All {total} {many}{shown} stay inside {where}, which rules none of {these[4:] or 'them'} out"
+        )
     else:
-        start = f"Of {total} {many}, {len(inside)} {'stays' if len(inside) == 1 else 'stay'} inside {where}"
-    return f"{start}{_broad(snapshot, inside, level)}; the closest is {first['name']}, at {at}{_order(snapshot)}."
+        start = f"Of {'the ' if shown else ''}{total} {many}{shown or ','} {len(inside)} "
+        start += f"{'stays' if len(inside) == 1 else 'stay'} inside {where}"
+    broad = _broad(snapshot, inside, level)
+    return f"{start}{broad}; the closest{these} is {name}, at {at}{_order(snapshot)}."
+
+
+def shown_words(snapshot: Snapshot) -> str:
+    """How many of the curves that were judged are shown; empty where all are."""
+    if not snapshot.hidden:
+        return ""
+    shown, total = len(snapshot.curves), len(snapshot.curves) + snapshot.hidden
+    _, many = nouns(snapshot)
+    return f"{shown} of the {total} {many} of this assessment are shown; ranks are among all {total}."
 
 
 def nouns(snapshot: Snapshot) -> tuple[str, str]:
     """Theories, where each curve is known to be of another one; else curves."""
+    if known := snapshot.context.get("nouns"):
+        return known[0], known[1]
     theories = [snapshot.origin(name).get("theory") for name in snapshot.names]
     if all(theories) and len(set(theories)) == len(theories):
         return "theory", "theories"
@@ -60,9 +85,14 @@ def _broad(snapshot: Snapshot, inside: Sequence[Document], level: str) -> str:
 
 def _order(snapshot: Snapshot) -> str:
     """Whether the data settle who is first."""
-    pairs = snapshot.detail["neighbours"]
+    settled = {(pair["first"], pair["second"]): pair["settled"] for pair in snapshot.detail["neighbours"]}
     unsettled = 0
-    while unsettled < len(pairs) and not pairs[unsettled]["settled"]:
+    for pair in pairwise(snapshot.names):
+        # Between these two stands one that is not shown: whether their own order is settled was not asked.
+        if pair not in settled and not unsettled:
+            return ", but whether the data settle the order of the first two shown was not judged"
+        if settled.get(pair, True):
+            break
         unsettled += 1
     if not unsettled:
         return ""

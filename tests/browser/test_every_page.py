@@ -144,8 +144,9 @@ def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None
         "reports": survey.report.pk,
         "theories": survey.theory.pk,
     }
-    survey.report.snapshot["features"] = features_of(stored_search(survey.done, NOTHING_FOUND, survey.member))
-    survey.report.save()
+    part = survey.report.parts.get()
+    found = features_of(stored_search(survey.done, NOTHING_FOUND, survey.member))
+    survey.report.parts.update(snapshot=part.snapshot | {"features": found})
     person = survey.member.memberships.get().pk
     rest = {"membership_pk": person, "name": "curves", "form": "csv", "key": "none"}
     shown = []

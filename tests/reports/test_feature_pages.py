@@ -15,7 +15,7 @@ from fits.assessments.features_document import contract_of
 from fits.assessments.models import Assessment, FeaturePart, FeatureSearch
 from fits.reports import page as result_pages
 from fits.reports.models import Report
-from fits.reports.services import create_link, create_report
+from fits.reports.services import create_link, create_report, freeze_report
 from fits.reports.snapshot import Snapshot
 from tests.reports.searches import running_search, stored_search
 
@@ -258,7 +258,9 @@ def test_a_report_freezes_the_search_that_was_shown(
     client = signed_in(lead)
     assert "is under way" in text_of(client, reverse("reports:new", args=[done.pk]))
     client.post(reverse("reports:new", args=[done.pk]), {"title": "A finding"})
-    frozen = Report.objects.get().snapshot["features"]
+    report = Report.objects.get()
+    freeze_report(user=lead, report=report, seen=report.revision)
+    frozen = report.parts.get().snapshot["features"]
     assert len(frozen["peaks"]) == 3
     assert frozen["complete"] is True
 

@@ -61,7 +61,7 @@ def test_unknown_expired_and_revoked_links_answer_alike(client: Client, lead: Us
         user=lead, report=report, label="", expires_at=timezone.now() - timedelta(seconds=1)
     ).secret
     revoked = create_link(user=lead, report=report, label="", expires_at=None)
-    revoke_link(revoked.link)
+    revoke_link(revoked.link, by=lead)
     answers = [
         client.get(reverse("reports:shared", args=[token])) for token in ("unknown", gone, revoked.secret)
     ]

@@ -51,9 +51,10 @@ def open_by_share_link(assessment: Assessment, address: str) -> str:
     """
     assessment.refresh_from_db()
     author = assessment.requested_by
-    report = assessment.reports.filter(title=TITLE).first() or create_report(
-        user=author, assessment=assessment, title=TITLE, words=WORDS
+    frozen = Report.objects.filter(
+        state=Report.State.FROZEN, title=TITLE, author=author, parts__assessment=assessment
     )
+    report = frozen.first() or create_report(user=author, assessment=assessment, title=TITLE, words=WORDS)
     tomorrow = timezone.now() + timedelta(days=1)
     new = create_link(user=author, report=report, label="demo", expires_at=tomorrow)
     sentence = _finding(report)
@@ -63,7 +64,7 @@ def open_by_share_link(assessment: Assessment, address: str) -> str:
 
 
 def _finding(report: Report) -> str:
-    snapshot = Snapshot.of(report.snapshot)
+    snapshot = Snapshot.of(report.parts.get().snapshot or {})
     return _plain(finding(snapshot, snapshot.level_or_default()))
 
 

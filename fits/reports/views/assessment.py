@@ -5,11 +5,12 @@ from typing import Any
 from django.contrib.auth.decorators import login_required
 from django.db.models import QuerySet
 from django.http import Http404, HttpResponse
-from django.shortcuts import redirect, render
+from django.shortcuts import render
 from django.views.decorators.cache import cache_control
-from django.views.decorators.http import require_GET, require_http_methods
+from django.views.decorators.http import require_GET
 
-from core.people.access import Action, load, may
+from core.people.access import PERMITTED, Action, load, role_of
+from core.people.models import Role
 from core.people.signed_in import SignedInRequest
 from fits.assessments.context import context_of
 from fits.assessments.models import Assessment
@@ -18,9 +19,10 @@ from fits.reports.addresses import RouteAddresses
 from fits.reports.feature_searches import searches_of
 from fits.reports.features.progress import progress_of
 from fits.reports.files import chart_file, features_file, ranking_file, result_file
-from fits.reports.forms import ReportForm, WindowsForm
+from fits.reports.forms import WindowsForm
+from fits.reports.models import Report
 from fits.reports.page import result_page
-from fits.reports.services import create_report
+from fits.reports.readable import readable
 from fits.reports.snapshot import Snapshot
 
 
@@ -35,7 +37,8 @@ def assessment(request: SignedInRequest, pk: int) -> HttpResponse:
     """Progress while it is under way, why it ended without a result, or the result."""
     found = load(with_place(), request.user, Action.VIEW, pk)
     if found.status != Assessment.Status.DONE:
-        context = _place(request, found) | {"stages": stages_of(found)}
+        role = role_of(request.user, found.release.measurement.collaboration)
+        context = _place(found, role) | {"stages": stages_of(found)}
         return render(request, "assessments/progress.html", context)
     form = WindowsForm(assessment=found)
     return render(request, "reports/assessment.html", result_context(request, found, form))
@@ -50,13 +53,17 @@ def result_context(request: SignedInRequest, found: Assessment, form: WindowsFor
         level=request.GET.get("level"),
         curve=request.GET.get("curve"),
     )
-    collaboration = found.release.measurement.collaboration
+    measurement = found.release.measurement
+    role = role_of(request.user, measurement.collaboration)
+    reports = Report.objects.filter(parts__assessment=found).select_related("author")
+    # Reports are read by all who share: nothing sealed and nothing of a desk comes into one.
+    is_reportable = found.desk_id is None and not measurement.is_sealed
     return (
-        _place(request, found)
+        _place(found, role)
         | page
         | {
-            "may_report": may(request.user, Action.REPORT, collaboration),
-            "reports": found.reports.select_related("author"),
+            "may_report": is_reportable and role in PERMITTED[Action.REPORT],
+            "reports": readable(reports, measurement.collaboration, role).distinct(),
             "searches": searches,
             "search": progress_of(searches.running),
             "form": form,
@@ -64,13 +71,13 @@ def result_context(request: SignedInRequest, found: Assessment, form: WindowsFor
     )
 
 
-def _place(request: SignedInRequest, found: Assessment) -> dict[str, Any]:
+def _place(found: Assessment, role: Role | None) -> dict[str, Any]:
     measurement = found.release.measurement
     return {
         "assessment": found,
         "measurement": measurement,
         "collaboration": measurement.collaboration,
-        "may_assess": may(request.user, Action.ASSESS, measurement.collaboration),
+        "may_assess": role in PERMITTED[Action.ASSESS],
     }
 
 
@@ -101,29 +108,6 @@ def ranking_csv(request: SignedInRequest, pk: int) -> HttpResponse:
 def features(request: SignedInRequest, pk: int, name: str) -> HttpResponse:
     """A file of the features."""
     return features_file(request, _loaded_snapshot(request, pk), name)
-
-
-@login_required
-@require_http_methods(["GET", "POST"])
-def new_report(request: SignedInRequest, pk: int) -> HttpResponse:
-    """Write a report on the assessment."""
-    found = load(with_place(), request.user, Action.REPORT, pk)
-    form = ReportForm(
-        request.POST or None, initial={"title": f"{found.release.measurement}, {found.release}"}
-    )
-    searches = searches_of(found, request.GET.get("search"))
-    if form.is_valid():
-        made = create_report(user=request.user, assessment=found, search=searches.shown, **form.cleaned_data)
-        return redirect(made)
-    measurement = found.release.measurement
-    context = {
-        "form": form,
-        "assessment": found,
-        "measurement": measurement,
-        "collaboration": measurement.collaboration,
-        "searches": searches,
-    }
-    return render(request, "reports/report_form.html", context)
 
 
 def _loaded_snapshot(request: SignedInRequest, pk: int) -> Snapshot:
