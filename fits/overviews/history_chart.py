@@ -82,6 +82,7 @@ def history_figure(
         layers=tuple(layers),
         table=_table(histories),
         level=LEVEL_KEY,
+        has_key=True,
         height=4.8,
     )
 
@@ -99,7 +100,7 @@ def _guides(releases: Sequence[ReleaseSummary], first: Axis) -> list[Layer]:
     ends = (releases[0].number - 0.25, releases[-1].number + 0.25)
     edges: list[Layer] = [
         Line(
-            label="edge of the 95 % set" if panel == 0 else "",
+            label="edge of the 95 % set",
             colour=palette.INK,
             x=ends,
             y=(edge, edge),
@@ -131,18 +132,18 @@ def _theory(history: History, colour: str) -> list[Layer]:
         for run in _runs(history, panel):
             layers.append(
                 Line(
-                    label=history.theory_name if panel == 0 else "",
+                    label=history.theory_name,
                     colour=colour,
                     x=tuple(float(standing.release_number) for _, standing in run),
                     y=tuple(value for value, _ in run),
                     panel=panel,
                 )
             )
-            layers += _signs(history.theory_name, run, colour, panel)
+            layers += _signs(run, colour, panel)
     return layers
 
 
-def _signs(name: str, run: Drawn, colour: str, panel: int) -> list[Layer]:
+def _signs(run: Drawn, colour: str, panel: int) -> list[Layer]:
     """Circles where it is inside, crosses where it is outside."""
     found: list[Layer] = []
     for is_inside, marker in ((True, Marker.CIRCLE), (False, Marker.CROSS)):

@@ -2,6 +2,7 @@
 
 from collections.abc import Collection, Iterable
 from dataclasses import dataclass
+from typing import Any
 from urllib.parse import urlencode
 
 from django.http import QueryDict
@@ -16,13 +17,16 @@ from fits.overviews.releases import ReleaseSummary, releases_of
 from fits.overviews.standings import standings_in
 from fits.reports.charts import Chart, chart_of
 from fits.reports.figures.figure import Figure
+from fits.reports.figures.plotly import plotly_json
 
 
 @dataclass(frozen=True)
 class HistoryPart:
-    """drawn: the theories that have a line; can_choose: whether there are more than lines."""
+    """chart: what stands beside the drawing; plot: what the page draws; drawn: the theories that have a line;
+    left: those that left the 95 % set."""
 
     chart: Chart
+    plot: dict[str, Any]
     drawn: frozenset[int]
     can_choose: bool
     most: int
@@ -66,6 +70,7 @@ def history_part(
         return None
     drawn = drawn_histories(page.histories, chosen)
     return HistoryPart(
+        plot=plotly_json(figure),
         chart=chart_of(figure, HistoryAddresses(measurement.pk, chosen)),
         drawn=frozenset(history.theory for history in drawn),
         can_choose=len(page.histories) > 1,
