@@ -11,6 +11,9 @@ from django.utils import timezone
 from playwright.sync_api import FilePayload
 from playwright.sync_api import Page as BrowserPage
 
+from core.measurements import services
+from core.measurements.models import Measurement
+from core.measurements.seal_terms import SealTerms
 from core.people.log import Deed, record
 from core.people.models import Role, User
 from core.people.services import invite_by_link
@@ -140,6 +143,31 @@ def logged(survey: Survey) -> int:
     return survey.collaboration.pk
 
 
+def sealed(survey: Survey) -> int:
+    """A sealed measurement with a curve, at whose data a lead has looked."""
+    made = Measurement.objects.create(
+        collaboration=survey.collaboration,
+        name="Power at the outflow",
+        x_name="frequency",
+        x_unit="cycles per hour",
+        y_name="power",
+        created_by=survey.lead,
+    )
+    soon = (timezone.now() + timedelta(days=7)).replace(second=0, microsecond=0)
+    terms = SealTerms(soon + timedelta(days=7), soon, 0.5, 4.5)
+    services.seal_measurement(user=survey.lead, measurement=made, seen=0, terms=terms)
+    services.look_early(user=survey.lead, measurement=made)
+    curve_of(survey.theory, made, survey.member, stretch=1.0, version=1)
+    curve_of(survey.theory, made, survey.lead, stretch=1.1, version=2)
+    return made.pk
+
+
+def withdrawn(survey: Survey) -> int:
+    """A release that has been taken back."""
+    services.withdraw_release(user=survey.lead, release=survey.release, reason="The gauge stuck for a week.")
+    return survey.release.pk
+
+
 def unfold_the_numbers(page: BrowserPage) -> None:
     """Open the table behind a plot."""
     page.get_by_text("The curve’s numbers").click()
@@ -225,6 +253,13 @@ PAGES = [
     Row("invitation-closed", "people:invitation", lambda survey: "unknown", who="nobody", status=404),
     Row("new-measurement", "measurements:new_measurement", lambda survey: survey.collaboration.pk),
     Row("edit-measurement", "measurements:edit_measurement", lambda survey: survey.measurement.pk),
+    Row("seal", "measurements:seal", sealed),
+    Row("seal-too-late", "measurements:seal", lambda survey: survey.measurement.pk),
+    Row("open", "measurements:open", sealed),
+    Row("sealed-measurement", "overviews:measurement", sealed, who="member"),
+    Row("register", "theories:register", sealed, who="member"),
+    Row("withdraw", "measurements:withdraw", lambda survey: survey.release.pk),
+    Row("withdrawn", "measurements:release", withdrawn, who="member"),
     Row("upload", "measurements:upload", lambda survey: survey.measurement.pk),
     Row("draft-release", "measurements:release", lambda survey: survey.draft.pk),
     Row("draft-release-with-faults", "measurements:release", lambda survey: survey.unmapped.pk),

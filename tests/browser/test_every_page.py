@@ -18,7 +18,7 @@ from core.theories.models import Curve, Theory
 from fits.assessments.features import features_of
 from fits.reports.models import ShareLink
 from tests.browser.conftest import WIDE, Browsing
-from tests.browser.pages import PAGES, Row
+from tests.browser.pages import PAGES, Row, sealed
 from tests.browser.survey import Survey, survey_of
 from tests.reports.searches import NOTHING_FOUND, stored_search
 
@@ -34,7 +34,7 @@ NO_PAGES = {
     *("account_request_reauthentication_code", "account_email", "account_email_verification_sent"),
     *("account_confirm_email", "assessments:cancel", "assessments:progress", "assessments:coordinates"),
     *("overviews:comparison_csv", "overviews:history_chart"),
-    *("measurements:discard", "measurements:download", "measurements:publish"),
+    *("measurements:discard", "measurements:download", "measurements:look", "measurements:publish"),
     *("people:change_role", "people:remove", "people:leave"),
     *("people:new_invitation", "people:mail_invitation", "people:revoke_invitation"),
     *("reports:assessment_chart", "reports:assessment_csv", "reports:assessment_json"),
@@ -44,7 +44,7 @@ NO_PAGES = {
     *("reports:ask_features", "reports:cancel_features", "reports:features_progress"),
     *("reports:new_link", "reports:revoke"),
     *("talk:comment_theory", "talk:comment_assessment", "talk:remove", "talk:log_csv"),
-    *("theories:discard", "theories:download", "theories:submit"),
+    *("theories:discard", "theories:download", "theories:register_csv", "theories:submit"),
     *("theories:discard_batch", "theories:submit_batch", "overviews:desks_csv"),
 }
 
@@ -139,6 +139,7 @@ def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None
             created_by=survey.lead, expires_at=timezone.now()
         ).pk,
         "links": ShareLink.objects.latest("pk").pk,
+        "measurements": survey.measurement.pk,
         "r": survey.secret,
         "releases": survey.release.pk,
         "reports": survey.report.pk,
@@ -155,6 +156,10 @@ def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None
             own = {"pk": keys.get(path.split("/")[0]), "token": survey.secret, **rest}
             if name.endswith("_features"):
                 own["name"] = "features.json"
+            if name == "overviews:history_chart":
+                own["name"] = "history"
+            if name == "theories:register_csv":
+                own["pk"] = sealed(survey)
             address = reverse(name, kwargs={key: own[key] for key in own if f"{key}>" in path})
             answer = client.get(address)
             assert answer.status_code in {200, 302, 405}, address
