@@ -33,7 +33,7 @@ class MeasurementRow:
 
     @cached_property
     def assessment_url(self) -> str:
-        """Where the newest assessment of that release is read; many cells lead there."""
+        """Where the assessment of that release is read; many cells lead there."""
         newest = self.newest
         return reverse("reports:assessment", args=[newest.assessment]) if newest and newest.assessment else ""
 

@@ -24,7 +24,7 @@ from fits.reports import numbers
 
 @dataclass(frozen=True)
 class Column:
-    """A measurement with its newest release. `standings`: by theory, of that release's newest assessment."""
+    """A measurement with its newest release. `standings`: by theory, of that release's assessment."""
 
     key: int
     name: str

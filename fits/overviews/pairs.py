@@ -63,7 +63,7 @@ class PairsPage:
 
 
 def pairs_page(measurement: Measurement, reader: User, theory: str = "") -> PairsPage:
-    """The pairs by the newest assessment of the newest release that this reader sees. Three queries."""
+    """The pairs by the assessment of the newest release that this reader sees. Three queries."""
     release = newest_releases([measurement.pk], reader).get(measurement.pk)
     key = release.assessment if release and release.assessment else 0
     standings = standings_in([key]).get(key, [])

@@ -1,11 +1,11 @@
-"""The releases of measurements as overviews show them: without their tables, each with its newest assessment."""
+"""The releases of measurements as overviews show them: without their tables, each with the assessment that counts."""
 
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from datetime import datetime
 from typing import Any
 
-from django.db.models import F, OuterRef, Subquery
+from django.db.models import Count, F, OuterRef, Subquery
 
 from core.measurements.models import Release
 from core.people.access import in_overview
@@ -15,7 +15,8 @@ from fits.assessments.models import Assessment
 
 @dataclass(frozen=True)
 class ReleaseSummary:
-    """A published or withdrawn release. `assessment` is the newest done one that the reader sees, if any."""
+    """A published or withdrawn release. `assessment`: of the done ones that the reader sees, that which judged the most
+    theories, the newest of those. So nobody who tries a single curve takes the others' verdicts off the pages."""
 
     pk: int
     measurement: int
@@ -38,11 +39,18 @@ class ReleaseSummary:
 def releases_of(measurements: Iterable[int], reader: User) -> dict[int, list[ReleaseSummary]]:
     """The releases of each measurement, newest first, withdrawn ones among them. One query."""
     done = Assessment.objects.filter(release=OuterRef("pk"), status=Assessment.Status.DONE)
-    newest = in_overview(done, reader).order_by(F("ended_at").desc(nulls_last=True), "-pk").values("pk")[:1]
+    judged = Count("verdicts__curve__theory", distinct=True)
+    fullest = (
+        in_overview(done, reader)
+        .values("pk")
+        .annotate(theories=judged)
+        .order_by("-theories", F("ended_at").desc(nulls_last=True), "-pk")
+        .values("pk")[:1]
+    )
     numbered = Release.objects.filter(measurement__in=measurements).exclude(state=Release.State.DRAFT)
     rows: Iterable[Mapping[str, Any]] = (
         in_overview(numbered, reader)
-        .annotate(assessment=Subquery(newest))
+        .annotate(assessment=Subquery(fullest))
         .order_by("measurement", "-number")
         .values(
             "pk",

@@ -63,6 +63,15 @@ def test_the_newest_done_assessment_of_the_newest_release_counts(
     assert standing.assessment == newest.pk
 
 
+def test_who_tries_one_curve_takes_nobody_elses_verdict_off_the_page(
+    cell: Find, make: Maker, release: Release, curve: Curve, rival: Curve, ago: Ago
+) -> None:
+    both = make.assessment(release, {curve: 0.4, rival: 0.02}, ended_at=ago(2))
+    make.assessment(release, {rival: 0.03}, ended_at=ago(1))
+    found = [cell(name).standing for name in ("Parabolic floor", "Flat floor")]
+    assert [standing.assessment for standing in found if standing] == [both.pk, both.pk]
+
+
 def test_a_new_release_leaves_theories_unjudged(
     cell: Find, make: Maker, release: Release, curve: Curve
 ) -> None:
