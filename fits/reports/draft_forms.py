@@ -9,7 +9,7 @@ from core.revision import RevisionForm
 from fits.assessments.models import Assessment
 from fits.reports.models import Report, ReportPart
 
-MARKDOWN = "Markdown: *emphasis*, lists, quotes, “#” before a heading, [words](https://…) for a link. No images and no HTML."
+MARKDOWN = "Markdown: *emphasis*, lists, quotes, “#” for headings, [words](https://…) for a link. No images, no HTML."
 
 
 class NewReportForm(forms.ModelForm):  # type: ignore[type-arg]

@@ -2,10 +2,8 @@
 
 import base64
 import json
-from pathlib import Path
 from typing import Any
 
-from django.contrib.staticfiles import finders
 from django.template.loader import render_to_string
 from django.utils.safestring import SafeString, mark_safe
 
@@ -15,6 +13,7 @@ from fits.reports.figures.figure import Figure
 from fits.reports.figures.svg import svg
 from fits.reports.page import result_page
 from fits.reports.snapshot import Document, Snapshot
+from fits.reports.static_texts import static_text
 
 STYLES = ("css/site.css", "css/report.css", "css/plotly.css")
 SCRIPTS = ("vendor/plotly/plotly-cartesian.min.js", "js/charts.js")
@@ -56,20 +55,14 @@ def render_standalone(
     """The page. Reads static files only: no database, no request, no network."""
     snapshot = Snapshot(result, detail, context, features)
     page: dict[str, Any] = result_page(snapshot, InsideThePage(snapshot))
-    page["styles"] = [_style(_static(name)) for name in STYLES]
-    page["scripts"] = [_script(_static(name)) for name in SCRIPTS]
+    page["styles"] = [_style(static_text(name)) for name in STYLES]
+    page["scripts"] = [_script(static_text(name)) for name in SCRIPTS]
     return render_to_string("reports/standalone.html", page)
 
 
 def data_address(kind: str, text: str) -> str:
     """A data: address of a text."""
     return f"data:{kind};charset=utf-8;base64,{base64.b64encode(text.encode()).decode()}"
-
-
-def _static(name: str) -> str:
-    path = finders.find(name)
-    assert isinstance(path, str), f"static file {name} is missing"
-    return Path(path).read_text(encoding="utf-8")
 
 
 # These are files of ours: nothing that anybody sent is in them. What would end the element early is broken up.

@@ -260,7 +260,7 @@ def test_a_report_freezes_the_search_that_was_shown(
     client.post(reverse("reports:new", args=[done.pk]), {"title": "A finding"})
     report = Report.objects.get()
     freeze_report(user=lead, report=report, seen=report.revision)
-    frozen = report.parts.get().snapshot["features"]
+    frozen = (report.parts.get().snapshot or {})["features"]
     assert len(frozen["peaks"]) == 3
     assert frozen["complete"] is True
 

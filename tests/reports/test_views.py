@@ -131,13 +131,14 @@ def test_a_lead_takes_an_assessment_into_a_report_and_freezes_it(
 ) -> None:
     client = signed_in(lead)
     answer = client.post(reverse("reports:new", args=[done.pk]), {"title": "A finding"})
+    draft = Report.objects.get()
+    assert answer.url == draft.get_absolute_url()  # type: ignore[attr-defined]
+    assert not draft.is_frozen
+    client.post(reverse("reports:freeze", args=[draft.pk]), {"seen": draft.revision})
     report = Report.objects.get()
-    assert answer.url == report.get_absolute_url()  # type: ignore[attr-defined]
-    assert not report.is_frozen
-    client.post(reverse("reports:freeze", args=[report.pk]), {"seen": report.revision})
-    report.refresh_from_db()
     assert report.is_frozen
     snapshot = report.parts.get().snapshot
+    assert snapshot is not None
     assert snapshot["result"] == done.result
     assert snapshot["context"]["release"]["number"] == 1
 

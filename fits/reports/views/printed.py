@@ -6,7 +6,7 @@ from django.shortcuts import redirect, render
 from django.views.decorators.cache import never_cache
 from django.views.decorators.http import require_GET, require_http_methods
 
-from core.people.access import Action, require
+from core.people.access import Action, may, require
 from core.people.signed_in import SignedInRequest
 from fits.reports.models import Paper, Printing, Report
 from fits.reports.readable import load_readable
@@ -23,7 +23,8 @@ def printed(request: SignedInRequest, pk: int, paper: str) -> HttpResponse:
         require(request.user, Action.REPORT, found.collaboration)
         print_again(printing_of(found, paper))
         return redirect(request.path)
-    return pdf_or_waiting(request, found, paper, may_repeat=True)
+    may_repeat = may(request.user, Action.REPORT, found.collaboration)
+    return pdf_or_waiting(request, found, paper, may_repeat=may_repeat)
 
 
 @login_required

@@ -1,0 +1,22 @@
+"""What workers do for reports."""
+
+from core import alive
+from core.worker import app
+from fits.assessments import leases
+from fits.assessments.tasks import ending
+from fits.reports.models import Paper, Printing
+from fits.reports.printing import printed
+
+
+@app.task(name="fits.reports.tasks.print_report")  # type: ignore[untyped-decorator]
+def print_report(pk: int) -> None:
+    """Print a report, unless that has ended or a living worker has it."""
+    lease = leases.take(Printing, pk)
+    if lease is None:
+        return
+    with ending(lease, f"printing {pk}"):
+        printing = Printing.objects.select_related(
+            "report__collaboration", "report__author", "report__previous"
+        ).get(pk=pk)
+        lease.finish(pdf=printed(printing.report, Paper(printing.paper), leases.Heartbeat(lease)))
+    alive.touch()
