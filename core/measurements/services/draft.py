@@ -97,7 +97,7 @@ def draft_release(
 @transaction.atomic
 def _keep(draft: Release, user: User) -> None:
     # Whoever seals it at this moment holds the same lock.
-    measurement = Measurement.objects.select_for_update().get(pk=draft.measurement_id)
+    measurement = Measurement.objects.select_for_update(no_key=True).get(pk=draft.measurement_id)
     draft.save()
     record(
         Deed.UPLOADED,

@@ -17,7 +17,9 @@ def reading_of(release: Release) -> str:
 def locked_draft(release: Release, *, seen: str) -> Release:
     """The draft as it stands, locked until the transaction ends. A UserError where it is a draft no more, or is read
     otherwise than `seen`."""
-    draft = Release.objects.select_for_update().filter(pk=release.pk, state=Release.State.DRAFT).first()
+    drafts = Release.objects.select_for_update().filter(pk=release.pk, state=Release.State.DRAFT)
+    # By its key: in the order of their measurements, the measurement's row would be locked with it, and after it.
+    draft = drafts.order_by("pk").first()
     if draft is None:
         raise UserError("not-a-draft", "this release is a draft no more", "Look at the measurement's page")
     if reading_of(draft) != seen:

@@ -11,7 +11,7 @@ from core.people.models import User
 @transaction.atomic
 def look_early(*, user: User, measurement: Measurement) -> None:
     """Show this lead the data from now on, and note that they saw them."""
-    kept = Measurement.objects.select_for_update().get(pk=measurement.pk)
+    kept = Measurement.objects.select_for_update(no_key=True).get(pk=measurement.pk)
     if not kept.is_sealed:
         raise UserError("not-sealed", f"{kept} is not sealed: its data are open to all", "Look at its page")
     record_look(kept, user, EarlyLook.How.LOOKED)

@@ -68,7 +68,7 @@ def edit_measurement(
     """Other words for it, unless somebody has changed them since revision `seen`. Its axis is settled once a release
     is published, as verdicts rest on it, and while it is sealed, as curves are made for it."""
     # Whoever publishes at this moment holds the same lock.
-    kept = Measurement.objects.select_for_update().get(pk=measurement.pk)
+    kept = Measurement.objects.select_for_update(no_key=True).get(pk=measurement.pk)
     if axis != kept.axis:
         _refuse_settled(kept)
     before = {word: getattr(kept, word) for word in WORDS}

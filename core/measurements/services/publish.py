@@ -24,7 +24,7 @@ def publish_release(release: Release, user: User, *, seen: str | None = None) ->
     seen  the reading of it that its publisher looked at; without a word, the one that `release` has
     """
     # The measurement's row is the lock: two who publish at once get one number after the other.
-    measurement = Measurement.objects.select_for_update().get(pk=release.measurement_id)
+    measurement = Measurement.objects.select_for_update(no_key=True).get(pk=release.measurement_id)
     # Nor may it be mapped otherwise, or discarded, between the check and the number.
     draft = locked_draft(release, seen=reading_of(release) if seen is None else seen)
     draft.measurement = measurement

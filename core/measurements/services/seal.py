@@ -22,7 +22,7 @@ FIELDS = ("opens_at", "curves_until", "announced_x_min", "announced_x_max")
 def seal_measurement(*, user: User, measurement: Measurement, seen: int, terms: SealTerms) -> None:
     """Hide data and verdicts to come until it opens."""
     # Whoever publishes, or draws up a release, at this moment holds the same lock.
-    kept = Measurement.objects.select_for_update().get(pk=measurement.pk)
+    kept = Measurement.objects.select_for_update(no_key=True).get(pk=measurement.pk)
     if kept.was_sealed:
         raise UserError("sealed-already", f"{kept} has been sealed already", "Look at its page")
     if kept.releases.exclude(state=Release.State.DRAFT).exists():
@@ -53,7 +53,7 @@ def seal_measurement(*, user: User, measurement: Measurement, seen: int, terms: 
 def change_seal(*, user: User, measurement: Measurement, seen: int, terms: SealTerms) -> None:
     """Other terms, as far as nobody has relied on the old ones."""
     # Whoever submits a curve or opens it at this moment holds the same lock.
-    kept = Measurement.objects.select_for_update().get(pk=measurement.pk)
+    kept = Measurement.objects.select_for_update(no_key=True).get(pk=measurement.pk)
     if not kept.is_sealed:
         raise UserError("not-sealed", f"{kept} is not sealed", "Look at its page")
     before = SealTerms.of(kept)

@@ -17,9 +17,9 @@ def withdraw_release(*, user: User, release: Release, reason: str) -> None:
         raise UserError(
             "no-reason", "a release is not withdrawn without a reason", "Say what is wrong with it"
         )
-    measurement = Measurement.objects.select_for_update().get(pk=release.measurement_id)
+    measurement = Measurement.objects.select_for_update(no_key=True).get(pk=release.measurement_id)
     # Whoever asks for an assessment of it at this moment holds its lock.
-    rows = Release.objects.select_for_update().filter(pk=release.pk)
+    rows = Release.objects.select_for_update().filter(pk=release.pk).order_by("pk")
     state = rows.values_list("state", flat=True).first()
     if state == Release.State.WITHDRAWN:
         raise UserError("withdrawn-already", f"{release} is withdrawn already", "Look at its page")

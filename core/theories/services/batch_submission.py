@@ -30,7 +30,7 @@ def submit_batch(batch: Batch) -> Batch:
     What can no more be accepted is refused now, and says so; the others are submitted all the same. Where none is
     left, the batch stays as it was but for that.
     """
-    measurement = Measurement.objects.select_for_update().get(pk=batch.measurement_id)
+    measurement = Measurement.objects.select_for_update(no_key=True).get(pk=batch.measurement_id)
     # The batch's row is the lock: of two who submit it, or submit and discard it, one comes first.
     locked = Batch.objects.select_for_update().filter(pk=batch.pk, submitted_at=None).first()
     if locked is None:

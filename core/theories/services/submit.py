@@ -16,10 +16,11 @@ def submit_curve(curve: Curve) -> Curve:
     """Give the draft its version and make it immutable. It is done by who uploaded it."""
     # The measurement's row is the lock of its seal, and the theory's that of its versions: two who submit at once
     # get one version after the other.
-    measurement = Measurement.objects.select_for_update().get(pk=curve.measurement_id)
+    measurement = Measurement.objects.select_for_update(no_key=True).get(pk=curve.measurement_id)
     theory = Theory.objects.select_for_update().get(pk=curve.theory_id)
     # Nor may the draft be discarded meanwhile.
-    draft = Curve.objects.select_for_update().filter(pk=curve.pk, state=Curve.State.DRAFT).first()
+    drafts = Curve.objects.select_for_update().filter(pk=curve.pk, state=Curve.State.DRAFT)
+    draft = drafts.order_by("pk").first()
     if draft is None:
         raise UserError("not-a-draft", "this curve is a draft no more", "Look at the theory's page")
     # Taken before the deadline is looked at, so that no curve that is taken bears a later time.

@@ -76,7 +76,8 @@ def _curves_in_words(chosen: Sequence[Curve], left_out: Sequence[Curve]) -> dict
 
 def _refuse_withdrawn(release: Release) -> None:
     """Whoever withdraws the release at this moment waits until it is asked for, or has it refused."""
-    rows = Release.objects.select_for_update().filter(pk=release.pk)
+    # By its key: in the order of their measurements, the measurement's row would be locked with it, and after it.
+    rows = Release.objects.select_for_update().filter(pk=release.pk).order_by("pk")
     if rows.values_list("state", flat=True).first() == Release.State.WITHDRAWN:
         raise UserError("release-withdrawn", f"{release} is withdrawn", "Choose one that is not")
 
