@@ -194,7 +194,7 @@ def _reports(reader: User, collaborations: list[int]) -> list[tuple[int, News]]:
                 url=reverse("reports:report", args=[row["pk"]]),
                 where="",
                 where_url="",
-                detail=f"by {row['author__name'] or row['author__email']}",
+                detail=f"by {_author(row)}",
             ),
         )
         for row in rows
@@ -224,7 +224,7 @@ def _mentions(reader: User, collaborations: list[int]) -> list[tuple[int, News]]
             url=f"{url}#comment-{row['pk']}",
             where=row["theory__name"] or row["measurement__name"],
             where_url=url,
-            detail=f"by {row['author__name'] or row['author__email'].partition('@')[0]}",
+            detail=f"by {_author(row)}",
         )
         found.append((row["collaboration"], news))
     return found
@@ -236,6 +236,11 @@ def _newest(rows: QuerySet[Row], collaboration: str, moment: str, *fields: str) 
     place = Window(RowNumber(), partition_by=[F(collaboration)], order_by=newest_first)
     newest = rows.annotate(place=place).filter(place__lte=MOST)
     return list(newest.values("pk", collaboration, moment, *fields))
+
+
+def _author(row: Mapping[str, Any]) -> str:
+    """As everywhere: never a whole address."""
+    return str(row["author__name"] or row["author__email"].partition("@")[0])
 
 
 def _name(standing: Standing, together: tuple[Standing, ...]) -> str:

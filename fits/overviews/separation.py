@@ -25,8 +25,8 @@ class Apart:
 
     @property
     def ratio(self) -> float:
-        """d/(2 s_95): above 1 they cannot both be inside. With an empty ball nothing can."""
-        return self.distance / (2.0 * self.radius) if self.radius else float("inf")
+        """d/(2 s_95): above 1 the ball cannot hold both."""
+        return self.distance / (2.0 * self.radius)
 
     @property
     def cannot_both(self) -> bool:
@@ -48,7 +48,7 @@ class Apart:
 
     @property
     def ratio_written(self) -> str:
-        return numbers.significant(self.ratio) if self.radius else "–"
+        return numbers.significant(self.ratio)
 
 
 @dataclass(frozen=True)
@@ -109,6 +109,8 @@ def _apart(column: Column, first: int, second: int, kept: Mapping[str, Any]) -> 
         return "kept no distances between curves: assess again to see pairs"
     if radius is None:
         return "has no radius at 95 %: that level was not asked for"
+    if not radius:
+        return "has an empty 95 % ball, which holds nothing: the errors should be checked"
     place = {key: index for index, key in enumerate(separations["curves"])}
     low, high = sorted((place[one.curve], place[other.curve]))
     return Apart(column, one, other, separations["distances"][_pair(low, high, len(place))], radius)

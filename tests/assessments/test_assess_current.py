@@ -17,6 +17,7 @@ from core.measurements.models import Measurement, Release
 from core.people.models import LogEntry, Membership, Role, User
 from core.theories.models import Curve, Theory
 from fits.assessments import tasks
+from fits.assessments.default_settings import DEFAULT_SEED, default_settings
 from fits.assessments.models import Assessment
 from fits.assessments.services import assess_current, cancel_assessment, request_assessment
 from fits.assessments.services import request as asking
@@ -106,6 +107,18 @@ def test_settings_and_seed_are_those_of_the_newest_assessment_at_the_desk(
     }
 
 
+def test_who_tries_settings_on_one_curve_does_not_choose_them_for_the_next_release(
+    measurement: Measurement, lead: User, member: User
+) -> None:
+    curve = curve_of(measurement, member)
+    curve_of(measurement, member, "Parabolic floor")
+    release = publish(measurement, lead)
+    ask = partial(request_assessment, user=member, release=release, settings=SETTINGS | {"draws": 500})
+    ask(curves=[curve], seed=7)
+    made = Assessment.objects.get(release=publish(measurement, lead))
+    assert (made.settings, made.seed) == (default_settings(), DEFAULT_SEED)
+
+
 def test_a_curve_that_falls_short_of_the_data_is_left_out_and_named(
     measurement: Measurement, lead: User, member: User, signed_in: Callable[[User], Client]
 ) -> None:
@@ -113,7 +126,7 @@ def test_a_curve_that_falls_short_of_the_data_is_left_out_and_named(
     publish(measurement, lead)
     made = Assessment.objects.get()
     assert (list(made.curves.all()), made.left_out) == ([judged], [short])
-    entry = LogEntry.objects.get(deed="asked_assessment")
+    entry = LogEntry.objects.get(deed="began_assessment")
     assert entry.who is None
     assert "Short floor, version 1" in str(entry.detail)
     words = signed_in(member).get(made.get_absolute_url()).content.decode()
@@ -154,7 +167,7 @@ def test_an_opening_at_its_time_starts_them_once_for_who_published(
     for _ in range(2):
         tasks.note_openings()
     assert Assessment.objects.get().requested_by == lead
-    assert LogEntry.objects.filter(deed="asked_assessment").count() == 1
+    assert LogEntry.objects.filter(deed="began_assessment").count() == 1
 
 
 def test_an_early_assessment_of_the_same_is_not_computed_again(

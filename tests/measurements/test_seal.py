@@ -222,6 +222,26 @@ def test_an_opening_at_its_time_is_noted_once(measurement: Measurement, lead: Us
     assert LogEntry.objects.get(deed="opened").who is None
 
 
+def test_an_opening_that_cannot_be_noted_keeps_no_other_from_it(
+    measurement: Measurement, lead: User, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    later = Measurement.objects.create(
+        collaboration=measurement.collaboration, name="Inflow", x_name="t", y_name="q", created_by=lead
+    )
+    for sealed, days in ((measurement, 2), (later, 1)):
+        seal(sealed, lead, opens_at=soon(days=1))
+        pass_time(sealed, opens_at=timezone.now() - days * DAY)
+
+    def faulty(*, measurement: Measurement, **_: object) -> None:
+        if measurement.pk != later.pk:
+            raise ValueError("its data cannot be read")
+
+    monkeypatch.setattr(opening.measurement_opened, "send", faulty)
+    assert services.note_openings() == [later.pk]
+    monkeypatch.undo()
+    assert services.note_openings() == [measurement.pk]
+
+
 def test_a_seal_that_somebody_else_has_changed_is_not_overwritten(
     measurement: Measurement, lead: User, second_lead: User
 ) -> None:

@@ -121,7 +121,7 @@ def test_the_page_says_it_in_a_sentence(
     answer = signed_in(member).get(f"{address}?first={curve.theory_id}&second={rival.theory_id}")
     assert (
         f"{two_measurements}, release 1, separates Parabolic floor and Flat floor best: their curves are 0.600 "
-        "error bars apart there, 1.50 times the width of its 95&nbsp;% ball, so that they cannot both be inside."
+        "error bars apart there, 1.50 times the width of its 95&nbsp;% ball, which cannot hold both."
     ) in answer.content.decode()
 
 
@@ -149,6 +149,8 @@ def test_where_it_is_not_known_the_reason_is_said(
     assert why() == ["kept no distances between curves: assess again to see pairs"]
     make.assessment(release, {curve: 0.4, rival: 0.3}, radius=None, apart=[1.0])
     assert why() == ["has no radius at 95 %: that level was not asked for"]
+    make.assessment(release, {curve: 0.4, rival: 0.3}, radius=0.0, apart=[1.0])
+    assert why() == ["has an empty 95 % ball, which holds nothing: the errors should be checked"]
 
 
 @pytest.mark.parametrize("query", ["", "first=1", "first=nonsense&second=-3", "first=999999&second=999998"])

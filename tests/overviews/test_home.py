@@ -93,6 +93,15 @@ def test_releases_assessments_and_reports_stand_newest_first(
     ]
 
 
+def test_no_whole_address_stands_among_the_news(
+    look: Look, lead: User, member: User, make: Maker, release: Release, curve: Curve, ago: Ago
+) -> None:
+    User.objects.filter(pk=lead.pk).update(name="")
+    make.report(make.assessment(release, {curve: 0.4}), "What the survey says", frozen_at=ago(1))
+    [news] = look(member)
+    assert "by lead" in {item.detail for item in news.digest.new}
+
+
 def test_an_assessment_names_who_is_inside_and_who_outside(
     look: Look, member: User, make: Maker, release: Release, curve: Curve, rival: Curve
 ) -> None:

@@ -5,7 +5,7 @@ from datetime import datetime
 from django.db import transaction
 from django.utils import timezone
 
-from core.errors import UserError
+from core.errors import UserError, record_fault
 from core.measurements.models import Measurement
 from core.measurements.seal_terms import moment_in_words
 from core.measurements.signals import measurement_opened
@@ -33,7 +33,16 @@ def note_openings() -> list[int]:
     due = Measurement.objects.filter(
         sealed_at__isnull=False, opened_at=None, opens_at__lte=timezone.now()
     ).values_list("pk", flat=True)
-    return [pk for pk in due.order_by("opens_at", "pk") if _note(pk)]
+    return [pk for pk in due.order_by("opens_at", "pk") if _note_or_log(pk)]
+
+
+def _note_or_log(pk: int) -> bool:
+    """One that cannot be noted is tried again the next time, and keeps no other from it."""
+    try:
+        return _note(pk)
+    except Exception as error:
+        record_fault(error, f"noting that measurement {pk} has opened")
+        return False
 
 
 @transaction.atomic

@@ -3,6 +3,8 @@
 from collections.abc import Iterable, Sequence
 from typing import Any
 
+from django.db.models import Count
+
 from core.errors import UserError
 from core.measurements.models import Measurement, Release
 from core.measurements.stored_release import interval_of_release
@@ -68,11 +70,13 @@ def _assess_desk(release: Release, reach: Interval, curves: Sequence[Curve], use
 
 
 def _as_before(measurement: Measurement, desk: int | None) -> tuple[dict[str, Any], int]:
-    """Settings and seed of the newest assessment of the measurement at this desk, so that releases can be compared."""
+    """Settings and seed of the assessment that pages show at this desk, so that releases can be compared: on the newest
+    release that has one, of those that judge the most theories the newest."""
     before = (
         Assessment.objects.filter(release__measurement=measurement, desk=desk)
         .exclude(status__in=ENDED_BADLY)
-        .order_by("-created_at", "-pk")
+        .annotate(theories=Count("curves__theory", distinct=True))
+        .order_by("-release__number", "-theories", "-created_at", "-pk")
         .values("settings", "seed")
         .first()
     )
