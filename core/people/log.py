@@ -37,6 +37,7 @@ class Deed(StrEnum):
     EDITED_THEORY = "edited a theory"
     SUBMITTED = "submitted a curve"
     ASKED_ASSESSMENT = "asked for an assessment"
+    BEGAN_ASSESSMENT = "began an assessment"
     CANCELLED_ASSESSMENT = "cancelled an assessment"
     ASKED_FEATURES = "asked for features"
     CANCELLED_FEATURES = "cancelled a search for features"

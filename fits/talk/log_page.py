@@ -14,7 +14,7 @@ from core.people.models import Collaboration, LogEntry, User
 
 AT_A_TIME = 100
 COLUMNS = ("time (UTC)", "who", "what", "about", "detail", "address")
-BY_ITSELF = "by itself"
+NOBODY = "Inradius"  # what happened because its time had come, or because something else happened
 
 
 @dataclass(frozen=True)
@@ -94,7 +94,7 @@ def line_of(entry: LogEntry) -> LogLine:
     name = entry.deed.upper()
     return LogLine(
         at=entry.at,
-        who=str(entry.who) if entry.who else BY_ITSELF,
+        who=str(entry.who) if entry.who else NOBODY,
         what=Deed[name].value if name in Deed.__members__ else entry.deed.replace("_", " "),
         about=entry.about,
         url=entry.url,

@@ -264,7 +264,7 @@ def test_the_page_says_who_did_what_to_what(
     page = signed_in(member).get(log_of(collaboration)).content.decode()
     assert '<strong>Mo Member</strong> changed a role: <a href="/somewhere/">&lt;Obi&gt;</a>' in page
     assert "role: observer; role before: member" in page
-    assert "<strong>by itself</strong> opened a measurement: Gauge 3" in page
+    assert "<strong>Inradius</strong> opened a measurement: Gauge 3" in page
 
 
 def test_the_table_is_safe_to_open_and_gives_times_in_utc(

@@ -52,7 +52,7 @@ def request_assessment(
             )
             assessment.curves.set(chosen)
             record_deed(
-                Deed.ASKED_ASSESSMENT,
+                Deed.BEGAN_ASSESSMENT if is_automatic else Deed.ASKED_ASSESSMENT,
                 assessment,
                 None if is_automatic else user,
                 detail=_curves_in_words(chosen, left_out),

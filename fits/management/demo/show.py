@@ -38,9 +38,9 @@ def rankings(assessments: Iterable[Assessment]) -> str:
     for assessment in assessments:
         assessment.refresh_from_db()
         release = assessment.release
-        parts.append(
-            f"{release.measurement.collaboration}, {release}\n{ranking_table(assessment.result or {})}"
-        )
+        place = f"{release.measurement.collaboration}: {release.measurement}, {release}"
+        desk = f", at the desk of {assessment.desk}" if assessment.desk else ""
+        parts.append(f"{place}{desk}\n{ranking_table(assessment.result or {})}")
     return "\n\n".join(parts)
 
 
