@@ -39,6 +39,7 @@ def report_context(request: HttpRequest, report: Report, kind: str, key: int | s
         ],
         "withdrawn": withdrawn_since(report),
         "later": report.later.filter(state=Report.State.FROZEN).order_by("-frozen_at").first(),
+        "kept_level": request.GET.get("level", ""),
         "kept_part": page.number if page and len(pages) > 1 else None,
     }
     snapshot = page.snapshot if page else None

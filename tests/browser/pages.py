@@ -21,6 +21,17 @@ from core.theories.models import Batch, Theory
 from core.theories.services import draft_batch, submit_batch
 from fits.talk.services import comment, remove_comment
 from tests.browser.survey import Survey, computed, curve_of
+from tests.browser.written_reports import (
+    draft,
+    draft_part,
+    frozen,
+    frozen_key,
+    give_a_wrong_passphrase,
+    give_no_heading_and_show_nothing,
+    later_draft,
+    locked_secret,
+    show_the_second_part,
+)
 from tests.permissions.world import assessment_of
 
 
@@ -280,6 +291,33 @@ PAGES = [
     Row("assessment-cancelled", "reports:assessment", lambda survey: survey.cancelled.pk),
     Row("result", "reports:assessment", lambda survey: survey.done.pk, then=unfold_the_ball),
     Row("new-report", "reports:new", lambda survey: survey.done.pk),
+    Row("reports", "reports:reports", lambda survey: draft(survey) and survey.collaboration.pk),
+    Row("new-draft-report", "reports:new_draft", lambda survey: survey.collaboration.pk),
+    Row("draft-report", "reports:report", draft),
+    Row("later-draft-report", "reports:report", later_draft),
+    Row("draft-report-words", "reports:words", draft),
+    Row("draft-report-part", "reports:part", draft_part),
+    Row("draft-report-part-with-faults", "reports:part", draft_part, then=give_no_heading_and_show_nothing),
+    Row("preview-of-report", "reports:preview", draft),
+    Row("report-of-parts", "reports:report", frozen_key, who="member"),
+    Row("report-of-parts-second", "reports:report", frozen_key, then=show_the_second_part),
+    Row("report-later", "reports:report", lambda survey: frozen(survey).pk),
+    Row("report-being-printed", "reports:print", lambda survey: (survey.report.pk, "a4")),
+    Row(
+        "shared-report-being-printed",
+        "reports:shared_print",
+        lambda survey: (survey.secret, "letter"),
+        who="nobody",
+    ),
+    Row("locked-report", "reports:shared", locked_secret, who="nobody"),
+    Row(
+        "locked-report-with-faults",
+        "reports:shared",
+        locked_secret,
+        who="nobody",
+        status=400,
+        then=give_a_wrong_passphrase,
+    ),
     Row("report", "reports:report", lambda survey: survey.report.pk),
     Row("report-with-new-link", "reports:report", lambda survey: survey.report.pk, then=make_a_link),
     Row("shared-report", "reports:shared", lambda survey: survey.secret, who="nobody"),

@@ -18,7 +18,7 @@ from core.theories.models import Curve, Theory
 from fits.assessments.features import features_of
 from fits.reports.models import ShareLink
 from tests.browser.conftest import WIDE, Browsing
-from tests.browser.pages import PAGES, Row, sealed
+from tests.browser.pages import PAGES, Row, a_batch, sealed
 from tests.browser.survey import Survey, survey_of
 from tests.reports.searches import NOTHING_FOUND, stored_search
 
@@ -42,7 +42,9 @@ NO_PAGES = {
     *("reports:shared_chart", "reports:shared_csv", "reports:shared_json"),
     *("reports:assessment_features", "reports:report_features", "reports:shared_features"),
     *("reports:ask_features", "reports:cancel_features", "reports:features_progress"),
-    *("reports:new_link", "reports:revoke"),
+    *("reports:new_link", "reports:revoke", "reports:later", "reports:freeze", "reports:discard"),
+    *("reports:add_part", "reports:move_part", "reports:remove_part", "reports:renew_part"),
+    *("reports:print_progress", "reports:shared_print_progress"),
     *("talk:comment_theory", "talk:comment_assessment", "talk:remove", "talk:log_csv"),
     *("theories:discard", "theories:download", "theories:register_csv", "theories:submit"),
     *("theories:discard_batch", "theories:submit_batch", "overviews:desks_csv"),
@@ -132,6 +134,7 @@ def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None
     client.force_login(survey.lead)
     keys = {
         "assessments": survey.done.pk,
+        "batches": a_batch(survey).pk,
         "collaborations": survey.collaboration.pk,
         "comments": 1,
         "curves": survey.curve.pk,
@@ -142,14 +145,15 @@ def test_the_addresses_left_out_of_the_list_show_no_page(survey: Survey) -> None
         "measurements": survey.measurement.pk,
         "r": survey.secret,
         "releases": survey.release.pk,
+        "report-parts": survey.report.parts.get().pk,
         "reports": survey.report.pk,
         "theories": survey.theory.pk,
     }
     part = survey.report.parts.get()
     found = features_of(stored_search(survey.done, NOTHING_FOUND, survey.member))
-    survey.report.parts.update(snapshot=part.snapshot | {"features": found})
+    survey.report.parts.update(snapshot=(part.snapshot or {}) | {"features": found})
     person = survey.member.memberships.get().pk
-    rest = {"membership_pk": person, "name": "curves", "form": "csv", "key": "none"}
+    rest = {"membership_pk": person, "name": "curves", "form": "csv", "key": "none", "paper": "a4"}
     shown = []
     for name, path in routes(get_resolver().url_patterns):
         if name in NO_PAGES:

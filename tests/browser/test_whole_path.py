@@ -150,11 +150,17 @@ def read_the_result(page: Page) -> None:
 
 
 def write_a_report(page: Page) -> None:
-    """Words of one's own above a frozen copy."""
+    """Words of one's own above a frozen result."""
     page.get_by_role("link", name="Write a report").click()
     page.get_by_label("Title").fill("The floor of the lake")
-    page.get_by_label("Your words").fill("A first look, <b>no more</b>.")
-    page.get_by_role("button", name="Make the report").click()
+    page.get_by_role("button", name="Take it in").click()
+    page.get_by_role("link", name="Change title and opening words").click()
+    page.get_by_label("Opening words").fill("A first look, <b>no more</b>.")
+    page.get_by_role("button", name="Keep them").click()
+    page.get_by_role("link", name="Preview").click()
+    expect(page.locator(".words")).to_have_text("A first look, <b>no more</b>.")
+    page.get_by_role("link", name="Back to the draft").click()
+    page.get_by_role("button", name="Freeze the report").click()
     expect(page.get_by_role("heading", level=1)).to_have_text("The floor of the lake")
     expect(page.locator(".words")).to_have_text("A first look, <b>no more</b>.")
 

@@ -14,6 +14,7 @@ from core.measurements.models import Measurement
 from core.people.models import Invitation
 from core.people.services.invite import hashed
 from core.theories.models import Batch
+from fits.reports.models import Report, ReportPart
 from tests.permissions.world import World
 
 Key = Callable[[World, str], tuple[Any, ...]]
@@ -98,6 +99,23 @@ def running(world: World, who: str) -> tuple[Any, ...]:
 
 def report(world: World, who: str) -> tuple[Any, ...]:
     return (world.report.pk,)
+
+
+def draft_part(world: World, who: str) -> tuple[Any, ...]:
+    """A part of a draft of the lead's."""
+    draft, _ = Report.objects.get_or_create(
+        collaboration=world.collaboration, title="What is being written", author=world.people["lead"]
+    )
+    part, _ = ReportPart.objects.get_or_create(
+        report=draft, order=1, defaults={"assessment": world.rows[None].done}
+    )
+    return (part.pk,)
+
+
+def draft_report(world: World, who: str) -> tuple[Any, ...]:
+    """The draft."""
+    (part,) = draft_part(world, who)
+    return (ReportPart.objects.get(pk=part).report_id,)
 
 
 def secret(world: World, who: str) -> tuple[Any, ...]:
@@ -202,11 +220,25 @@ KEYS: dict[str, Key] = {
     "reports:cancel_features": done,
     "reports:assessment_features": with_(done, "features.json"),
     "reports:new": done,
+    "reports:new_draft": collaboration,
+    "reports:words": draft_report,
+    "reports:preview": draft_report,
+    "reports:add_part": draft_report,
+    "reports:part": draft_part,
+    "reports:move_part": draft_part,
+    "reports:remove_part": draft_part,
+    "reports:renew_part": draft_part,
+    "reports:freeze": draft_report,
+    "reports:discard": draft_report,
+    "reports:later": report,
+    "reports:reports": collaboration,
     "reports:report": report,
     "reports:report_chart": with_(report, "curves", "svg"),
     "reports:report_json": report,
     "reports:report_csv": report,
     "reports:report_features": with_(report, "features.json"),
+    "reports:print": with_(report, "a4"),
+    "reports:print_progress": with_(report, "a4"),
     "reports:new_link": report,
     "reports:revoke": lambda world, who: (world.link.pk,),
     "reports:shared": secret,
@@ -214,6 +246,8 @@ KEYS: dict[str, Key] = {
     "reports:shared_json": secret,
     "reports:shared_csv": secret,
     "reports:shared_features": with_(secret, "features.json"),
+    "reports:shared_print": with_(secret, "a4"),
+    "reports:shared_print_progress": with_(secret, "a4"),
     "talk:comment_theory": theory,
     "talk:comment_assessment": done,
     "talk:remove": comment,

@@ -9,6 +9,7 @@ from core.people.log import Deed, record
 from core.people.models import Invitation, Membership, Role, User
 from core.theories.models import Batch, BatchItem, Curve, Theory
 from fits.assessments.models import Assessment, FeaturePart, FeatureSearch, Verdict
+from fits.reports.models import Report, ReportPart
 from fits.reports.services import create_link
 from fits.talk.models import Comment, Mention
 from tests.browser.survey import curve_of, draft_of
@@ -125,6 +126,8 @@ def _reports(world: World, number: int) -> None:
     lead = world.people["lead"]
     report_of(lead, world.rows[None].done)
     create_link(user=lead, report=world.report, label=f"office {number}", expires_at=None)
+    for draft in Report.objects.filter(state=Report.State.DRAFT):
+        ReportPart.objects.create(report=draft, order=number, assessment=world.rows[None].done)
 
 
 def _words(world: World, number: int) -> None:

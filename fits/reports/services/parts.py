@@ -85,8 +85,8 @@ def remove_part(*, part: ReportPart, seen: int) -> None:
 
 @transaction.atomic
 def renew_part(*, part: ReportPart, seen: int) -> None:
-    """Put the newest assessment of the measurement's newest release in the place of the one that it shows. Of the
-    theories that were shown, those that it judged stay shown."""
+    """Put the assessment of the measurement's newest release in the place of the one that it shows. Of the theories
+    that were shown, those that it judged stay shown."""
     change_draft(part.report, seen=seen)
     newest = part.assessment and newest_assessment(part.assessment.release.measurement)
     if not newest or newest.pk == part.assessment_id:

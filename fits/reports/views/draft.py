@@ -99,7 +99,7 @@ def _row(part: ReportPart, newest: dict[int, tuple[int, int]]) -> dict[str, Any]
     """A part as the draft lists it, with a newer assessment if there is one."""
     assessment = part.assessment
     key, number = newest.get(assessment.release.measurement_id, (0, 0)) if assessment else (0, 0)
-    is_newer = assessment is not None and key > assessment.pk
+    is_newer = assessment is not None and (number, key) > (assessment.release.number or 0, assessment.pk)
     return {"part": part, "newer": key if is_newer else None, "newer_release": number}
 
 
