@@ -53,7 +53,7 @@ class LinkInvitationForm(InvitationForm):
         label="For whom",
         max_length=80,
         required=False,
-        help_text="So that you know later which link to revoke. Members read it in the log.",
+        help_text="So that you know later which link to revoke. Members and observers read it in the log.",
     )
     is_for_many = forms.BooleanField(
         label="For many",

@@ -38,13 +38,19 @@ def join(*, user: User, invitation: Invitation) -> Membership:
     return membership
 
 
-@transaction.atomic
 def join_as_newcomer(*, invitation: Invitation, email: str, name: str, password: str) -> Membership:
     """Make an account and join with it. What was mailed makes an account for the address it was mailed to alone."""
-    address = known_address(invitation.email or email)
+    user = User(email=known_address(invitation.email or email), name=name.strip())
+    # Hashing takes its time: a whole class that comes at once is not to wait for it one after the other.
+    user.set_password(password)
+    return _join_with_account(user, invitation)
+
+
+@transaction.atomic
+def _join_with_account(user: User, invitation: Invitation) -> Membership:
     try:
         with transaction.atomic():
-            user = User.objects.create_user(address, password, name=name.strip())
+            user.save()
     except IntegrityError:
         raise UserError(
             "address-known",

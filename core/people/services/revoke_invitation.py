@@ -6,12 +6,14 @@ from django.utils import timezone
 from core.people.log import Deed, record
 from core.people.models import Invitation, User
 from core.people.services.invite_by_mail import shortened
-from core.people.services.rules import open_invitations, people_page
+from core.people.services.rules import lock, open_invitations, people_page
 
 
 @transaction.atomic
 def revoke_invitation(*, by: User, invitation: Invitation) -> None:
     """From now on nobody joins by it; one that is closed already stays as it is."""
+    # Whoever joins by it at this moment holds the same lock, and takes it first.
+    lock(invitation.collaboration)
     if not open_invitations().filter(pk=invitation.pk).update(revoked_at=timezone.now()):
         return
     whom = shortened(invitation.email) if invitation.email else invitation.label or "a link"

@@ -13,7 +13,8 @@ from core.people.models import Collaboration, Invitation, Membership, Role, User
 
 def lock(collaboration: Collaboration) -> None:
     """Let nobody else change who belongs here, and as what, until this transaction ends."""
-    Collaboration.objects.select_for_update().get(pk=collaboration.pk)
+    # Not the key: rows that name the collaboration, as entries of the log do, can be written meanwhile.
+    Collaboration.objects.select_for_update(no_key=True).get(pk=collaboration.pk)
 
 
 def known_role(role: str) -> Role:
