@@ -9,7 +9,7 @@ from django.views.decorators.http import require_http_methods, require_POST, req
 from core.errors import UserError
 from core.measurements.models import Measurement
 from core.measurements.preview_figure import plotly_json
-from core.people.access import Action, load
+from core.people.access import Action, desk_of, load, seen_by
 from core.people.signed_in import SignedInRequest
 from core.theories import services
 from core.theories.batch_page import batch_page
@@ -39,14 +39,14 @@ def new_batch(request: SignedInRequest, pk: int) -> HttpResponse:
             fault = error
         else:
             return redirect(batch)
+    waiting = Batch.objects.filter(measurement=measurement, uploaded_by=request.user, submitted_at=None)
     context = {
         "form": form,
         "fault": fault,
         "measurement": measurement,
         "collaboration": measurement.collaboration,
-        "waiting": Batch.objects.filter(
-            measurement=measurement, uploaded_by=request.user, submitted_at=None
-        ).select_related("measurement"),
+        "desk": desk_of(request.user, measurement.collaboration),
+        "waiting": seen_by(waiting, request.user).select_related("measurement"),
     }
     return render(request, "theories/new_batch.html", context, status=400 if fault or form.errors else 200)
 

@@ -33,6 +33,11 @@ def refused(content: bytes, name: str = "many.zip") -> UserError:
     return caught.value
 
 
+def test_what_cannot_be_seen_is_no_part_of_a_name() -> None:
+    table = "x,Flat\u200b,\u202eDeep,\ufeff\n1,1,1,1\n2,2,2,2\n"
+    assert [read.name for read in read_batch(table.encode(), "many.csv")] == ["Flat", "Deep", ""]
+
+
 def faults(found: list[BatchCurve]) -> dict[str, str]:
     """By the name of each curve the code of its refusal, empty where it was read."""
     return {read.name: read.fault.code if read.fault else "" for read in found}

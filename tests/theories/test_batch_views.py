@@ -170,3 +170,15 @@ def test_queries_do_not_grow_with_curves(
                 batch = services.submit_batch(batch)
     assert counts[:2] == counts[2:]
     assert max(counts) <= 12
+
+
+def test_an_upload_that_its_uploader_sees_no_more_is_not_offered(
+    batch: Batch, member: User, signed_in: SignedIn
+) -> None:
+    client, address = signed_in(member), reverse("theories:new_batch", args=[batch.measurement_id])
+    assert batch.get_absolute_url() in client.get(address).content.decode()
+    member.memberships.update(role="student")
+    assert client.get(batch.get_absolute_url()).status_code == 404
+    page = client.get(address).content.decode()
+    assert batch.get_absolute_url() not in page
+    assert "if it stands at your desk" in page

@@ -216,6 +216,22 @@ def test_of_two_batches_with_one_name_the_second_is_told_whose_theory_it_is(
 
 
 @pytest.mark.django_db(transaction=True)
+def test_two_batches_that_add_the_same_theories_do_not_wait_for_each_other_in_turn(
+    upload: Upload, lead: User, collaboration: Collaboration, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    elsewhere = Measurement.objects.create(
+        collaboration=collaboration, name="Depth", x_name="x", y_name="y", created_by=lead
+    )
+    mine, other = upload(), upload("x,Deep floor,Flat floor\n1,1,1\n2,2,2\n", by=lead)
+    Batch.objects.filter(pk=other.pk).update(measurement=elsewhere)
+    other.refresh_from_db()
+    with meanwhile(monkeypatch, batch_submission, "record_theory", lambda: services.submit_batch(other)):
+        services.submit_batch(mine)
+    assert codes(mine) == {"Flat floor": "", "Deep floor": ""}
+    assert codes(other) == {"Flat floor": "theory-appeared", "Deep floor": "theory-appeared"}
+
+
+@pytest.mark.django_db(transaction=True)
 def test_a_name_that_somebody_takes_at_the_last_moment_is_refused(
     upload: Upload, lead: User, collaboration: Collaboration, monkeypatch: pytest.MonkeyPatch
 ) -> None:

@@ -7,7 +7,6 @@ What is wrong with one curve is said of that one; the others are read all the sa
 import hashlib
 import io
 import re
-import unicodedata
 import zipfile
 import zlib
 from collections.abc import Iterator
@@ -22,7 +21,7 @@ from core.measurements.reading.limits import (
     MAXIMUM_BATCH_POINTS,
     MAXIMUM_SOURCE_LENGTH,
 )
-from core.measurements.reading.names import safe_name
+from core.measurements.reading.names import safe_name, visible
 from core.measurements.reading.text import refuse_oversize
 from core.user_error import UserError
 from fits.engine.data import CurveTable
@@ -144,7 +143,7 @@ def _counts(entry: zipfile.ZipInfo) -> bool:
 
 
 def _shown_path(path: str) -> str:
-    plain = "".join(character for character in path if not unicodedata.category(character).startswith("C"))
+    plain = visible(path)
     return plain if len(plain) <= MAXIMUM_SOURCE_LENGTH else "…" + plain[1 - MAXIMUM_SOURCE_LENGTH :]
 
 

@@ -10,6 +10,7 @@ import numpy as np
 
 from core.measurements.reading.grammar import VALUE, cell_fault, number_in
 from core.measurements.reading.limits import BATCH_TABLE, MAXIMUM_HEADER_LENGTH
+from core.measurements.reading.names import visible
 from core.measurements.reading.release import refused_in_table
 from core.measurements.reading.separator import cells_of, names_of, separator_of
 from core.measurements.reading.table import Table, read_table
@@ -50,8 +51,8 @@ def columns_of(content: bytes, file_name: str) -> Iterator[Column]:
 
 
 def _column(table: Table, index: int, fault: UserError | None) -> Column:
-    name, number = table.headers[index], index + 1
-    if len(name) >= MAXIMUM_HEADER_LENGTH:
+    name, number = visible(table.headers[index]), index + 1
+    if len(table.headers[index]) >= MAXIMUM_HEADER_LENGTH:
         reason = f"its name in the first line has {MAXIMUM_HEADER_LENGTH} characters or more"
         fault = UserError("name-too-long", reason, "Shorten it", column=number)
     if fault is not None:

@@ -43,7 +43,8 @@ def submit_batch(batch: Batch) -> Batch:
         item.batch = locked
     current = _locked_theories(locked, items)
     _refuse_what_changed(locked, items, current)
-    for item in items:
+    # By name: of two batches that add the same theories neither waits for the other in turn.
+    for item in sorted(items, key=lambda item: item.name):
         if item.is_accepted and item.name not in current:
             _add_theory(locked, item, current)
     kept = [item for item in items if item.is_accepted]
