@@ -9,7 +9,7 @@ from core.measurements.models import Release
 from core.people.access import desk_of, seen_by
 from core.people.models import User
 from core.theories.models import Curve
-from fits.assessments.forms import LARGEST_KEY, submitted_curves
+from fits.assessments.forms import is_no_key, submitted_curves
 
 
 @dataclass(frozen=True)
@@ -41,6 +41,6 @@ def desk_choice(user: User, release: Release, asked_for: str) -> DeskChoice:
 
 
 def _key(text: str) -> int | None:
-    if not text.isdecimal() or int(text) > LARGEST_KEY:
+    if not text.isdecimal() or is_no_key(text):
         raise Http404
     return int(text)

@@ -13,6 +13,7 @@ from fits.engine.refusal import InputRefused
 from fits.engine.settings import DEFAULT_LEVELS, RadiusKind, Settings, Shrinkage
 
 LARGEST_KEY = 2**63 - 1
+LONGEST_KEY = len(str(LARGEST_KEY))
 LARGEST_SEED = 2**53 - 1  # exact in JSON wherever it is read
 SHRINKAGES = (
     (Shrinkage.MONOTONE, "Monotone: broad features are kept more than fine ones, each by its own factor"),
@@ -36,12 +37,17 @@ else:  # at run time Django's field takes no type argument
     ManyCurves = forms.ModelMultipleChoiceField
 
 
+def is_no_key(text: str) -> bool:
+    """Whether these digits are more than a database counts to; told before a long number of them is made."""
+    return text.isdecimal() and (len(text) > LONGEST_KEY or int(text) > LARGEST_KEY)
+
+
 class CurveChoice(ManyCurves):
     """Curves, named by theory and version."""
 
     def clean(self, value: Any) -> Any:
         """Keys that no database holds are no choice, rather than an error of its driver."""
-        if any(str(key).isdecimal() and int(key) > LARGEST_KEY for key in value or ()):
+        if any(is_no_key(str(key)) for key in value or ()):
             raise forms.ValidationError(self.error_messages["invalid_choice"], params={"value": "this"})
         return super().clean(value)
 

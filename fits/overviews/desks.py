@@ -28,6 +28,7 @@ COLUMNS = (
     "measurement",
     "version",
     "submitted (UTC)",
+    "submitted by",
     "SHA-256",
     "verdict at 95 %",
     "rank",
@@ -113,7 +114,7 @@ def desks_page(collaboration: Collaboration, reader: User, chosen: Mapping[str, 
     curves = (
         seen_by(Curve.objects.filter(theory__collaboration=collaboration), reader)
         .filter(theory__desk__isnull=False, state=Curve.State.SUBMITTED)
-        .select_related("theory__desk", "measurement")
+        .select_related("theory__desk", "measurement", "submitted_by")
         .defer("table")
         .order_by("-submitted_at", "-pk")
     )
@@ -163,6 +164,7 @@ def _rows(page: DesksPage) -> Iterator[tuple[Cell, ...]]:
                 curve.measurement.name,
                 curve.version,
                 _written(curve.submitted_at),
+                str(curve.submitted_by),
                 curve.file_sha256,
                 *_cells(submission.verdict),
             )

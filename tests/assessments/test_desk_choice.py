@@ -87,7 +87,7 @@ def test_who_was_a_student_chooses_shared_curves_or_their_desk(
     assert offered(client, address(release, student.pk)) == {own}
 
 
-@pytest.mark.parametrize("desk", ["0", "-1", "stu", "99999999999999999999", "²"])
+@pytest.mark.parametrize("desk", ["0", "-1", "stu", "99999999999999999999", "9" * 5000, "²"])
 def test_a_desk_that_is_not_there_is_not_found(
     release: Release, curve: Curve, own: Curve, lead: User, signed_in: SignedIn, desk: str
 ) -> None:
@@ -97,7 +97,7 @@ def test_a_desk_that_is_not_there_is_not_found(
 def test_a_student_without_curves_is_told_so(
     release: Release, curve: Curve, student: User, signed_in: SignedIn
 ) -> None:
-    assert "No theory has submitted a curve" in signed_in(student).get(address(release)).content.decode()
+    assert "You have submitted no curve" in signed_in(student).get(address(release)).content.decode()
 
 
 def test_a_student_cancels_what_is_of_their_desk_alone(

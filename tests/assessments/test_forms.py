@@ -85,3 +85,8 @@ def test_a_seed_is_proposed(release: Release) -> None:
 
 def test_a_curve_whose_key_no_database_holds_is_no_choice(release: Release, curve: Curve) -> None:
     assert "curves" in asked(release, curve, curves=[str(2**70)]).errors
+
+
+def test_a_number_that_no_key_has_is_no_choice(release: Release, curve: Curve) -> None:
+    for key in ("9" * 30, "9" * 5000):
+        assert "curves" in asked(release, curve, curves=[key]).errors

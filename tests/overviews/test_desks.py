@@ -164,6 +164,19 @@ def test_the_table_is_given_as_csv_that_no_spreadsheet_runs(
     assert rows[1]["theory"] == ""
 
 
+def test_who_else_submitted_at_a_desk_is_named(
+    own: Curve, make: Maker, collaboration: Collaboration, lead: User, signed_in: SignedIn
+) -> None:
+    make.curve(own.theory, own.measurement, version=2, by=lead)
+    page, text = (
+        signed_in(lead).get(reverse(f"overviews:{name}", args=[collaboration.pk])).content.decode()
+        for name in ("desks", "desks_csv")
+    )
+    assert page.count("by Lin Lead") == 1
+    by = {row["version"]: row["submitted by"] for row in csv.DictReader(text.splitlines())}
+    assert by == {"1": "Ada Able", "2": "Lin Lead"}
+
+
 def test_queries_do_not_grow_with_desks(
     own: Curve, make: Maker, release: Release, collaboration: Collaboration, lead: User, signed_in: SignedIn
 ) -> None:
