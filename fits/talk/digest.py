@@ -1,7 +1,7 @@
 """What is new for somebody, for an e-mail: only what they may see at the moment at which it is written."""
 
-from collections.abc import Callable
-from dataclasses import dataclass
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass, replace
 from datetime import datetime
 from typing import TypeVar
 
@@ -90,7 +90,19 @@ def digest_of(reader: User, window: Window) -> Digest:
         _part("Reports", _reports(reader, window), "frozen_at", _report),
         _part("Who joined", _joined(reader, window), "joined_at", _joining),
     )
-    return Digest(tuple(part for part in parts if part.items))
+    return Digest(tuple(replace(part, items=_in_lines(part.items)) for part in parts if part.items))
+
+
+def _in_lines(items: Iterable[Item]) -> tuple[Item, ...]:
+    """Each name in one line: with a break in it, it could look like another part of the e-mail."""
+    return tuple(
+        replace(item, where=_joined_up(item.where), what=_joined_up(item.what), words=_joined_up(item.words))
+        for item in items
+    )
+
+
+def _joined_up(words: str) -> str:
+    return " ".join(words.split())
 
 
 def _part(heading: str, rows: QuerySet[Row], moment: str, told: Callable[[Row], Item]) -> Part:
@@ -129,7 +141,7 @@ def _said(comment: Comment) -> Item:
         where=str(comment.collaboration),
         what=f"{comment.author} on {subject}",
         path=address(comment),
-        words=_in_one_line(comment.words),
+        words=_beginning(comment.words),
     )
 
 
@@ -165,7 +177,7 @@ def _release(release: Release) -> Item:
         where=str(release.measurement.collaboration),
         what=f"{release.measurement}, {release}, {release.points} points",
         path=release.get_absolute_url(),
-        words=_in_one_line(release.withdrawal_reason),
+        words=_beginning(release.withdrawal_reason),
     )
 
 
@@ -216,7 +228,7 @@ def _joining(membership: Membership) -> Item:
     return Item(str(membership.collaboration), what, path)
 
 
-def _in_one_line(words: str) -> str:
-    """Without line breaks, so that nothing in it looks like another part of the e-mail; only its beginning."""
-    line = " ".join(words.split())
+def _beginning(words: str) -> str:
+    """Only its beginning."""
+    line = _joined_up(words)
     return line if len(line) <= MOST_LETTERS else f"{line[:MOST_LETTERS].rstrip()} …"

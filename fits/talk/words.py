@@ -89,7 +89,8 @@ def _pattern(names: Iterable[str]) -> re.Pattern[str]:
 
 
 def _plain(name: str) -> str:
-    return " ".join(name.split()).casefold()
+    # Not folded: “ß” would become “ss”, which the pattern does not find where “ß” is written.
+    return " ".join(name.split()).lower()
 
 
 def _without_end(link: str) -> str:

@@ -11,6 +11,7 @@ from core.measurements.models import EarlyLook, Measurement
 from core.measurements.seal_terms import SealTerms
 from core.measurements.services import draft as drafting
 from core.measurements.services import open as opening
+from core.measurements.signals import measurement_opened
 from core.people.access import sees_data
 from core.people.models import Collaboration, LogEntry, Membership, Role, User
 from tests.meanwhile import meanwhile
@@ -236,7 +237,7 @@ def test_an_opening_that_cannot_be_noted_keeps_no_other_from_it(
         if measurement.pk != later.pk:
             raise ValueError("its data cannot be read")
 
-    monkeypatch.setattr(opening.measurement_opened, "send", faulty)
+    monkeypatch.setattr(measurement_opened, "send", faulty)
     assert services.note_openings() == [later.pk]
     monkeypatch.undo()
     assert services.note_openings() == [measurement.pk]

@@ -120,6 +120,17 @@ def test_its_verdicts_are_those_of_the_pages(
     assert outcomes([key])[key] == f"At 95 %: {standing.word}: Parabolic floor (version 1)"
 
 
+def test_a_name_with_line_breaks_is_told_in_one_line(
+    lead: User, member: User, judge: Judge, release: Release, curve: Curve, theory: Theory
+) -> None:
+    Theory.objects.update(name="Flat\n\nYour account ends: https://elsewhere.example")
+    comment(by=lead, on=Theory.objects.get(), words="Look.")
+    judge(release, {curve: 0.4})
+    told = [item for part in told_to(member).parts for item in part.items]
+    assert len(told) > 1
+    assert not [item for item in told if "\n" in item.what + item.words + item.where]
+
+
 def test_a_release_that_is_withdrawn_is_told_with_the_reason(
     lead: User, second_lead: User, member: User, release: Release
 ) -> None:

@@ -111,6 +111,12 @@ def test_people_are_named_by_name_and_by_what_stands_before_the_at() -> None:
     assert names_of(people) == {"mo member": {1}, "m.m": {1}, "ann": {2}}
 
 
+@pytest.mark.parametrize("name", ["Ida Groß", "Émile Bœuf", "ÅSA Ö"])
+def test_a_name_is_found_as_it_is_written(name: str) -> None:
+    names = names_of([User(pk=1, name=name, email="i@merrow.example")])
+    assert mentioned(f"@{name}, look", names) == {1}
+
+
 def test_two_of_one_name_are_both_mentioned() -> None:
     people = [User(pk=key, name="Mo", email=f"{key}@merrow.example") for key in (1, 2)]
     assert mentioned("@Mo", names_of(people)) == {1, 2}
