@@ -1,6 +1,6 @@
 """The log of who did what. Services write it in the transaction of the change itself."""
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from enum import StrEnum
 from typing import Any
 
@@ -60,6 +60,7 @@ def record(
     detail: Mapping[str, Any] | None = None,
     desk: User | None = None,
     hidden_with: Model | None = None,
+    into: list[LogEntry] | None = None,
 ) -> LogEntry:
     """Write an entry.
 
@@ -67,8 +68,9 @@ def record(
     about        what it was done to, in words that stay true when that is renamed
     desk         the student at whose desk it was done: only they and the leads see the entry
     hidden_with  the measurement of whose data or verdicts it tells: hidden from whom these are hidden
+    into         where many are gathered that `record_all` writes together; without it, it is written at once
     """
-    return LogEntry.objects.create(
+    entry = LogEntry(
         deed=deed.name.lower(),
         who=who,
         collaboration=collaboration,
@@ -78,3 +80,13 @@ def record(
         desk=desk,
         hidden_with_id=hidden_with.pk if hidden_with else None,
     )
+    if into is None:
+        entry.save()
+    else:
+        into.append(entry)
+    return entry
+
+
+def record_all(entries: Sequence[LogEntry]) -> None:
+    """Write what was gathered, in few queries however much it is."""
+    LogEntry.objects.bulk_create(entries)

@@ -225,7 +225,7 @@ def test_two_batches_that_add_the_same_theories_do_not_wait_for_each_other_in_tu
     mine, other = upload(), upload("x,Deep floor,Flat floor\n1,1,1\n2,2,2\n", by=lead)
     Batch.objects.filter(pk=other.pk).update(measurement=elsewhere)
     other.refresh_from_db()
-    with meanwhile(monkeypatch, batch_submission, "record_theory", lambda: services.submit_batch(other)):
+    with meanwhile(monkeypatch, batch_submission, "_add_curves", lambda: services.submit_batch(other)):
         services.submit_batch(mine)
     assert codes(mine) == {"Flat floor": "", "Deep floor": ""}
     assert codes(other) == {"Flat floor": "theory-appeared", "Deep floor": "theory-appeared"}
@@ -247,7 +247,7 @@ def test_a_name_that_somebody_takes_at_the_last_moment_is_refused(
     assert codes(batch) == {"Flat floor": "", "Deep floor": "theory-appeared"}
 
 
-def test_sixty_curves_take_few_queries_to_read(
+def test_sixty_curves_take_few_queries_to_read_and_to_submit(
     upload: Upload, django_assert_max_num_queries: Callable[[int], object]
 ) -> None:
     names = [f"theory {number}" for number in range(60)]
@@ -257,5 +257,7 @@ def test_sixty_curves_take_few_queries_to_read(
     with django_assert_max_num_queries(12):  # type: ignore[attr-defined]
         batch = upload(table)
     assert set(codes(batch).values()) == {""}
-    services.submit_batch(batch)
+    with django_assert_max_num_queries(30):  # type: ignore[attr-defined]
+        services.submit_batch(batch)
     assert Curve.objects.count() == 60
+    assert LogEntry.objects.count() == 120

@@ -8,7 +8,8 @@ from django.utils import timezone
 from core.errors import UserError
 from core.measurements.models import Measurement
 from core.measurements.reading.limits import MAXIMUM_NAME_LENGTH
-from core.people.log import Deed
+from core.people.log import Deed, record_all
+from core.people.models import LogEntry
 from core.theories.batch_rules import (
     Current,
     current_of,
@@ -43,12 +44,11 @@ def submit_batch(batch: Batch) -> Batch:
         item.batch = locked
     current = _locked_theories(locked, items)
     _refuse_what_changed(locked, items, current)
-    # By name: of two batches that add the same theories neither waits for the other in turn.
-    for item in sorted(items, key=lambda item: item.name):
-        if item.is_accepted and item.name not in current:
-            _add_theory(locked, item, current)
+    entries: list[LogEntry] = []
+    _add_theories(locked, items, current, entries)
     kept = [item for item in items if item.is_accepted]
-    _add_curves(kept, current, now)
+    _add_curves(kept, current, now, entries)
+    record_all(entries)
     BatchItem.objects.bulk_update(items, ["curve", "refusal_code", "refusal"], batch_size=200)
     locked.items.exclude(table=None).filter(pk__in=[item.pk for item in items]).update(table=None)
     if kept:
@@ -81,29 +81,53 @@ def _refuse_name(item: BatchItem, theory: Theory) -> None:
     )
 
 
-def _add_theory(batch: Batch, item: BatchItem, current: dict[str, Current]) -> None:
-    theory = Theory(
-        collaboration=batch.collaboration, name=item.name, submitted_by=batch.uploaded_by, desk=batch.desk
+def _add_theories(
+    batch: Batch, items: list[BatchItem], current: dict[str, Current], entries: list[LogEntry]
+) -> None:
+    # By name: of two batches that add the same theories neither waits for the other in turn.
+    new = sorted(
+        (item for item in items if item.is_accepted and item.name not in current), key=lambda item: item.name
     )
+    made = [_theory(batch, item) for item in new]
+    try:
+        with transaction.atomic():
+            Theory.objects.bulk_create(made)
+    except IntegrityError:
+        # Somebody added one of them between the look above and now.
+        made = [theory for item in new if (theory := _added_alone(batch, item))]
+    for theory in made:
+        record_theory(Deed.ADDED_THEORY, theory, batch.uploaded_by, into=entries)
+        current[theory.name] = Current(theory, version=0)
+
+
+def _added_alone(batch: Batch, item: BatchItem) -> Theory | None:
+    """The theory of this item, or None where somebody else has added one of its name: the item is refused then."""
+    theory = _theory(batch, item)
     try:
         with transaction.atomic():
             theory.save()
     except IntegrityError:
-        # Somebody added it between the look above and now.
         there = theories_of(batch, [item.name]).select_related("submitted_by").first()
         if there is None:
             raise
         _refuse_name(item, there)
-        return
-    record_theory(Deed.ADDED_THEORY, theory, batch.uploaded_by)
-    current[item.name] = Current(theory, version=0)
+        return None
+    return theory
 
 
-def _add_curves(items: list[BatchItem], current: dict[str, Current], now: datetime) -> None:
+def _theory(batch: Batch, item: BatchItem) -> Theory:
+    return Theory(
+        collaboration=batch.collaboration, name=item.name, submitted_by=batch.uploaded_by, desk=batch.desk
+    )
+
+
+def _add_curves(
+    items: list[BatchItem], current: dict[str, Current], now: datetime, entries: list[LogEntry]
+) -> None:
     curves = [_curve(item, current[item.name], now) for item in items]
     for item, curve in zip(items, Curve.objects.bulk_create(curves), strict=True):
         item.curve = curve
-        record_submission(curve)
+        record_submission(curve, into=entries)
 
 
 def _curve(item: BatchItem, current: Current, now: datetime) -> Curve:

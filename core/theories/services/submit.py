@@ -7,6 +7,7 @@ from django.utils import timezone
 from core.errors import UserError
 from core.measurements.models import Measurement
 from core.people.log import Deed, record
+from core.people.models import LogEntry
 from core.theories.models import Curve, Theory
 from core.theories.rules import refuse_closed, refuse_short
 
@@ -35,7 +36,7 @@ def submit_curve(curve: Curve) -> Curve:
     return draft
 
 
-def record_submission(curve: Curve) -> None:
+def record_submission(curve: Curve, into: list[LogEntry] | None = None) -> None:
     """Write into the log who submitted which version, and its hash."""
     theory = curve.theory
     record(
@@ -46,4 +47,5 @@ def record_submission(curve: Curve) -> None:
         url=curve.get_absolute_url(),
         detail={"version": curve.version, "sha256": curve.file_sha256},
         desk=theory.desk,
+        into=into,
     )

@@ -8,7 +8,7 @@ from django.db import IntegrityError, transaction
 from core.errors import UserError
 from core.people.access import desk_of
 from core.people.log import Deed, record
-from core.people.models import Collaboration, User
+from core.people.models import Collaboration, LogEntry, User
 from core.revision import save_if_current
 from core.theories.models import Theory
 from core.theories.rules import refuse_registered
@@ -67,7 +67,13 @@ def edit_theory(
     record_theory(Deed.EDITED_THEORY, theory, by, detail)
 
 
-def record_theory(deed: Deed, theory: Theory, who: User, detail: Mapping[str, Any] | None = None) -> None:
+def record_theory(
+    deed: Deed,
+    theory: Theory,
+    who: User,
+    detail: Mapping[str, Any] | None = None,
+    into: list[LogEntry] | None = None,
+) -> None:
     """Write into the log what was done to a theory."""
     record(
         deed,
@@ -77,6 +83,7 @@ def record_theory(deed: Deed, theory: Theory, who: User, detail: Mapping[str, An
         url=theory.get_absolute_url(),
         detail=detail,
         desk=theory.desk,
+        into=into,
     )
 
 
