@@ -1,6 +1,7 @@
 """What freezing takes up, what it refuses, and that nothing changes afterwards."""
 
 from collections.abc import Callable
+from importlib import import_module
 
 import pytest
 from django.test import Client
@@ -25,8 +26,10 @@ from fits.reports.services import (
     start_later_version,
     start_report,
 )
+from tests.meanwhile import meanwhile
 
 SignedIn = Callable[[User], Client]
+FREEZING = import_module("fits.reports.services.freeze_report")
 
 
 @pytest.fixture
@@ -232,3 +235,31 @@ def test_a_part_can_be_replaced_by_the_newest_assessment_of_the_newest_release(
     client.post(f"/report-parts/{part.pk}/renew", {"seen": draft.revision})
     assert draft.parts.get().assessment == newer
     assert "Replace by" not in client.get(draft.get_absolute_url()).content.decode()
+
+
+@pytest.mark.django_db(transaction=True)
+def test_who_edits_a_part_while_it_is_frozen_is_told_and_changes_nothing(
+    lead: User, draft: Report, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    part = draft.parts.get()
+    part.words = "Too late."
+    with meanwhile(monkeypatch, FREEZING, "snapshot_of", lambda: edit_part(part=part, seen=0)) as refusals:
+        frozen(draft, lead)
+    assert refusals == ["report-frozen"]
+    assert draft.parts.get().words == ""
+
+
+@pytest.mark.django_db(transaction=True)
+def test_of_two_who_freeze_at_once_one_does(
+    lead: User, draft: Report, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    seen = draft.revision
+
+    def also() -> None:
+        freeze_report(user=lead, report=Report.objects.get(), seen=seen)
+
+    with meanwhile(monkeypatch, FREEZING, "snapshot_of", also) as refusals:
+        frozen(draft, lead)
+    assert refusals == ["report-frozen"]
+    assert LogEntry.objects.filter(deed="froze_report").count() == 1
+    assert Printing.objects.count() == len(Paper)

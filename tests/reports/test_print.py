@@ -49,16 +49,19 @@ def two_parts(lead: User, done: Assessment) -> Report:
     return report
 
 
+DRAWN: dict[str, str] = {}
+
+
+def draw_once(figure: Figure) -> str:
+    """The drawing; it is the same in both parts and for both papers."""
+    if figure.name not in DRAWN:
+        DRAWN[figure.name] = svg(figure)
+    return DRAWN[figure.name]
+
+
 @pytest.fixture
 def laid_out(two_parts: Report, monkeypatch: pytest.MonkeyPatch) -> Callable[[Paper], Any]:
     """The pages of a paper, as they are before they are written."""
-    kept: dict[str, str] = {}
-
-    def draw_once(figure: Figure) -> str:
-        # Both parts show the same.
-        if figure.name not in kept:
-            kept[figure.name] = svg(figure)
-        return kept[figure.name]
 
     def lay_out(paper: Paper) -> Any:
         pages: list[Any] = []
