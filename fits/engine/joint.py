@@ -7,8 +7,12 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-# So many standard errors of the simulation around the bound, a p-value does not settle on which side it lies.
-ERRORS_LEFT_OPEN = 2.0
+import scipy.special
+
+# A p-value that is simulated with more than this chance from one at the bound does not settle on which side it lies.
+# It is the chance of two standard errors, which themselves would not do: so few repeats decide that their number is
+# far from normal.
+CHANCE_LEFT_OPEN = 0.0228
 
 
 @dataclass(frozen=True)
@@ -48,11 +52,11 @@ def joint_of(
     count = len(p_values)
     bound = joint_bound(level, count)
     is_inside = all(p > bound for p in p_values)
-    margins = [ERRORS_LEFT_OPEN * math.sqrt(bound * (1.0 - bound) / of) for of in draws]
+    simulated = zip(p_values, draws, strict=True)
     if is_inside:
-        is_settled = all(p > bound + margin for p, margin in zip(p_values, margins, strict=True))
+        is_settled = all(_is_surely_above(bound, p, of) for p, of in simulated)
     else:
-        is_settled = any(p < bound - margin for p, margin in zip(p_values, margins, strict=True))
+        is_settled = any(_is_surely_below(bound, p, of) for p, of in simulated)
     return Joint(
         measurements=count,
         bound=bound,
@@ -61,3 +65,18 @@ def joint_of(
         is_inside=is_inside,
         is_settled=is_settled,
     )
+
+
+def _is_surely_above(bound: float, p_value: float, draws: int) -> bool:
+    """Whether so many of the draws beyond the curve, or more, would hardly come from a p-value at the bound."""
+    return float(scipy.special.bdtrc(_beyond(p_value, draws) - 1, draws, bound)) < CHANCE_LEFT_OPEN
+
+
+def _is_surely_below(bound: float, p_value: float, draws: int) -> bool:
+    """Whether so few of the draws, or fewer, would."""
+    return float(scipy.special.bdtr(_beyond(p_value, draws), draws, bound)) < CHANCE_LEFT_OPEN
+
+
+def _beyond(p_value: float, draws: int) -> int:
+    """How many of the draws were as far off as the curve: p = (1 + this)/(draws + 1)."""
+    return round(p_value * (draws + 1)) - 1

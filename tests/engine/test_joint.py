@@ -71,6 +71,24 @@ def test_a_p_value_within_the_error_of_its_simulation_leaves_the_verdict_open() 
     assert not joint_of([1 / 2001, *rest], [0.5] * 8, [2000] * 8, level=0.99).is_settled
 
 
+@pytest.mark.parametrize(("level", "measurements"), [(0.95, 8), (0.99, 8), (0.99, 60), (0.67, 1)])
+def test_a_verdict_that_is_called_settled_is_seldom_wrong(level: float, measurements: int) -> None:
+    # p-values as simulated for curves at the very bound: either verdict is as wrong as the other.
+    draws, bound = 2000, 1.0 - level ** (1.0 / measurements)
+    beyond = np.random.default_rng(5).binomial(draws, bound, 4000)
+    rest = [1.0] * (measurements - 1)
+    joints = [
+        joint_of(
+            [(1 + count) / (draws + 1), *rest], [0.5] * measurements, [draws] * measurements, level=level
+        )
+        for count in beyond.tolist()
+    ]
+    for side in (True, False):
+        settled = np.mean([joint.is_settled and joint.is_inside == side for joint in joints])
+        # Three standard errors of 4000 repeats above 0.0228.
+        assert settled < 0.03
+
+
 def test_a_rejection_beyond_doubt_is_settled_whatever_the_others_say() -> None:
     bound = 1.0 - 0.95**0.5
     assert joint_of([0.001, bound + 0.0001], [0.999, 0.97], DRAWS, level=0.95).is_settled
