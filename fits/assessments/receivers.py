@@ -1,11 +1,11 @@
-"""What follows for assessments when a release is published or a measurement opens."""
+"""What follows for assessments when a release is published or withdrawn, or a measurement opens."""
 
 from typing import Any
 
 from django.dispatch import receiver
 
 from core.measurements.models import Measurement, Release
-from core.measurements.signals import measurement_opened, release_published
+from core.measurements.signals import measurement_opened, release_published, release_withdrawn
 from core.people.models import User
 from fits.assessments.services import assess_current
 
@@ -13,6 +13,12 @@ from fits.assessments.services import assess_current
 @receiver(release_published)
 def assess_published(*, release: Release, by: User, **_: Any) -> None:
     """Judge all current curves on it, unless its data are sealed."""
+    assess_current(release.measurement, by=by)
+
+
+@receiver(release_withdrawn)
+def assess_left(*, release: Release, by: User, **_: Any) -> None:
+    """Judge on the release that is the newest now the curves that came since; nothing where none did."""
     assess_current(release.measurement, by=by)
 
 

@@ -212,6 +212,31 @@ def test_as_many_queries_for_many_curves_as_for_few(
     assert queries() == few
 
 
+def test_curves_that_came_since_are_judged_on_the_release_that_is_the_newest_after_a_withdrawal(
+    measurement: Measurement, lead: User, member: User
+) -> None:
+    curves = [curve_of(measurement, member)]
+    first = publish(measurement, lead)
+    curves.append(curve_of(measurement, member, "Parabolic floor"))
+    second = publish(measurement, lead)
+    withdraw = partial(services.withdraw_release, user=lead, reason="A wrong gauge.")
+    withdraw(release=second)
+    newest = Assessment.objects.filter(release=first).order_by("-pk")
+    assert [set(made.curves.all()) for made in newest] == [set(curves), {curves[0]}]
+    withdraw(release=first)
+    assert Assessment.objects.count() == 3
+
+
+def test_a_withdrawal_has_nothing_judged_again_where_no_curve_came_since(
+    measurement: Measurement, lead: User, member: User
+) -> None:
+    curve_of(measurement, member)
+    old, newest = publish(measurement, lead), publish(measurement, lead)
+    for release in (newest, old):
+        services.withdraw_release(user=lead, release=release, reason="A wrong gauge.")
+    assert Assessment.objects.count() == 2
+
+
 @pytest.mark.django_db(transaction=True)
 def test_nothing_is_assessed_that_is_being_withdrawn(
     release: Release, curve: Curve, lead: User, monkeypatch: pytest.MonkeyPatch

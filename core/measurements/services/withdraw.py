@@ -5,6 +5,7 @@ from django.utils import timezone
 
 from core.errors import UserError
 from core.measurements.models import Measurement, Release
+from core.measurements.signals import release_withdrawn
 from core.people.log import Deed, record
 from core.people.models import User
 
@@ -41,4 +42,5 @@ def withdraw_release(*, user: User, release: Release, reason: str) -> None:
         detail={"reason": reason},
         hidden_with=measurement,
     )
+    release_withdrawn.send(sender=Release, release=release, by=user)
     release.refresh_from_db(fields=["state", "withdrawn_at", "withdrawn_by", "withdrawal_reason"])

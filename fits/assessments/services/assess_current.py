@@ -1,4 +1,5 @@
-"""Assess all current curves of a measurement: when a release is published, and when a sealed measurement opens."""
+"""Assess all current curves of a measurement: when a release is published or withdrawn, and when a sealed measurement
+opens."""
 
 from collections.abc import Iterable, Sequence
 from typing import Any
@@ -25,7 +26,7 @@ def assess_current(measurement: Measurement, *, by: User | None) -> list[Assessm
     """One assessment of the shared curves and one for each desk, on the newest release that is published; none while
     the measurement is sealed. Curves that do not reach over its x are left out.
 
-    by  who published or opened it; None for an opening at its time, which whoever published answers for
+    by  who published, withdrew or opened it; None for an opening at its time, which whoever published answers for
     """
     published = measurement.releases.filter(state=Release.State.PUBLISHED)
     release = published.select_related("measurement", "created_by").order_by("-number").first()
