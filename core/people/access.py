@@ -115,7 +115,9 @@ def readers_of(row: Model) -> QuerySet[User]:
         here = here.filter(allowed | Q(user=desk))
     measurement = _along(row, path) if (path := getattr(type(row), "SEAL_PATH", "")) else None
     if isinstance(measurement, Model) and not sees_data(AnonymousUser(), measurement):
-        looks = apps.get_model("measurements", "EarlyLook")._default_manager.filter(measurement=measurement.pk)
+        looks = apps.get_model("measurements", "EarlyLook")._default_manager.filter(
+            measurement=measurement.pk
+        )
         here = here.filter(role=Role.LEAD, user__in=looks.values("user"))
     return User.objects.filter(pk__in=here.values("user"))
 
