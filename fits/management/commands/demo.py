@@ -7,7 +7,6 @@ from django.core.management.base import CommandParser
 from core.management.site_command import SiteCommand
 from core.single_machine import Site
 from fits.management.demo import load, show
-from fits.management.demo.accounts import LEAD
 
 SECONDS_TO_ASSESS = 300.0
 
@@ -40,14 +39,19 @@ class Command(SiteCommand):
         site.processes.wait_until(
             lambda: show.all_done(assessments), seconds=SECONDS_TO_ASSESS, what="the demo's assessments"
         )
-        self.stdout.write("They are done.")
+        self.stdout.write("They are done. It looks for the peaks that the data demand …")
+        self.stdout.flush()
+        shown = show.reported(assessments)
+        site.processes.wait_until(
+            lambda: show.all_found(shown), seconds=SECONDS_TO_ASSESS, what="the features of the demo's report"
+        )
+        report = show.report_on(shown)
+        self.stdout.write(
+            f"They are found. Its report: {site.address.rstrip('/')}{report.get_absolute_url()}"
+        )
         self.stdout.flush()
         if not options["exit_when_ready"]:
             site.watch()
         self.stdout.write(f"\n{show.rankings(assessments)}\n")
-        newest = max(
-            (found for found in assessments if found.requested_by.email == LEAD.email),
-            key=lambda found: found.release.number or 0,
-        )
-        sentence = show.open_by_share_link(newest, site.address)
+        sentence = show.open_by_share_link(report, site.address)
         self.stdout.write(f"A report opens by its share link and says:\n  {sentence}")
