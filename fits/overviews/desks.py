@@ -3,22 +3,14 @@
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from datetime import UTC, datetime
-from typing import Any
 
-from django.db.models import Count, F, OuterRef, Subquery
 from django.http import Http404
-from django.utils.safestring import SafeString
 
 from core.measurements.models import Measurement
 from core.people.access import seen_by
 from core.people.models import Collaboration, Role, User
 from core.theories.models import Curve
-from fits.assessments.models import Assessment, Verdict
-from fits.engine.ball import is_above
-from fits.engine.settings import DEFAULT_DRAWS
-from fits.overviews.signs import INSIDE, OFF, OUTSIDE, sign_of
-from fits.overviews.standings import LEVEL, LEVEL_KEY
-from fits.reports import numbers
+from fits.overviews.standings import Standing, standings_at_desks
 from fits.reports.exports import csv_text
 from fits.reports.figures.figure import Cell
 
@@ -41,43 +33,12 @@ COLUMNS = (
 
 
 @dataclass(frozen=True)
-class DeskVerdict:
-    """What the newest assessment that judged a curve says of it."""
-
-    assessment: int
-    release_number: int
-    is_withdrawn: bool
-    ended_at: datetime | None
-    rank: int
-    of: int
-    p_value: float
-    scale_p_value: float
-    is_inside: bool
-    draws: int
-
-    @property
-    def word(self) -> str:
-        """The verdict in words."""
-        if not self.is_inside:
-            return OUTSIDE
-        return INSIDE if is_above(self.scale_p_value, LEVEL) else OFF
-
-    @property
-    def sign(self) -> SafeString:
-        """The verdict as shape and word."""
-        return sign_of(self.word)
-
-    @property
-    def p_value_written(self) -> str:
-        return numbers.p_value(self.p_value, smallest=numbers.smallest_p_value(self.draws))
-
-
-@dataclass(frozen=True)
 class Submission:
-    """A submitted curve; no verdict where none was computed or its measurement is sealed for the reader."""
+    """A submitted curve, and what the newest assessment that judged it says; no verdict where none was computed or its
+    measurement is sealed for the reader."""
 
     curve: Curve
-    verdict: DeskVerdict | None
+    verdict: Standing | None
 
 
 @dataclass(frozen=True)
@@ -131,7 +92,7 @@ def desks_page(collaboration: Collaboration, reader: User, chosen: Mapping[str, 
     students = sorted(submitted, key=lambda user: (str(user).casefold(), user.pk))
     student = _among([user.pk for user in students], chosen.get("student", ""))
     measurement = _among([row.pk for row in measurements], chosen.get("measurement", ""))
-    verdicts = _newest_verdicts(collaboration, reader)
+    verdicts = standings_at_desks(collaboration, reader)
     desks = tuple(
         Desk(
             user,
@@ -170,7 +131,7 @@ def _rows(page: DesksPage) -> Iterator[tuple[Cell, ...]]:
             )
 
 
-def _cells(verdict: DeskVerdict | None) -> tuple[Cell, ...]:
+def _cells(verdict: Standing | None) -> tuple[Cell, ...]:
     if verdict is None:
         return (None,) * 7
     release = f"{verdict.release_number}{' (withdrawn)' if verdict.is_withdrawn else ''}"
@@ -202,52 +163,3 @@ def _among(keys: list[int], text: str) -> int | None:
         if str(key) == text:
             return key
     raise Http404
-
-
-def _newest_verdicts(collaboration: Collaboration, reader: User) -> dict[int, DeskVerdict]:
-    """By curve. One query."""
-    together = Verdict.objects.filter(assessment=OuterRef("assessment")).order_by().values("assessment")
-    judged = Verdict.objects.filter(
-        curve__theory__collaboration=collaboration,
-        curve__theory__desk__isnull=False,
-        assessment__status=Assessment.Status.DONE,
-    )
-    rows = (
-        seen_by(judged, reader)
-        .annotate(of=Subquery(together.annotate(count=Count("pk")).values("count")))
-        .order_by(F("assessment__ended_at").desc(nulls_last=True), "-assessment")
-        .values(
-            "curve",
-            "assessment",
-            "assessment__ended_at",
-            "assessment__settings__draws",
-            "assessment__release__number",
-            "assessment__release__state",
-            "rank",
-            "of",
-            "p_value",
-            "scale_p_value",
-            "inside",
-        )
-    )
-    newest: dict[int, DeskVerdict] = {}
-    for row in rows:
-        if row["curve"] not in newest:
-            newest[row["curve"]] = _verdict(row)
-    return newest
-
-
-def _verdict(row: Mapping[str, Any]) -> DeskVerdict:
-    return DeskVerdict(
-        assessment=row["assessment"],
-        release_number=row["assessment__release__number"],
-        is_withdrawn=row["assessment__release__state"] == "withdrawn",
-        ended_at=row["assessment__ended_at"],
-        rank=row["rank"],
-        of=row["of"],
-        p_value=row["p_value"],
-        scale_p_value=row["scale_p_value"],
-        # An assessment may have asked for other levels; its p-value answers for each.
-        is_inside=row["inside"].get(LEVEL_KEY, is_above(row["p_value"], LEVEL)),
-        draws=row["assessment__settings__draws"] or DEFAULT_DRAWS,
-    )

@@ -3,9 +3,10 @@
 from collections.abc import Collection, Sequence
 from itertools import groupby
 
+from fits.assessments.three_verdicts import LEVEL, LEVEL_KEY
 from fits.overviews.history import History
 from fits.overviews.releases import ReleaseSummary
-from fits.overviews.standings import LEVEL, LEVEL_KEY, Standing
+from fits.overviews.standings import Standing
 from fits.reports.figures import palette
 from fits.reports.figures.figure import (
     Axis,

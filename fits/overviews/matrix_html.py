@@ -6,8 +6,9 @@ from collections.abc import Iterable
 from django.utils.html import format_html, format_html_join
 from django.utils.safestring import SafeString
 
+from fits.assessments.three_verdicts import INSIDE, OUTSIDE
 from fits.engine.joint import Joint
-from fits.overviews.signs import INSIDE, OUTSIDE, sign_of
+from fits.overviews.signs import sign_of
 from fits.overviews.standings import Standing
 
 ROW = '<tr><th scope="row"><a href="{}">{}</a></th>{}{}</tr>\n'

@@ -5,7 +5,7 @@ from functools import cache
 from django.template.loader import render_to_string
 from django.utils.safestring import SafeString
 
-INSIDE, OFF, OUTSIDE = "inside", "inside, but off", "outside"
+from fits.assessments.three_verdicts import OFF, OUTSIDE
 
 
 @cache

@@ -5,25 +5,25 @@ a covariance, a result or a detail.
 """
 
 from collections import Counter
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
+from datetime import datetime
 from typing import Any
 
 from django.db.models import Count, F, Max, OuterRef, QuerySet, Subquery
 from django.utils.safestring import SafeString
 
 from core.people.access import in_overview, seen_by
-from core.people.models import User
+from core.people.models import Collaboration, User
 from core.theories.models import Curve
 from fits.assessments.models import Assessment, Verdict
+from fits.assessments.three_verdicts import LEVEL, OFF, is_inside_by, verdict_word
 from fits.engine.ball import is_above
 from fits.engine.scales import TABLE_DRAWS
 from fits.engine.settings import DEFAULT_DRAWS
-from fits.overviews.signs import INSIDE, OFF, OUTSIDE, sign_of
+from fits.overviews.signs import sign_of
 from fits.reports import numbers
 
-LEVEL = 0.95
-LEVEL_KEY = "0.95"
 SMALLEST_SCALE_P_VALUE = numbers.smallest_p_value(TABLE_DRAWS)
 
 
@@ -38,6 +38,7 @@ class Standing:
     release_number: int
     is_withdrawn: bool
     assessment: int
+    ended_at: datetime | None
     theory: int
     theory_name: str
     curve: int
@@ -69,9 +70,8 @@ class Standing:
 
     def word_at(self, level: float) -> str:
         """The verdict at a level in words."""
-        if not (self.is_inside if level == LEVEL else is_above(self.p_value, level)):
-            return OUTSIDE
-        return INSIDE if is_above(self.scale_p_value, level) else OFF
+        is_inside = self.is_inside if level == LEVEL else is_above(self.p_value, level)
+        return verdict_word(is_inside=is_inside, scale_p_value=self.scale_p_value, level=level)
 
     @property
     def share_of_radius(self) -> float | None:
@@ -113,23 +113,24 @@ def standings_in(assessments: Iterable[int]) -> dict[int, list[Standing]]:
 
 def standings_of_theory(theory: int, reader: User) -> list[Standing]:
     """Where a theory was judged: per release by the newest done assessment that judged it. One query."""
-    judged = Verdict.objects.filter(curve__theory=theory, assessment__status=Assessment.Status.DONE)
-    together = Verdict.objects.filter(assessment=OuterRef("assessment")).order_by().values("assessment")
-    verdicts = (
-        seen_by(judged, reader)
-        .annotate(of=Subquery(together.annotate(count=Count("pk")).values("count")))
-        .order_by(
-            "assessment__release__measurement__name",
-            "-assessment__release__number",
-            F("assessment__ended_at").desc(nulls_last=True),
-            "-assessment",
-            "-curve__version",
-        )
+    judged = Verdict.objects.filter(curve__theory=theory)
+    newest: dict[int, Standing] = {}
+    for standing in _newest_first(
+        judged, reader, "assessment__release__measurement__name", "-assessment__release__number"
+    ):
+        newest.setdefault(standing.release, standing)
+    return list(newest.values())
+
+
+def standings_at_desks(collaboration: Collaboration, reader: User) -> dict[int, Standing]:
+    """By curve of a desk, what the newest done assessment that judged it says of it. One query."""
+    theirs = Verdict.objects.filter(
+        curve__theory__collaboration=collaboration, curve__theory__desk__isnull=False
     )
     newest: dict[int, Standing] = {}
-    for row in _fields_of(verdicts, "of"):
-        newest.setdefault(row["assessment__release"], _standing(row, row["of"]))
-    return list(newest.values())
+    for standing in _newest_first(theirs, reader):
+        newest.setdefault(standing.curve, standing)
+    return newest
 
 
 def newest_curves(measurements: Iterable[int], reader: User) -> dict[tuple[int, int], NewestCurve]:
@@ -159,9 +160,21 @@ def by_theory(standings: Iterable[Standing]) -> dict[int, Standing]:
     return found
 
 
+def _newest_first(verdicts: QuerySet[Verdict], reader: User, *order: str) -> Iterator[Standing]:
+    """Those that the reader sees, in this order and then by the newest assessment. One query."""
+    together = Verdict.objects.filter(assessment=OuterRef("assessment")).order_by().values("assessment")
+    seen = (
+        seen_by(verdicts.filter(assessment__status=Assessment.Status.DONE), reader)
+        .annotate(of=Subquery(together.annotate(count=Count("pk")).values("count")))
+        .order_by(*order, F("assessment__ended_at").desc(nulls_last=True), "-assessment", "-curve__version")
+    )
+    return (_standing(row, row["of"]) for row in _fields_of(seen, "of"))
+
+
 def _fields_of(verdicts: QuerySet[Verdict], *more: str) -> Iterable[Mapping[str, Any]]:
     rows: Iterable[Mapping[str, Any]] = verdicts.values(
         "assessment",
+        "assessment__ended_at",
         "assessment__settings__draws",
         "assessment__radius",
         "assessment__release",
@@ -192,6 +205,7 @@ def _standing(row: Mapping[str, Any], judged: int) -> Standing:
         release_number=row["assessment__release__number"],
         is_withdrawn=row["assessment__release__state"] == "withdrawn",
         assessment=row["assessment"],
+        ended_at=row["assessment__ended_at"],
         theory=row["curve__theory"],
         theory_name=row["curve__theory__name"],
         curve=row["curve"],
@@ -203,7 +217,6 @@ def _standing(row: Mapping[str, Any], judged: int) -> Standing:
         entry_level=row["entry_level"],
         p_value=row["p_value"],
         scale_p_value=row["scale_p_value"],
-        # An assessment may have asked for other levels; its p-value answers for each.
-        is_inside=row["inside"].get(LEVEL_KEY, is_above(row["p_value"], LEVEL)),
+        is_inside=is_inside_by(row),
         draws=row["assessment__settings__draws"] or DEFAULT_DRAWS,
     )

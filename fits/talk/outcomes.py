@@ -1,13 +1,10 @@
 """What an assessment comes to in one line: the verdicts at 95 %, in the words of the pages."""
 
 from collections.abc import Iterable, Mapping
-from typing import Any
 
 from fits.assessments.models import Verdict
+from fits.assessments.three_verdicts import INSIDE, OFF, OUTSIDE, is_inside_by, verdict_word
 
-LEVEL = 0.95
-LEVEL_KEY = "0.95"
-WORDS = ("inside", "inside, but off", "outside")
 # Of each verdict so many theories are named; the others are counted.
 MOST_NAMES = 6
 
@@ -19,21 +16,14 @@ def outcomes(assessments: Iterable[int]) -> dict[int, str]:
     for row in rows.values(
         "assessment", "p_value", "scale_p_value", "inside", "curve__theory__name", "curve__version"
     ):
-        alike = found.setdefault(row["assessment"], {}).setdefault(word_of(row), [])
+        word = verdict_word(is_inside=is_inside_by(row), scale_p_value=row["scale_p_value"])
+        alike = found.setdefault(row["assessment"], {}).setdefault(word, [])
         alike.append(f"{row['curve__theory__name']} (version {row['curve__version']})")
     return {key: _line(by_word) for key, by_word in found.items()}
 
 
-def word_of(verdict: Mapping[str, Any]) -> str:
-    """The verdict at 95 %. "Inside, but off": the ball admits the curve and the scale set rejects it."""
-    # An assessment may have asked for other levels; its p-value answers for each.
-    if not verdict["inside"].get(LEVEL_KEY, verdict["p_value"] > 1.0 - LEVEL):
-        return "outside"
-    return "inside, but off" if verdict["scale_p_value"] <= 1.0 - LEVEL else "inside"
-
-
 def _line(by_word: Mapping[str, list[str]]) -> str:
-    groups = [f"{word}: {_names(by_word[word])}" for word in WORDS if word in by_word]
+    groups = [f"{word}: {_names(by_word[word])}" for word in (INSIDE, OFF, OUTSIDE) if word in by_word]
     return f"At 95 %: {'; '.join(groups)}"
 
 
