@@ -53,9 +53,10 @@ class History:
         outside_since = self.judged[-1]
         for standing in reversed(self.judged):
             if standing.is_inside:
-                return f"release {outside_since.release_number}"
+                return f"release {outside_since.release_number}{_left_open(standing, outside_since)}"
             outside_since = standing
-        return f"never in it, first judged at release {outside_since.release_number}"
+        first = outside_since.release_number
+        return f"never in it{_left_open(*self.judged)}; first judged at release {first}"
 
     @property
     def changes(self) -> tuple[str, ...]:
@@ -66,11 +67,11 @@ class History:
         return (self._stayed(), *found) if not self.has_moved else tuple(found)
 
     def _stayed(self) -> str:
-        word = "inside" if self.judged[-1].is_inside else "outside"
         if len(self.judged) == 1:
-            return f"{word} at release {self.judged[0].release_number}"
-        every = len(self.judged) == len(self.counting)
-        return f"{word} at every release" if every else f"{word} at every release that judged it"
+            return _first(self.judged[0])
+        word = "inside" if self.judged[-1].is_inside else "outside"
+        which = "" if len(self.judged) == len(self.counting) else " that judged it"
+        return f"{word} at every release{which}{_left_open(*self.judged)}"
 
     def _steps(self) -> Iterable[str]:
         known: Standing | None = None
@@ -86,18 +87,26 @@ class History:
 
 
 def _first(standing: Standing) -> str:
-    return f"{'inside' if standing.is_inside else 'outside'} at release {standing.release_number}"
+    word = "inside" if standing.is_inside else "outside"
+    return f"{word} at release {standing.release_number}{_left_open(standing)}"
+
+
+def _left_open(*standings: Standing) -> str:
+    """What is said after a statement that rests on all of these, where a p-value is too near to what decides."""
+    draws = {standing.draws for standing in standings if not standing.is_settled}
+    return f", which {max(draws)} draws leave open" if draws else ""
 
 
 def _step(known: Standing, standing: Standing) -> str:
     """What changed between two releases; empty where nothing did."""
-    words = []
+    words, doubt = [], ""
     if known.is_inside != standing.is_inside:
         words.append("came inside" if standing.is_inside else "moved outside")
+        doubt = _left_open(known, standing)
     if known.version != standing.version:
         newer = f"version {standing.version} of its curve in place of version {known.version}"
         words.append(f"with {newer}" if words else newer)
-    return f"{' '.join(words)} at release {standing.release_number}" if words else ""
+    return f"{' '.join(words)} at release {standing.release_number}{doubt}" if words else ""
 
 
 def histories(

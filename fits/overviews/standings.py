@@ -19,6 +19,7 @@ from core.theories.models import Curve
 from fits.assessments.models import Assessment, Verdict
 from fits.assessments.three_verdicts import LEVEL, OFF, is_inside_by, verdict_word
 from fits.engine.ball import is_above
+from fits.engine.joint import joint_of
 from fits.engine.scales import TABLE_DRAWS
 from fits.engine.settings import DEFAULT_DRAWS
 from fits.overviews.signs import sign_of
@@ -57,6 +58,11 @@ class Standing:
     def word(self) -> str:
         """The verdict at 95 % in words."""
         return self.word_at(LEVEL)
+
+    @property
+    def is_settled(self) -> bool:
+        """Whether more draws could hardly turn the verdict of the exact p-value at 95 %."""
+        return joint_of([self.p_value], [self.entry_level], [self.draws], level=LEVEL).is_settled
 
     @property
     def is_off(self) -> bool:
