@@ -9,6 +9,7 @@ import numpy as np
 from core.measurements.models import Measurement
 from core.people.models import User
 from fits.assessments.models import Assessment
+from fits.engine.separation import MOST_CURVES
 from fits.overviews.releases import ReleaseSummary, newest_releases
 from fits.overviews.standings import Standing, standings_in
 from fits.reports import numbers
@@ -38,11 +39,11 @@ class Pair:
 @dataclass(frozen=True)
 class PairsPage:
     """apart: how many of all pairs cannot both be inside; matching: how many of these hold the chosen theory;
-    shown: the largest of those. `has_distances`: whether the assessment kept them."""
+    shown: the largest of those. no_distances: why the assessment kept none, empty where it did."""
 
     release: ReleaseSummary | None
     radius: float | None
-    has_distances: bool
+    no_distances: str
     standings: tuple[Standing, ...]
     pairs: int
     apart: int
@@ -70,13 +71,13 @@ def pairs_page(measurement: Measurement, reader: User, theory: str = "") -> Pair
     kept_of = Assessment.objects.filter(pk=key).values_list("radius", "separations")
     radius, kept = kept_of.first() or (None, None)
     chosen = next((one.theory for one in standings if str(one.theory) == theory), None)
+    count = len(standings)
     found = _apart(kept, radius, standings) if kept and radius else []
     matching = [pair for pair in found if chosen is None or chosen in (pair.first.theory, pair.second.theory)]
-    count = len(standings)
     return PairsPage(
         release=release,
         radius=radius,
-        has_distances=kept is not None,
+        no_distances="" if kept is not None else why_no_distances(count),
         standings=tuple(standings),
         pairs=count * (count - 1) // 2,
         apart=len(found),
@@ -84,6 +85,13 @@ def pairs_page(measurement: Measurement, reader: User, theory: str = "") -> Pair
         shown=tuple(matching[:MOST_SHOWN]),
         theory=chosen,
     )
+
+
+def why_no_distances(judged: int) -> str:
+    """Of an assessment that kept no distances between so many curves: why, and what helps."""
+    if judged > MOST_CURVES:
+        return f"judged {judged} curves, and distances are kept of at most {MOST_CURVES}: assess fewer to see pairs"
+    return "is an older one and kept no distances between curves: assess again to see pairs"
 
 
 def _apart(kept: Mapping[str, Any], radius: float, standings: list[Standing]) -> list[Pair]:

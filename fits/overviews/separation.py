@@ -9,6 +9,7 @@ from core.people.models import Collaboration, User
 from core.theories.models import Theory
 from fits.assessments.models import Assessment
 from fits.overviews.comparison import Column, columns_of
+from fits.overviews.pairs import why_no_distances
 from fits.overviews.standings import Standing
 from fits.reports import numbers
 
@@ -106,7 +107,7 @@ def _apart(column: Column, first: int, second: int, kept: Mapping[str, Any]) -> 
         return "did not judge both"
     separations, radius = kept.get("separations"), kept.get("radius")
     if separations is None:
-        return "kept no distances between curves: assess again to see pairs"
+        return why_no_distances(one.of)
     if radius is None:
         return "has no radius at 95 %: that level was not asked for"
     if not radius:

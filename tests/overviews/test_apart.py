@@ -9,6 +9,7 @@ from django.urls import reverse
 from core.measurements.models import Measurement, Release
 from core.people.models import Collaboration, User
 from core.theories.models import Curve
+from fits.overviews import pairs
 from fits.overviews.pairs import MOST_SHOWN, pairs_page
 from fits.overviews.separation import separation_page
 from tests.overviews.conftest import Maker
@@ -61,7 +62,7 @@ def test_of_very_many_pairs_the_largest_are_listed(make: Maker, release: Release
 @pytest.mark.parametrize(
     ("options", "words"),
     [
-        ({"apart": None}, "Assess again to see pairs."),
+        ({"apart": None}, "kept no distances between curves: assess again to see pairs."),
         ({"apart": [1.0], "radius": None}, "did not ask for the 95&nbsp;% level"),
         ({"apart": [1.0], "radius": 0.0}, "ball of release 1 is empty"),
         ({"apart": [1.2]}, "1 of 1 pair of curves cannot both be inside"),
@@ -81,6 +82,23 @@ def test_the_page_says_what_is_known(
     make.assessment(release, {curve: 0.4, rival: 0.3}, **options)  # type: ignore[arg-type]
     page = signed_in(member).get(reverse("overviews:pairs", args=[release.measurement_id]))
     assert words in page.content.decode()
+
+
+def test_of_more_curves_than_distances_are_kept_of_it_does_not_help_to_assess_again(
+    make: Maker,
+    release: Release,
+    collaboration: Collaboration,
+    lead: User,
+    curve: Curve,
+    rival: Curve,
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    make.assessment(release, {curve: 0.4, rival: 0.3})
+    monkeypatch.setattr(pairs, "MOST_CURVES", 1)
+    said = "judged 2 curves, and distances are kept of at most 1: assess fewer to see pairs"
+    assert pairs_page(release.measurement, lead).no_distances == said
+    found = separation_page(collaboration, lead, str(curve.theory_id), str(rival.theory_id))
+    assert [words for _, words in found.unknown] == [said]
 
 
 @pytest.fixture
@@ -146,7 +164,7 @@ def test_where_it_is_not_known_the_reason_is_said(
 
     assert why() == ["did not judge both"]
     make.assessment(release, {curve: 0.4, rival: 0.3})
-    assert why() == ["kept no distances between curves: assess again to see pairs"]
+    assert why() == ["is an older one and kept no distances between curves: assess again to see pairs"]
     make.assessment(release, {curve: 0.4, rival: 0.3}, radius=None, apart=[1.0])
     assert why() == ["has no radius at 95 %: that level was not asked for"]
     make.assessment(release, {curve: 0.4, rival: 0.3}, radius=0.0, apart=[1.0])
