@@ -73,7 +73,7 @@ def history_figure(
     return Figure(
         name=NAME,
         title="From release to release",
-        caption=_caption(len(drawn), len(histories), ordered),
+        caption=_caption(drawn, len(histories), ordered),
         x=Axis(
             "release",
             ticks=tuple(float(release.number) for release in ordered),
@@ -177,16 +177,24 @@ def _runs(history: History, panel: int) -> list[Drawn]:
     ]
 
 
-def _caption(drawn: int, judged: int, releases: Sequence[ReleaseSummary]) -> str:
+def _caption(drawn: Sequence[History], judged: int, releases: Sequence[ReleaseSummary]) -> str:
     words = [
         "Above, the distance of each theory from the fit as a part of the 95 % radius: below 1 is in that ball. "
         "Below, its entry level, the smallest level whose ball holds it. Circles are inside and crosses outside, by "
         "the exact p-value, which near the edge can differ from the ball."
     ]
-    if drawn < judged:
+    cautious = sorted(
+        {s.release_number for history in drawn for s in history.standings if s and s.is_cautious}
+    )
+    if cautious:
         words.append(
-            f"{drawn} of {judged} theories have a line: those that moved, then the nearest, unless others are chosen. "
-            "The table has all."
+            f"The radius of release {', '.join(map(str, cautious))} is the cautious one, drawn large on purpose, and "
+            "entry levels are those of the calibrated ball: a theory can be below 1 above and beyond 0.95 below."
+        )
+    if len(drawn) < judged:
+        words.append(
+            f"{len(drawn)} of {judged} theories have a line: those that moved, then the nearest, unless others are "
+            "chosen. The table has all."
         )
     if any(release.is_withdrawn for release in releases):
         words.append(

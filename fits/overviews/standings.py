@@ -21,7 +21,7 @@ from fits.assessments.three_verdicts import LEVEL, OFF, is_inside_by, verdict_wo
 from fits.engine.ball import is_above
 from fits.engine.joint import joint_of
 from fits.engine.scales import TABLE_DRAWS
-from fits.engine.settings import DEFAULT_DRAWS
+from fits.engine.settings import DEFAULT_DRAWS, RadiusKind
 from fits.overviews.signs import sign_of
 from fits.reports import numbers
 
@@ -31,7 +31,7 @@ SMALLEST_SCALE_P_VALUE = numbers.smallest_p_value(TABLE_DRAWS)
 @dataclass(frozen=True)
 class Standing:
     """What an assessment says of one curve, and where it says so. `radius` is that at 95 %, None where it is not
-    known."""
+    known; it may be the cautious one, while the entry level is always that of the calibrated balls."""
 
     measurement: int
     measurement_name: str
@@ -48,6 +48,7 @@ class Standing:
     of: int
     distance: float
     radius: float | None
+    is_cautious: bool
     entry_level: float
     p_value: float
     scale_p_value: float
@@ -182,6 +183,7 @@ def _fields_of(verdicts: QuerySet[Verdict], *more: str) -> Iterable[Mapping[str,
         "assessment",
         "assessment__ended_at",
         "assessment__settings__draws",
+        "assessment__settings__radius",
         "assessment__radius",
         "assessment__release",
         "assessment__release__number",
@@ -220,6 +222,7 @@ def _standing(row: Mapping[str, Any], judged: int) -> Standing:
         of=judged,
         distance=row["distance"],
         radius=row["assessment__radius"],
+        is_cautious=row["assessment__settings__radius"] == RadiusKind.CAUTIOUS,
         entry_level=row["entry_level"],
         p_value=row["p_value"],
         scale_p_value=row["scale_p_value"],

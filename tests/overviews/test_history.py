@@ -11,11 +11,12 @@ from django.urls import reverse
 from core.measurements.models import Measurement, Release
 from core.people.models import User
 from core.theories.models import Curve
+from fits.assessments.models import Assessment
 from fits.overviews.history import History
 from fits.overviews.history_chart import MOST_LINES, drawn_histories, history_figure
 from fits.overviews.history_part import history_of
 from fits.reports.figures.figure import Figure, Line, Marker, Points
-from tests.overviews.conftest import Maker
+from tests.overviews.conftest import SETTINGS, Maker
 
 SignedIn = Callable[[User], Client]
 INSIDE, OUTSIDE = 0.4, 0.001
@@ -251,6 +252,15 @@ def test_without_a_radius_only_the_entry_level_is_drawn(make: Maker, release: Re
         layer for layer in figure_in(release.measurement, make.lead).layers if isinstance(layer, Points)
     ]
     assert {layer.panel for layer in points} == {1}
+
+
+def test_that_a_radius_is_cautious_and_entry_levels_are_not_is_said(
+    over: Over, lead: User, curve: Curve
+) -> None:
+    over({curve: INSIDE}, {curve: INSIDE})
+    assert "cautious" not in figure_in(curve.measurement, lead).caption
+    Assessment.objects.filter(release__number=2).update(settings=SETTINGS | {"radius": "cautious"})
+    assert "The radius of release 2 is the cautious one" in figure_in(curve.measurement, lead).caption
 
 
 def test_of_many_theories_those_that_moved_and_the_nearest_have_lines(
