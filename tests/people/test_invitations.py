@@ -170,6 +170,27 @@ def test_an_address_has_one_open_invitation_here(collaboration: Collaboration, l
     assert invite(collaboration, lead).is_open
 
 
+def test_only_so_many_invitations_by_e_mail_are_open_at_once(
+    collaboration: Collaboration, lead: User, for_many: NewInvitation
+) -> None:
+    Invitation.objects.bulk_create(
+        Invitation(
+            collaboration=collaboration,
+            token_sha256=f"{number:064d}",
+            role=Role.STUDENT,
+            email=f"pupil{number}@merrow.example",
+            created_by=lead,
+            expires_at=in_a_week(),
+        )
+        for number in range(199)
+    )
+    last = invite(collaboration, lead)
+    with pytest.raises(UserError, match="make one link for many"):
+        invite(collaboration, lead, "late@merrow.example")
+    services.revoke_invitation(by=lead, invitation=last)
+    assert invite(collaboration, lead, "late@merrow.example").is_open
+
+
 def test_what_is_wrong_with_an_address_is_said_beside_it(
     collaboration: Collaboration, lead: User, member: User, signed_in: SignedIn
 ) -> None:

@@ -20,6 +20,9 @@ from core.people.services.rules import (
     still_lead,
 )
 
+# Each is an e-mail to somebody who may not have asked for it.
+MOST_OPEN = 200
+
 
 @dataclass
 class MailedInvitation:
@@ -39,6 +42,7 @@ def invite_by_mail(
     still_lead(by, collaboration)
     refuse_who_is_here(address, collaboration)
     _refuse_second(address, collaboration)
+    _refuse_too_many(collaboration)
     secret = fresh_secret()
     mailed = MailedInvitation(
         Invitation.objects.create(
@@ -78,3 +82,9 @@ def _refuse_second(address: str, collaboration: Collaboration) -> None:
     if open_invitations().filter(collaboration=collaboration, email=address).exists():
         reason = f"an invitation to {address} is open already"
         raise UserError("already-invited", reason, "Revoke that one first to send another")
+
+
+def _refuse_too_many(collaboration: Collaboration) -> None:
+    if open_invitations().filter(collaboration=collaboration).exclude(email="").count() >= MOST_OPEN:
+        reason = f"{MOST_OPEN} invitations by e-mail are open already, as many as there can be at once"
+        raise UserError("too-many-invitations", reason, "Revoke some, or make one link for many")
