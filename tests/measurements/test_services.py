@@ -155,6 +155,26 @@ def test_two_who_publish_at_once_get_two_numbers(measurement: Measurement, lead:
 
 
 @pytest.mark.django_db(transaction=True)
+def test_two_who_rename_measurements_at_once_come_one_after_the_other(
+    measurement: Measurement, collaboration: Collaboration, lead: User, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    words: dict[str, Any] = {"about": "", "x_name": "x", "x_unit": "", "y_name": "y", "y_unit": ""}
+    words |= {"user": lead, "axis": "linear", "seen": 0}
+    other = services.create_measurement(
+        user=lead, collaboration=collaboration, name="Depth", x_name="x", y_name="y"
+    )
+    take = partial(services.edit_measurement, measurement=other, name=measurement.name, **words)
+    with meanwhile(monkeypatch, editing, "save_if_current", take) as refusals:
+        services.edit_measurement(measurement=measurement, name="Seiches", **words)
+    # The second waits until the name is free, and holds nothing meanwhile that the first might want.
+    assert refusals == []
+    assert set(Measurement.objects.values_list("pk", "name")) == {
+        (measurement.pk, "Seiches"),
+        (other.pk, "Surface seiche power"),
+    }
+
+
+@pytest.mark.django_db(transaction=True)
 def test_nothing_is_published_between_the_check_of_an_axis_and_its_change(
     measurement: Measurement, lead: User, monkeypatch: pytest.MonkeyPatch
 ) -> None:

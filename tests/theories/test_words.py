@@ -90,3 +90,18 @@ def test_what_is_refused_leaves_no_entry(theory: Theory, member: User) -> None:
     with pytest.raises(UserError):
         renamed(theory, member, "Deep floor")
     assert not LogEntry.objects.exists()
+
+
+@pytest.mark.django_db(transaction=True)
+def test_two_who_rename_theories_at_once_come_one_after_the_other(
+    theory: Theory, collaboration: Collaboration, lead: User, member: User, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    other = services.create_theory(user=lead, collaboration=collaboration, name="Flat floor")
+    name = theory.name
+    with meanwhile(
+        monkeypatch, theory_services, "save_if_current", lambda: renamed(other, lead, name)
+    ) as refusals:
+        renamed(theory, member, "Deep floor")
+    # The second waits until the name is free, and holds nothing meanwhile that the first might want.
+    assert refusals == []
+    assert list(Theory.objects.order_by("pk").values_list("name", flat=True)) == ["Deep floor", name]

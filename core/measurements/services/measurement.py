@@ -6,6 +6,7 @@ from core.errors import UserError
 from core.measurements.models import Axis, Measurement, Release
 from core.people.log import Deed, record
 from core.people.models import Collaboration, User
+from core.people.services.rules import lock
 from core.revision import save_if_current
 
 WORDS = ("name", "about", "x_name", "x_unit", "y_name", "y_unit", "axis")
@@ -67,6 +68,8 @@ def edit_measurement(
 ) -> None:
     """Other words for it, unless somebody has changed them since revision `seen`. Its axis is settled once a release
     is published, as verdicts rest on it, and while it is sealed, as curves are made for it."""
+    # Of two who swap the names of two measurements at once, each would wait for the other.
+    lock(measurement.collaboration)
     # Whoever publishes at this moment holds the same lock.
     kept = Measurement.objects.select_for_update(no_key=True).get(pk=measurement.pk)
     if axis != kept.axis:

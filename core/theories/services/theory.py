@@ -9,6 +9,7 @@ from core.errors import UserError
 from core.people.access import desk_of
 from core.people.log import Deed, record
 from core.people.models import Collaboration, LogEntry, User
+from core.people.services.rules import lock
 from core.revision import save_if_current
 from core.theories.models import Theory
 from core.theories.rules import refuse_registered
@@ -50,6 +51,8 @@ def edit_theory(
     *, by: User, theory: Theory, seen: int, name: str, proposed_by: str, description: str, reference: str
 ) -> None:
     """Other words for it, unless somebody has changed them since revision `seen`; its curves stay as they are."""
+    # Of two who swap the names of two theories at once, each would wait for the other.
+    lock(theory.collaboration)
     # Whoever submits a curve at this moment holds the same lock.
     Theory.objects.select_for_update().get(pk=theory.pk)
     refuse_registered(theory)
