@@ -1,11 +1,14 @@
 """Signing in and out, and setting a password."""
 
 import pytest
+from django.conf import settings
 from django.core import mail
-from django.test import Client
+from django.http import HttpResponse
+from django.test import Client, RequestFactory
 from django.urls import reverse
 
-from core.people.models import User
+from core.people.models import Collaboration, User
+from core.private_pages import PrivatePagesMiddleware
 from tests.conftest import PASSWORD
 
 
@@ -29,6 +32,26 @@ def test_signing_out_takes_a_press_of_the_button(lead: User, client: Client) -> 
     assert "_auth_user_id" in client.session
     client.post(reverse("account_logout"))
     assert "_auth_user_id" not in client.session
+
+
+def test_what_a_signed_in_person_sees_is_not_kept_for_the_next_at_the_same_computer(
+    lead: User, collaboration: Collaboration, client: Client
+) -> None:
+    client.force_login(lead)
+    for address in (collaboration.get_absolute_url(), reverse("people:preferences"), "/nothing-here"):
+        assert client.get(address)["Cache-Control"] == "private, no-store"
+
+
+def test_an_answer_that_says_how_long_it_may_be_kept_is_left_to_it(rf: RequestFactory) -> None:
+    kept = "private, max-age=86400"
+    request = rf.get("/a-chart")
+    request.COOKIES[settings.SESSION_COOKIE_NAME] = "any"
+    answer = PrivatePagesMiddleware(lambda request: HttpResponse(headers={"Cache-Control": kept}))(request)
+    assert answer["Cache-Control"] == kept
+
+
+def test_a_page_without_a_session_may_be_kept(db: None, client: Client) -> None:
+    assert "Cache-Control" not in client.get("/nothing-here")
 
 
 def test_sign_up_is_closed(client: Client) -> None:
