@@ -42,6 +42,15 @@ class BatchPage:
     lines: int
 
     @property
+    def seen(self) -> str:
+        """What the form carries: of each accepted curve its place and what becomes of it."""
+        return " ".join(
+            f"{row.item.order}:{row.theory.pk if row.theory else 0}"
+            for row in self.rows
+            if row.item.is_accepted
+        )
+
+    @property
     def refused(self) -> int:
         return len(self.rows) - self.accepted
 

@@ -4,7 +4,7 @@ Asked when a batch is uploaded, and again, with the rows locked, when it is subm
 """
 
 from collections import Counter
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
 from django.db.models import OuterRef, QuerySet, Subquery
@@ -13,6 +13,7 @@ from core.errors import UserError
 from core.theories.models import Batch, BatchItem, Curve, Theory
 from core.theories.rules import refuse_short
 
+UPLOAD_AGAIN = "Upload it again to submit it"
 LONGEST_NAME = Theory._meta.get_field("name").max_length or 0
 
 
@@ -69,6 +70,34 @@ def refuse_uncovered(batch: Batch, items: list[BatchItem]) -> None:
             refuse_short(batch.measurement, item.x_min, item.x_max)
         except UserError as error:
             mark(item, error)
+
+
+def seen_now(batch: Batch) -> dict[int, int]:
+    """What the page of the batch shows of each accepted item, by its place: the key of the theory that gets a new
+    version, 0 for a new theory."""
+    accepted = dict(batch.items.filter(refusal_code="").values_list("order", "name"))
+    current = current_of(batch, theories_of(batch, accepted.values()))
+    return {order: current[name].theory.pk if name in current else 0 for order, name in accepted.items()}
+
+
+def refuse_unseen(items: list[BatchItem], current: dict[str, Current], seen: Mapping[int, int]) -> None:
+    """Mark those that would become something else than their reader saw: the theory of this name was renamed, removed
+    or added since."""
+    for item in items:
+        known, shown = current.get(item.name), seen.get(item.order)
+        if shown == (known.theory.pk if known else 0):
+            continue
+        if known:
+            refuse_appeared(item, known.theory)
+        else:
+            reason = "the theory of this name that you saw is there no more, or has another name"
+            mark(item, UserError("theory-gone", reason, f"{UPLOAD_AGAIN} as a new theory"))
+
+
+def refuse_appeared(item: BatchItem, theory: Theory) -> None:
+    """Mark what was not shown as a version of the theory that has its name now."""
+    reason = f"a theory of {theory.submitted_by} has come to have this name since you looked"
+    mark(item, UserError("theory-appeared", reason, f"{UPLOAD_AGAIN} as a version of that theory"))
 
 
 def refuse_nothing_new(batch: Batch, items: list[BatchItem], current: dict[str, Current]) -> None:

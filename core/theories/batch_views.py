@@ -13,7 +13,7 @@ from core.people.access import Action, desk_of, load, seen_by
 from core.people.signed_in import SignedInRequest
 from core.theories import services
 from core.theories.batch_page import batch_page
-from core.theories.forms import BatchForm
+from core.theories.forms import BatchForm, SubmitBatchForm
 from core.theories.models import Batch
 
 
@@ -72,8 +72,13 @@ def batch(request: SignedInRequest, pk: int) -> HttpResponse:
 def submit_batch(request: SignedInRequest, pk: int) -> HttpResponse:
     """Submit the accepted curves."""
     row = _batch(request, pk, Action.SUBMIT)
+    form = SubmitBatchForm(request.POST)
+    if not form.is_valid():
+        raise UserError(
+            "not-seen", "it does not say what you saw", "Submit the curves from the page that lists them"
+        )
     before = row.items.filter(refusal_code="").count()
-    submitted = services.submit_batch(row)
+    submitted = services.submit_batch(row, seen=form.cleaned_data["seen"])
     count = submitted.items.filter(refusal_code="").count()
     if count:
         messages.success(request, f"{_curves(count)} {'is' if count == 1 else 'are'} submitted.")

@@ -54,6 +54,17 @@ class CurveForm(forms.Form):
         choice.queryset = measurements
 
 
+class SubmitBatchForm(forms.Form):
+    """What its reader saw become of each curve of a batch: places and keys of theories, 0 for a new one."""
+
+    seen = forms.RegexField(r"^[0-9]{1,9}:[0-9]{1,18}( [0-9]{1,9}:[0-9]{1,18})*$")
+
+    def clean_seen(self) -> dict[int, int]:
+        """By place the key of the theory."""
+        pairs = (pair.split(":") for pair in self.cleaned_data["seen"].split())
+        return {int(place): int(key) for place, key in pairs}
+
+
 class BatchForm(forms.Form):
     """Many curves to upload for one measurement."""
 

@@ -18,7 +18,7 @@ from core.people.log import Deed, record
 from core.people.models import Role, User
 from core.people.services import invite_by_link
 from core.theories.models import Batch, Theory
-from core.theories.services import draft_batch, submit_batch
+from core.theories.services import draft_batch
 from fits.talk.services import comment, remove_comment
 from tests.browser.survey import Survey, computed, curve_of
 from tests.browser.written_reports import (
@@ -33,6 +33,7 @@ from tests.browser.written_reports import (
     show_the_second_part,
 )
 from tests.permissions.world import assessment_of
+from tests.theories.batches import submit
 
 
 @dataclass(frozen=True)
@@ -282,7 +283,7 @@ PAGES = [
     Row("curve", "theories:curve", lambda survey: survey.curve.pk),
     Row("new-batch", "theories:new_batch", waiting_batch),
     Row("batch", "theories:batch", lambda survey: a_batch(survey).pk),
-    Row("batch-submitted", "theories:batch", lambda survey: submit_batch(a_batch(survey)).pk),
+    Row("batch-submitted", "theories:batch", lambda survey: submit(a_batch(survey)).pk),
     Row("assess", "assessments:new", lambda survey: survey.release.pk),
     Row("assess-with-faults", "assessments:new", lambda survey: survey.release.pk, then=ask_for_too_much),
     Row("assessment-queued", "reports:assessment", lambda survey: survey.queued.pk),

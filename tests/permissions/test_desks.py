@@ -21,6 +21,7 @@ from pytest_django import DjangoDbBlocker
 from core.people.models import User
 from core.people.permissions import RULES
 from core.theories import services
+from core.theories.batch_rules import seen_now
 from core.theories.models import Batch, BatchItem, Curve
 from fits.assessments.services import request_assessment, request_features
 from fits.talk.digest import Digest, Window, digest_of
@@ -66,7 +67,7 @@ def bring(here: World, student: User) -> None:
     # Also under a name that a shared theory has.
     for order, name in enumerate((here.rows[None].theory.name, "Another of mine")):
         _item(batch, order, name, draft)
-    services.submit_batch(batch)
+    services.submit_batch(batch, seen=seen_now(batch))
     for seed in (1, 2):
         made = request_assessment(
             user=student, release=here.release, curves=[curve], settings=SETTINGS, seed=seed

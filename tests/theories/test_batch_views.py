@@ -1,5 +1,6 @@
 """Who sees and does what on the pages of many curves at once."""
 
+import re
 from collections.abc import Callable
 
 import pytest
@@ -11,9 +12,10 @@ from django.urls import reverse
 from django.utils import timezone
 
 from core.measurements.models import EarlyLook, Measurement, Release
-from core.people.models import User
+from core.people.models import Collaboration, User
 from core.theories import services
 from core.theories.models import Batch, Curve, Theory
+from tests.theories.batches import submit
 
 pytestmark = pytest.mark.usefixtures("read_in_this_process")
 SignedIn = Callable[[User], Client]
@@ -22,6 +24,13 @@ TABLE = "x,Flat floor,Deep floor,Odd floor\n" + "".join(f"{x},{x},{x * x},\n" fo
 
 def page_of(client: Client, batch: Batch) -> str:
     return client.get(batch.get_absolute_url()).content.decode()
+
+
+def carried(page: str) -> str:
+    """What the form says that its reader saw."""
+    found = re.search(r'name="seen" value="([^"]*)"', page)
+    assert found
+    return found[1]
 
 
 def uploaded(measurement: Measurement, user: User, table: str = TABLE) -> Batch:
@@ -52,7 +61,7 @@ def test_a_member_uploads_looks_and_submits(release: Release, member: User, sign
         "Over the data of release 1",
     ):
         assert words in page
-    answer = client.post(addresses(batch)["submit_batch"], follow=True)
+    answer = client.post(addresses(batch)["submit_batch"], {"seen": carried(page)}, follow=True)
     page = answer.content.decode()
     assert "2 curves are submitted." in page
     for curve in Curve.objects.all():
@@ -67,6 +76,48 @@ def test_it_says_whose_theory_gets_a_new_version(
     page = page_of(signed_in(lead), batch)
     assert "version 2 of" in page
     assert "a theory of Mo Member" in page
+
+
+def test_what_became_otherwise_since_the_page_was_opened_is_refused_and_another_look_settles_it(
+    measurement: Measurement, collaboration: Collaboration, lead: User, member: User, signed_in: SignedIn
+) -> None:
+    flat, deep = (
+        services.create_theory(user=lead, collaboration=collaboration, name=name)
+        for name in ("Flat floor", "Deep floor")
+    )
+    table = "x,Flat floor,Deep floor,Odd floor,Wide floor\n1,1,2,3,4\n2,2,3,4,5\n"
+    client, batch = signed_in(member), uploaded(measurement, member, table)
+    seen = carried(page_of(client, batch))
+    Theory.objects.filter(pk=flat.pk).update(name="Level floor")
+    Theory.objects.filter(pk=deep.pk).update(name="Odd floor")
+    services.create_theory(user=lead, collaboration=collaboration, name="Deep floor")
+    page = client.post(addresses(batch)["submit_batch"], {"seen": seen}, follow=True).content.decode()
+    assert "1 curve is submitted." in page
+    assert "3 curves could no more be accepted" in page
+    assert dict(batch.items.values_list("name", "refusal_code")) == {
+        "Flat floor": "theory-gone",
+        "Deep floor": "theory-appeared",
+        "Odd floor": "theory-appeared",
+        "Wide floor": "",
+    }
+    again = uploaded(measurement, member, table)
+    client.post(addresses(again)["submit_batch"], {"seen": carried(page_of(client, again))})
+    assert set(Curve.objects.values_list("theory__name", "version")) == {
+        ("Wide floor", 1),
+        ("Flat floor", 1),
+        ("Deep floor", 1),
+        ("Odd floor", 1),
+    }
+
+
+@pytest.mark.parametrize("seen", ["", "1:x", "1:0 2", "²:0"])
+def test_who_does_not_say_what_they_saw_submits_nothing(
+    batch: Batch, member: User, signed_in: SignedIn, seen: str
+) -> None:
+    answer = signed_in(member).post(addresses(batch)["submit_batch"], {"seen": seen})
+    assert answer.status_code == 400
+    assert "from the page that lists them" in answer.content.decode()
+    assert not Curve.objects.exists()
 
 
 def test_a_batch_that_is_not_submitted_is_there_for_who_uploaded_it_alone(
@@ -84,7 +135,7 @@ def test_a_batch_that_is_not_submitted_is_there_for_who_uploaded_it_alone(
 def test_a_submitted_one_is_a_record_for_all_who_see_the_curves(
     batch: Batch, lead: User, student: User, observer: User, stranger: User, signed_in: SignedIn
 ) -> None:
-    services.submit_batch(batch)
+    submit(batch)
     for user, status in ((lead, 200), (observer, 200), (student, 404), (stranger, 404)):
         assert signed_in(user).get(batch.get_absolute_url()).status_code == status
 
@@ -92,7 +143,7 @@ def test_a_submitted_one_is_a_record_for_all_who_see_the_curves(
 def test_one_of_a_desk_is_a_record_for_the_student_and_leads(
     measurement: Measurement, lead: User, member: User, student: User, neighbour: User, signed_in: SignedIn
 ) -> None:
-    batch = services.submit_batch(uploaded(measurement, student))
+    batch = submit(uploaded(measurement, student))
     for user, status in ((student, 200), (lead, 200), (member, 404), (neighbour, 404)):
         assert signed_in(user).get(batch.get_absolute_url()).status_code == status
     assert {theory.desk for theory in Theory.objects.all()} == {student}
@@ -167,7 +218,7 @@ def test_queries_do_not_grow_with_curves(
                 page_of(client, batch)
             counts.append(len(captured))
             if batch.submitted_at is None:
-                batch = services.submit_batch(batch)
+                batch = submit(batch)
     assert counts[:2] == counts[2:]
     assert max(counts) <= 12
 

@@ -1,5 +1,6 @@
 """Submit the accepted curves of a batch, all at one moment."""
 
+from collections.abc import Mapping
 from datetime import datetime
 
 from django.db import IntegrityError, transaction
@@ -13,9 +14,10 @@ from core.people.models import LogEntry
 from core.theories.batch_rules import (
     Current,
     current_of,
-    mark,
+    refuse_appeared,
     refuse_nothing_new,
     refuse_uncovered,
+    refuse_unseen,
     theories_of,
 )
 from core.theories.models import Batch, BatchItem, Curve, Theory
@@ -25,11 +27,12 @@ from core.theories.services.theory import record_theory
 
 
 @transaction.atomic
-def submit_batch(batch: Batch) -> Batch:
-    """Make the theories that are new and submit the accepted curves. It is done by who uploaded them.
+def submit_batch(batch: Batch, *, seen: Mapping[int, int]) -> Batch:
+    """Make the theories that are new and submit the accepted curves. It is done by who uploaded them, and `seen` is
+    what became of each curve when they looked (`seen_now`).
 
-    What can no more be accepted is refused now, and says so; the others are submitted all the same. Where none is
-    left, the batch stays as it was but for that.
+    What would become otherwise or can no more be accepted is refused now, and says so; the others are submitted all
+    the same. Where none is left, the batch stays as it was but for that.
     """
     measurement = Measurement.objects.select_for_update(no_key=True).get(pk=batch.measurement_id)
     # The batch's row is the lock: of two who submit it, or submit and discard it, one comes first.
@@ -43,7 +46,9 @@ def submit_batch(batch: Batch) -> Batch:
     for item in items:
         item.batch = locked
     current = _locked_theories(locked, items)
-    _refuse_what_changed(locked, items, current)
+    refuse_uncovered(locked, items)
+    refuse_nothing_new(locked, items, current)
+    refuse_unseen(items, current, seen)
     entries: list[LogEntry] = []
     _add_theories(locked, items, current, entries)
     kept = [item for item in items if item.is_accepted]
@@ -62,23 +67,6 @@ def _locked_theories(batch: Batch, items: list[BatchItem]) -> dict[str, Current]
     theories = theories_of(batch, [item.name for item in items])
     list(theories.select_for_update().order_by("pk").values_list("pk"))
     return current_of(batch, theories)
-
-
-def _refuse_what_changed(batch: Batch, items: list[BatchItem], current: dict[str, Current]) -> None:
-    refuse_uncovered(batch, items)
-    refuse_nothing_new(batch, items, current)
-    for item in items:
-        known = current.get(item.name)
-        # It was shown as a new theory: to make it a version of somebody's needs another look.
-        if known and known.theory.created_at > batch.created_at:
-            _refuse_name(item, known.theory)
-
-
-def _refuse_name(item: BatchItem, theory: Theory) -> None:
-    reason = f"{theory.submitted_by} has added a theory of this name since it was uploaded"
-    mark(
-        item, UserError("theory-appeared", reason, "Upload it again to submit it as a version of that theory")
-    )
 
 
 def _add_theories(
@@ -110,7 +98,7 @@ def _added_alone(batch: Batch, item: BatchItem) -> Theory | None:
         there = theories_of(batch, [item.name]).select_related("submitted_by").first()
         if there is None:
             raise
-        _refuse_name(item, there)
+        refuse_appeared(item, there)
         return None
     return theory
 

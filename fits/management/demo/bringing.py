@@ -5,6 +5,7 @@ from dataclasses import asdict
 from core.measurements.models import Measurement, Release
 from core.measurements.services import draft_release, publish_release
 from core.people.models import User
+from core.theories.batch_rules import seen_now
 from core.theories.models import Curve, Theory
 from core.theories.services import create_theory, draft_batch, draft_curve, submit_batch, submit_curve
 from fits.assessments.default_settings import DEFAULT_SEED, default_settings
@@ -44,7 +45,7 @@ def submit(user: User, theory: Theory, measurement: Measurement, file: File) -> 
 def submit_together(user: User, measurement: Measurement, file: File) -> None:
     """Upload a table of curves and submit all of them."""
     batch = draft_batch(user=user, measurement=measurement, content=file.content, file_name=file.name)
-    submit_batch(batch)
+    submit_batch(batch, seen=seen_now(batch))
 
 
 def assess(user: User, release: Release, curves: list[Curve]) -> Assessment:
