@@ -37,8 +37,8 @@ class Choice:
 
     @property
     def level_words(self) -> str:
-        """The level as "95 %"."""
-        return numbers.level_words(self.level)
+        """The level as "95 %", which no line breaks."""
+        return numbers.level_words(self.level).replace(" ", "\N{NO-BREAK SPACE}")
 
     @property
     def sort_written(self) -> str:

@@ -109,9 +109,9 @@ def _apart(column: Column, first: int, second: int, kept: Mapping[str, Any]) -> 
     if separations is None:
         return why_no_distances(one.of)
     if radius is None:
-        return "has no radius at 95 %: that level was not asked for"
+        return "has no radius at 95\N{NO-BREAK SPACE}%: that level was not asked for"
     if not radius:
-        return "has an empty 95 % ball, which holds nothing: the errors should be checked"
+        return "has an empty 95\N{NO-BREAK SPACE}% ball, which holds nothing: the errors should be checked"
     place = {key: index for index, key in enumerate(separations["curves"])}
     low, high = sorted((place[one.curve], place[other.curve]))
     return Apart(column, one, other, separations["distances"][_pair(low, high, len(place))], radius)

@@ -166,9 +166,11 @@ def test_where_it_is_not_known_the_reason_is_said(
     make.assessment(release, {curve: 0.4, rival: 0.3})
     assert why() == ["is an older one and kept no distances between curves: assess again to see pairs"]
     make.assessment(release, {curve: 0.4, rival: 0.3}, radius=None, apart=[1.0])
-    assert why() == ["has no radius at 95 %: that level was not asked for"]
+    assert why() == ["has no radius at 95\N{NO-BREAK SPACE}%: that level was not asked for"]
     make.assessment(release, {curve: 0.4, rival: 0.3}, radius=0.0, apart=[1.0])
-    assert why() == ["has an empty 95 % ball, which holds nothing: the errors should be checked"]
+    assert why() == [
+        "has an empty 95\N{NO-BREAK SPACE}% ball, which holds nothing: the errors should be checked"
+    ]
 
 
 @pytest.mark.parametrize("query", ["", "first=1", "first=nonsense&second=-3", "first=999999&second=999998"])

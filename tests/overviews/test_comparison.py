@@ -156,6 +156,7 @@ def test_the_page_says_what_is_asked_and_what_is_assumed(
     signed_in: SignedIn, member: User, collaboration: Collaboration
 ) -> None:
     answer = signed_in(member).get(reverse("overviews:comparison", args=[collaboration.pk]))
+    assert "jointly inside at 95\N{NO-BREAK SPACE}%" in answer.content.decode()
     page = " ".join(answer.content.decode().split())
     assert "Of 2 theories, 1 is jointly inside at 95 % and 1 jointly outside, over 2 measurements." in page
     assert "to exceed 0.0253 for m = 2." in page

@@ -195,7 +195,7 @@ def test_a_withdrawn_release_is_not_the_newest_and_is_listed_with_its_reason(
     _, second = over({curve: INSIDE}, {curve: OUTSIDE})
     make.withdrawn(second, "The clock ran slow")
     page = signed_in(member).get(curve.measurement.get_absolute_url()).content.decode()
-    assert "stays inside the 95 % set of release 1" in page
+    assert "stays inside the 95&nbsp;% set of release 1" in page
     assert "The clock ran slow" in page
     assert ">release 2</a>, withdrawn</th>" in page
 

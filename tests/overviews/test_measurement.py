@@ -28,7 +28,7 @@ def test_survivors_stand_by_rank_with_their_numbers(
 ) -> None:
     make.assessment(release, {curve: 0.4, rival: 1 / 2001})
     page = signed_in(member).get(release.measurement.get_absolute_url()).content.decode()
-    assert "1 of 2 curves stays inside the 95 % set of release 1" in page
+    assert "1 of 2 curves stays inside the 95&nbsp;% set of release 1" in page
     assert page.index("Parabolic floor</a> <a") < page.index("Flat floor</a> <a")
     assert "0.250" in page
     assert "&lt; 0.0005" in page
