@@ -35,6 +35,9 @@ class Report(models.Model):
         "self", on_delete=models.PROTECT, null=True, blank=True, related_name="later"
     )
     author = models.ForeignKey(User, on_delete=models.PROTECT, related_name="reports")
+    # Once frozen: how author and collaboration were called then.
+    author_name = models.CharField(max_length=254, blank=True)
+    collaboration_name = models.CharField(max_length=120, blank=True)
     created_at = models.DateTimeField(auto_now_add=True)
     frozen_at = models.DateTimeField(null=True, blank=True)
 
@@ -58,6 +61,16 @@ class Report(models.Model):
     def is_frozen(self) -> bool:
         """Whether it never changes any more."""
         return self.state == Report.State.FROZEN
+
+    @property
+    def author_then(self) -> str:
+        """Its author as they were called when it was frozen; in a draft, as they are called."""
+        return self.author_name or str(self.author)
+
+    @property
+    def collaboration_then(self) -> str:
+        """Its collaboration, likewise."""
+        return self.collaboration_name or str(self.collaboration)
 
     def save(self, *args: Any, **kwargs: Any) -> None:
         """Refuse to change what is frozen."""

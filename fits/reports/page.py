@@ -125,7 +125,7 @@ def result_page(
         "charts": {name: chart_of(figure, addresses) for name, figure in drawn.items()},
         "plots": {name: plotly_json(figure) for name, figure in drawn.items()},
         "leftover_words": verdict_words.leftover(snapshot),
-        "meaning": words.meaning(snapshot),
+        "meaning": words.meaning(words.resolution_width(snapshot)),
         "caution": words.CAUTION,
         "trust": _trust(snapshot),
         "known_coverage": known_coverage_table(snapshot),

@@ -3,12 +3,13 @@
 import hashlib
 import re
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 from django.template.loader import render_to_string
 from django.utils.safestring import SafeString, mark_safe
 
+from core.user_error import UserError
 from fits.reports import words
 from fits.reports.figures import figure_of
 from fits.reports.figures.figure import Figure
@@ -25,6 +26,8 @@ SIZES = {Paper.A4: "@page { size: A4 }", Paper.LETTER: "@page { size: letter }"}
 BEFORE_THE_DRAWING = re.compile(r"\A.*?(?=<svg)", re.DOTALL)
 SIZE = re.compile(r'(?<=\s)(?:width|height)="[^"]*pt"')
 FIGURES = ("curves", "ball", "scales", "misfit", "ladder", "witnesses", "regions")
+# In inches, where a drawing is lower than on the screen: this one stands on a page with the ranking.
+HEIGHTS = {"curves": 2.9}
 
 
 class NoAddresses:
@@ -58,16 +61,23 @@ class Sheet:
     page: ReportPage
     result: dict[str, Any] | None
     drawings: dict[str, SafeString]
+    width: str = ""  # the narrowest feature that was judged, in words
 
 
 def printed(report: Report, paper: Paper, step: Callable[[], None] = lambda: None) -> bytes:
     """The PDF. `step` is called now and then while it is made."""
-    from fits.reports import pdf
-
+    try:
+        from fits.reports import pdf
+    except OSError as error:
+        raise UserError(
+            "no-pango",
+            "reports are printed with Pango, which is not installed where the workers run",
+            "Whoever runs this site can install it, as README.md says; then ask again for the print",
+        ) from error
     text = html(report, step)
-    pages = pdf.laid_out(text, (static_text("css/print.css"), SIZES[paper]))
-    step()
-    return pdf.written(pages, hashlib.sha256(f"{paper} {text}".encode()).hexdigest()[:32])
+    with pdf.telling(step):
+        pages = pdf.laid_out(text, (static_text("css/print.css"), SIZES[paper]))
+    return pdf.written(pages, hashlib.sha256(f"{paper} {text}".encode()).hexdigest()[:32], step)
 
 
 def html(report: Report, step: Callable[[], None] = lambda: None) -> str:
@@ -76,12 +86,11 @@ def html(report: Report, step: Callable[[], None] = lambda: None) -> str:
     for page in pages_of(parts_of(report)):
         sheets.append(_sheet(page))
         step()
-    shown = next((page.snapshot for page in (sheet.page for sheet in sheets) if page.shows), None)
     context = {
         "report": report,
         "opening": opening_words(report),
         "sheets": sheets,
-        "meaning": words.meaning(shown) if shown else (),
+        "meaning": words.meaning(*(sheet.width for sheet in sheets if sheet.width)),
         "caution": words.CAUTION,
     }
     return render_to_string("reports/print/report.html", context)
@@ -91,12 +100,17 @@ def _sheet(page: ReportPage) -> Sheet:
     snapshot = page.snapshot
     if snapshot is None:
         return Sheet(page, None, {})
-    return Sheet(page, result_page(snapshot, NoAddresses()), _drawings(snapshot))
+    width = words.resolution_width(snapshot)
+    return Sheet(page, result_page(snapshot, NoAddresses()), _drawings(snapshot), width)
 
 
 def _drawings(snapshot: Snapshot) -> dict[str, SafeString]:
     figures = {name: figure_of(name, snapshot) for name in FIGURES}
-    return {name: _drawing(figure) for name, figure in figures.items() if figure is not None}
+    return {
+        name: _drawing(replace(figure, height=HEIGHTS.get(name, figure.height)))
+        for name, figure in figures.items()
+        if figure is not None
+    }
 
 
 def _drawing(figure: Figure) -> SafeString:

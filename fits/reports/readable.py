@@ -7,6 +7,11 @@ from core.people.access import PERMITTED, Action, Someone, load, may
 from core.people.models import Collaboration, Role
 from fits.reports.models import Report, ReportPart
 
+# Large columns of releases, which nothing of a report is made from.
+RELEASE_BYTES = tuple(
+    f"assessment__release__{name}" for name in ("table", "lines", "covariance", "variances", "windows")
+)
+
 
 def with_place() -> QuerySet[Report]:
     """Reports with all that stands at their head."""
@@ -39,7 +44,7 @@ def parts_of(report: Report) -> list[ReportPart]:
         parts = parts.annotate(has_snapshot=Case(is_there, default=Value(False), output_field=BooleanField()))
     else:
         parts = parts.select_related("assessment__release__measurement__collaboration", "search")
-        parts = parts.defer("snapshot", "assessment__detail")
+        parts = parts.defer("snapshot", "assessment__result", "assessment__detail", *RELEASE_BYTES)
     found = list(parts)
     for part in found:
         part.report = report

@@ -3,8 +3,11 @@
 from collections.abc import Iterable
 from dataclasses import dataclass, field
 
+from django.utils.html import format_html
 from django.utils.safestring import SafeString, mark_safe
 
+from core.measurements.models import Release
+from fits.assessments.models import Assessment
 from fits.reports.markdown import rendered
 from fits.reports.models import Report, ReportPart
 from fits.reports.part_snapshots import heading_of, snapshot_of
@@ -62,11 +65,11 @@ def has_result(part: ReportPart) -> bool:
     """Whether it shows an assessment."""
     if part.report.is_frozen:
         return part.has_snapshot  # type: ignore[attr-defined, no-any-return]
-    return part.assessment is not None and part.assessment.result is not None
+    return part.assessment is not None and part.assessment.status == Assessment.Status.DONE
 
 
 def pages_of(parts: Iterable[ReportPart]) -> list[ReportPage]:
-    """All pages, at least one."""
+    """All pages, in order."""
     pages: list[ReportPage] = []
     is_full = True
     for part in parts:
@@ -83,10 +86,29 @@ def opening_words(report: Report) -> SafeString:
     return mark_safe(html)  # noqa: S308 - made by `rendered`, or escaped
 
 
+def words_of(part: ReportPart) -> SafeString:
+    """The words of a part as they are frozen: they begin with it where its release is withdrawn already."""
+    words = rendered(part.words, below=2)
+    return _withdrawal(part.assessment.release) + words if part.assessment else words
+
+
+def _withdrawal(release: Release) -> SafeString:
+    if not release.is_withdrawn:
+        return SafeString()
+    return format_html(
+        "<p><strong>{} of {} was withdrawn on {}, before this report was frozen: what was found of it should not be "
+        "relied on.</strong> The reason given: {}</p>",
+        str(release).capitalize(),
+        release.measurement,
+        f"{release.withdrawn_at:%-d %B %Y}",
+        release.withdrawal_reason or "none.",
+    )
+
+
 def _heading(part: ReportPart) -> str:
     return part.heading if part.report.is_frozen else heading_of(part)
 
 
 def _html(part: ReportPart) -> SafeString:
-    html = part.words_html if part.report.is_frozen else rendered(part.words, below=2)
+    html = part.words_html if part.report.is_frozen else words_of(part)
     return mark_safe(html)  # noqa: S308 - made by `rendered`, or escaped

@@ -1,6 +1,9 @@
 """What workers do for reports."""
 
+from celery.exceptions import SoftTimeLimitExceeded
+
 from core import alive
+from core.user_error import UserError
 from core.worker import app
 from fits.assessments import leases
 from fits.assessments.tasks import ending
@@ -18,5 +21,13 @@ def print_report(pk: int) -> None:
         printing = Printing.objects.select_related(
             "report__collaboration", "report__author", "report__previous"
         ).get(pk=pk)
-        lease.finish(pdf=printed(printing.report, Paper(printing.paper), leases.Heartbeat(lease)))
+        try:
+            pdf = printed(printing.report, Paper(printing.paper), leases.Heartbeat(lease))
+        except SoftTimeLimitExceeded as error:
+            raise UserError(
+                "took-too-long",
+                "it took longer than it may",
+                "Write reports of fewer parts instead of this one",
+            ) from error
+        lease.finish(pdf=pdf)
     alive.touch()

@@ -101,15 +101,22 @@ def _order(snapshot: Snapshot) -> str:
     return f", but the order of the first {unsettled + 1} is not settled by the data"
 
 
-def meaning(snapshot: Snapshot) -> tuple[str, ...]:
-    """What "inside" says and does not say."""
+def meaning(*widths: str) -> tuple[str, ...]:
+    """What "inside" says and does not say of results whose narrowest features judged are these; nothing of none."""
+    if not widths:
+        return ()
+    judged = (
+        f"Only features wider than {widths[0]} were judged, the resolution chosen beforehand."
+        if len(set(widths)) == 1
+        else "Only features wider than the resolution were judged, which was chosen beforehand and is given with each "
+        "result."
+    )
     return (
         "Inside means: not ruled out by these data at this level. It never means proved. Several curves that "
         "contradict one another can be inside together, and a curve that nobody thought of may fit as well.",
         "The ball speaks of all curves at once: the chance that the true curve is outside the 95 % set is 5 % "
         "however many curves are tried, so no correction for many theories is due.",
-        f"Only features wider than {resolution_width(snapshot)} were judged, the resolution chosen beforehand. What "
-        "is finer was neither confirmed nor refuted.",
+        f"{judged} What is finer was neither confirmed nor refuted.",
         "All of this stands on the errors being right: errors stated too small put true curves outside, errors "
         "stated too large let wrong ones in. The leftover check above is the test of that which the data allow.",
     )

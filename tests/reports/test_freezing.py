@@ -1,10 +1,12 @@
 """What freezing takes up, what it refuses, and that nothing changes afterwards."""
 
+import re
 from collections.abc import Callable
 from importlib import import_module
 
 import pytest
 from django.test import Client
+from django.urls import reverse
 from django.utils import timezone
 
 from core.errors import UserError
@@ -13,6 +15,8 @@ from core.people.log import Deed
 from core.people.models import Collaboration, LogEntry, User
 from fits.assessments.models import Assessment
 from fits.reports.models import Paper, Printing, Report, ReportPart
+from fits.reports.printing import html
+from fits.reports.readable import with_place
 from fits.reports.services import (
     add_part,
     create_link,
@@ -93,6 +97,21 @@ def test_words_are_rendered_once_and_for_all(
     assert "another library" not in page
 
 
+def test_who_wrote_it_and_where_stays_as_it_was_called(
+    lead: User, draft: Report, signed_in: SignedIn
+) -> None:
+    frozen(draft, lead)
+    name, place = str(lead), str(draft.collaboration)
+    User.objects.filter(pk=lead.pk).update(name="Another Name")
+    Collaboration.objects.update(name="Another place")
+    page = signed_in(lead).get(draft.get_absolute_url()).content.decode()
+    printed = html(with_place().get(pk=draft.pk))
+    for text in (page, printed):
+        assert re.search(rf"{name}, (<[^>]*>)?{place}", text)
+        assert "Another Name, " not in text
+    assert "Another" not in printed
+
+
 def test_what_is_frozen_outlives_its_assessment(
     lead: User, draft: Report, done: Assessment, signed_in: SignedIn
 ) -> None:
@@ -126,10 +145,14 @@ def test_what_stands_at_a_desk_is_refused(lead: User, member: User, draft: Repor
     assert refusal(draft, lead) == "assessment-at-desk"
 
 
-def test_a_release_that_is_withdrawn_already_is_said_in_the_frozen_words(lead: User, draft: Report) -> None:
+def test_a_release_that_is_withdrawn_already_is_said_in_the_preview_and_in_the_frozen_words(
+    lead: User, draft: Report, signed_in: SignedIn
+) -> None:
     withdraw("The clock was wrong & late.", lead)
+    preview = signed_in(lead).get(reverse("reports:preview", args=[draft.pk])).content.decode()
     frozen(draft, lead)
     words = draft.parts.get().words_html
+    assert words in preview
     assert "Release 1 of Surface seiche power was withdrawn on" in words
     assert "The clock was wrong &amp; late." in words
 
@@ -247,6 +270,14 @@ def test_who_edits_a_part_while_it_is_frozen_is_told_and_changes_nothing(
         frozen(draft, lead)
     assert refusals == ["report-frozen"]
     assert draft.parts.get().words == ""
+
+
+def test_who_edits_a_part_that_is_taken_out_meanwhile_is_told(lead: User, draft: Report) -> None:
+    part = draft.parts.get()
+    remove_part(part=draft.parts.get(), seen=draft.revision)
+    with pytest.raises(UserError) as refused:
+        edit_part(part=part, seen=0)
+    assert refused.value.code == "part-removed"
 
 
 @pytest.mark.django_db(transaction=True)

@@ -14,7 +14,7 @@ from fits.reports.models import Report
 from fits.reports.services import create_link
 from fits.reports.snapshot import Snapshot
 
-BEFORE, AFTER = [("reports", "0001_initial")], [("reports", "0004_moved_to_parts")]
+BEFORE, AFTER = [("reports", "0001_initial")], [("reports", "0005_names_when_frozen")]
 
 
 def migrated(to: list[tuple[str, str]]) -> Any:
@@ -50,6 +50,7 @@ def test_a_report_from_before_becomes_a_frozen_one_of_one_part_and_reads_as_it_d
     assert report.is_frozen
     assert (report.created_at, report.frozen_at) == (made.created_at, made.created_at)
     assert report.words == made.words
+    assert (report.author_name, report.collaboration_name) == (str(lead), str(report.collaboration))
     assert report.words_html == "<p># Not a heading &lt;b&gt;<br>*nor this*</p>"
     assert part.snapshot == made.snapshot
     assert part.assessment == done

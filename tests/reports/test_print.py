@@ -1,13 +1,18 @@
 """Reports on paper: the pages that are laid out, without a network, and the job that makes them."""
 
+import sys
 from collections.abc import Callable, Iterable
+from types import ModuleType
 from typing import Any
 
 import pytest
+from celery.exceptions import SoftTimeLimitExceeded
 from django.test import Client
 from django.urls import reverse
 
+import fits.reports
 from core.people.models import User
+from fits.assessments.leases import Superseded
 from fits.assessments.models import Assessment
 from fits.reports import pdf, printing
 from fits.reports.figures.figure import Figure
@@ -106,6 +111,9 @@ def test_every_page_has_the_size_of_its_paper_and_says_where_it_belongs(
     assert finding in texts[0].replace("\u00a0", " ")
     assert "Second look" in " ".join(texts[1:])
     assert "never means proved" in " ".join(texts)
+    # Ranking and curves stand on one page.
+    assert "Ranking" in texts[0]
+    assert "Data, fit and" in texts[0]
 
 
 def boxes(box: Any) -> list[Any]:
@@ -153,6 +161,50 @@ def test_nothing_is_fetched(report: Report, monkeypatch: pytest.MonkeyPatch) -> 
     assert asked == pictures
 
 
+def test_with_each_page_that_is_set_it_is_said_that_the_work_goes_on() -> None:
+    steps: list[str] = []
+    pages = "".join("<p style='break-after: page'>a</p>" for _ in range(4))
+    with pdf.telling(lambda: steps.append("set")):
+        document = pdf.laid_out(pages, [])
+    assert len(steps) >= 4
+    steps.clear()
+    pdf.laid_out(pages, [])
+    assert not steps
+    pdf.written(document, "a", lambda: steps.append("painted"))
+    assert len(steps) == 4
+
+
+def test_a_print_that_is_not_wanted_any_more_ends_in_the_midst() -> None:
+    def superseded() -> None:
+        raise Superseded
+
+    with pytest.raises(Superseded), pdf.telling(superseded):
+        pdf.laid_out("<p>a</p>", [])
+
+
+def test_one_resolution_is_not_said_of_parts_that_have_others(
+    two_parts: Report, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setattr(printing, "svg", lambda figure: "<svg></svg>")
+    assert "the resolution chosen beforehand" in html(two_parts)
+    widths = iter(["0.2", "0.5"] * 9)
+    monkeypatch.setattr("fits.reports.words.resolution_width", lambda snapshot: next(widths))
+    text = html(two_parts)
+    assert "the resolution chosen beforehand" not in text
+    assert "is given with each result" in text
+
+
+def test_words_alone_are_printed_without_what_is_said_of_results(lead: User, done: Assessment) -> None:
+    report = start_report(
+        user=lead, collaboration=done.release.measurement.collaboration, title="Words", words="Calm."
+    )
+    add_part(report=report, seen=report.revision)
+    report.refresh_from_db()
+    freeze_report(user=lead, report=report, seen=report.revision)
+    assert "Calm." in html(report)
+    assert "inside" not in html(report)
+
+
 def test_names_are_escaped_in_what_is_printed(lead: User, done: Assessment) -> None:
     report = start_report(
         user=lead, collaboration=done.release.measurement.collaboration, title="<i>a</i>", assessment=done
@@ -191,6 +243,37 @@ def test_a_print_delivered_twice_is_made_once(report: Report) -> None:
     first = Printing.objects.values().get(pk=printing_row.pk)
     print_report(printing_row.pk)
     assert Printing.objects.values().get(pk=printing_row.pk) == first
+
+
+def test_without_pango_a_print_fails_and_says_what_to_install(
+    report: Report, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    class WithoutPango(ModuleType):
+        def __getattr__(self, name: str) -> Any:
+            raise OSError("cannot load library 'libpango-1.0-0'")
+
+    monkeypatch.setitem(sys.modules, "weasyprint", WithoutPango("weasyprint"))
+    monkeypatch.delitem(sys.modules, "fits.reports.pdf")
+    monkeypatch.delattr(fits.reports, "pdf")
+    row = report.printings.get(paper="a4")
+    print_report(row.pk)
+    row.refresh_from_db()
+    assert (row.status, row.failure_code) == (Status.FAILED, "no-pango")
+    assert "Pango, which is not installed" in row.failure
+
+
+def test_a_print_that_takes_too_long_fails_and_says_so(
+    report: Report, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def slow(*_: Any) -> bytes:
+        raise SoftTimeLimitExceeded
+
+    monkeypatch.setattr("fits.reports.tasks.printed", slow)
+    row = report.printings.get(paper="a4")
+    print_report(row.pk)
+    row.refresh_from_db()
+    assert (row.status, row.failure_code) == (Status.FAILED, "took-too-long")
+    assert "fewer parts" in row.failure
 
 
 def test_a_print_that_is_missing_is_asked_for_once(signed_in: SignedIn, member: User, report: Report) -> None:

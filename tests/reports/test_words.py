@@ -145,4 +145,6 @@ def test_without_leftover_the_danger_is_said(computed: Snapshot) -> None:
 
 
 def test_inside_is_never_proved(computed: Snapshot) -> None:
-    assert any("never means proved" in sentence for sentence in words.meaning(computed))
+    assert any(
+        "never means proved" in sentence for sentence in words.meaning(words.resolution_width(computed))
+    )

@@ -15,7 +15,8 @@ from fits.reports.services.start_report import record_draft
 def edit_report(*, report: Report, seen: int) -> None:
     """Keep title and opening words, as they stand on `report`."""
     # Whoever freezes it at this moment comes first or comes after.
-    if not Report.objects.select_for_update().filter(pk=report.pk, state=Report.State.DRAFT).exists():
+    drafts = Report.objects.select_for_update(no_key=True).filter(pk=report.pk, state=Report.State.DRAFT)
+    if drafts.order_by("pk").values_list("pk").first() is None:
         raise UserError(
             "report-frozen",
             "this report has been frozen or discarded",

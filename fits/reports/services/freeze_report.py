@@ -4,7 +4,6 @@ from collections.abc import Sequence
 
 from django.db import transaction
 from django.utils import timezone
-from django.utils.html import format_html
 
 from core.measurements.models import Release
 from core.people.log import Deed, record
@@ -14,6 +13,8 @@ from fits.assessments.models import Assessment, FeatureSearch
 from fits.reports.markdown import rendered
 from fits.reports.models import Paper, Report, ReportPart
 from fits.reports.part_snapshots import heading_of, snapshot_of
+from fits.reports.readable import RELEASE_BYTES
+from fits.reports.report_pages import words_of
 from fits.reports.services.drafting import change_draft
 from fits.reports.services.parts import refuse_unreportable
 from fits.reports.services.print_report import ask_printing
@@ -25,7 +26,8 @@ from fits.reports.words import finding
 def freeze_report(*, user: User, report: Report, seen: int) -> None:
     """From now on it never changes: all that its pages show is taken up into it."""
     change_draft(report, seen=seen)
-    parts = list(report.parts.select_related("assessment__release__measurement__collaboration", "search"))
+    places = report.parts.select_related("assessment__release__measurement__collaboration", "search")
+    parts = list(places.defer(*RELEASE_BYTES))
     if not parts:
         raise UserError("report-empty", "there is nothing in this report", "Add an assessment or words")
     _hold([part.assessment for part in parts if part.assessment])
@@ -33,7 +35,11 @@ def freeze_report(*, user: User, report: Report, seen: int) -> None:
     for part in parts:
         _freeze_part(part)
     Report.objects.filter(pk=report.pk).update(
-        state=Report.State.FROZEN, frozen_at=now, words_html=rendered(report.words, below=1)
+        state=Report.State.FROZEN,
+        frozen_at=now,
+        words_html=rendered(report.words, below=1),
+        author_name=str(report.author),
+        collaboration_name=str(report.collaboration),
     )
     report.refresh_from_db()
     record(
@@ -50,16 +56,15 @@ def freeze_report(*, user: User, report: Report, seen: int) -> None:
 def _hold(assessments: Sequence[Assessment]) -> None:
     """Whoever withdraws one of the releases at this moment comes before, and it is said, or after."""
     keys = {assessment.release_id for assessment in assessments}
-    held = Release.objects.select_for_update().filter(pk__in=keys).order_by("pk")
+    held = Release.objects.select_for_update(no_key=True).filter(pk__in=keys).order_by("pk")
     states = dict(held.values_list("pk", "state"))
     for assessment in assessments:
         if assessment.release.state != states[assessment.release_id]:
-            assessment.release.refresh_from_db()
+            assessment.release.refresh_from_db(fields=["state", "withdrawn_at", "withdrawal_reason"])
 
 
 def _freeze_part(part: ReportPart) -> None:
-    words = rendered(part.words, below=2)
-    fields: dict[str, object] = {"words_html": words}
+    fields: dict[str, object] = {"words_html": words_of(part)}
     if part.assessment is not None:
         refuse_unreportable(part.assessment)
         snapshot = snapshot_of(part)
@@ -67,23 +72,8 @@ def _freeze_part(part: ReportPart) -> None:
             "snapshot": snapshot.stored(),
             "heading": heading_of(part),
             "finding": finding(snapshot, snapshot.level_or_default()),
-            "words_html": withdrawal(part.assessment.release) + words,
         }
     ReportPart.objects.filter(pk=part.pk).update(**fields)
-
-
-def withdrawal(release: Release) -> str:
-    """What the words of a part begin with where its release is withdrawn already."""
-    if not release.is_withdrawn:
-        return ""
-    return format_html(
-        "<p><strong>{} of {} was withdrawn on {}, before this report was frozen: what was found of it should not be "
-        "relied on.</strong> The reason given: {}</p>",
-        str(release).capitalize(),
-        release.measurement,
-        f"{release.withdrawn_at:%-d %B %Y}",
-        release.withdrawal_reason or "none.",
-    )
 
 
 @transaction.atomic

@@ -34,7 +34,7 @@ def try_passphrase(link: ShareLink, given: str) -> None:
 @transaction.atomic
 def _begin(link: ShareLink) -> PassphraseTry | None:
     # Others at the same link wait here.
-    ShareLink.objects.select_for_update().get(pk=link.pk)
+    ShareLink.objects.select_for_update(no_key=True).order_by("pk").get(pk=link.pk)
     since = timezone.now() - WITHIN
     tries = PassphraseTry.objects.filter(link=link)
     tries.filter(at__lt=since).delete()

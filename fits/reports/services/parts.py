@@ -54,6 +54,10 @@ def add_part(
 def edit_part(*, part: ReportPart, seen: int) -> None:
     """Keep its heading, its words and what is shown, as they stand on `part`."""
     change_draft(part.report)
+    if not ReportPart.objects.filter(pk=part.pk).exists():
+        raise UserError(
+            "part-removed", "somebody else has taken this part out", "Keep what you wrote, and add it again"
+        )
     save_if_current(part, seen=seen, fields=("heading", "words", "shown"))
 
 

@@ -21,7 +21,7 @@ from fits.reports.draft_forms import AddPartForm, IntoReportForm, NewReportForm,
 from fits.reports.feature_searches import searches_of
 from fits.reports.models import Report, ReportPart
 from fits.reports.newest_assessments import newest_keys
-from fits.reports.readable import with_place
+from fits.reports.readable import RELEASE_BYTES, with_place
 from fits.reports.report_context import report_context
 from fits.reports.services.parts import refuse_unreportable
 
@@ -79,7 +79,7 @@ def draft_page(request: SignedInRequest, found: Report) -> HttpResponse:
     parts = (
         ReportPart.objects.filter(report=found)
         .select_related("assessment__release__measurement")
-        .defer("snapshot", "assessment__result", "assessment__detail")
+        .defer("snapshot", "assessment__result", "assessment__detail", *RELEASE_BYTES)
         .annotate(judged=Count("assessment__curves"))
     )
     rows = list(parts)

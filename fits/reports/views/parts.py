@@ -16,8 +16,10 @@ from fits.reports import services
 from fits.reports.draft_forms import AddPartForm, MoveForm, PartForm, SeenForm
 from fits.reports.feature_searches import searches_of
 from fits.reports.models import ReportPart
-from fits.reports.readable import with_place
+from fits.reports.readable import RELEASE_BYTES, with_place
 from fits.reports.views.draft import addable
+
+ASSESSED = "assessment__release__measurement"
 
 
 def _with_place() -> QuerySet[ReportPart]:
@@ -42,7 +44,7 @@ def add(request: SignedInRequest, pk: int) -> HttpResponse:
 @require_http_methods(["GET", "POST"])
 def part(request: SignedInRequest, pk: int) -> HttpResponse:
     """Heading and words of a part, and which theories it shows."""
-    places = _with_place().select_related("assessment__release__measurement").defer("assessment__detail")
+    places = _with_place().select_related(ASSESSED).defer("assessment__detail", *RELEASE_BYTES)
     found = load(places, request.user, Action.REPORT, pk)
     if found.report.is_frozen:
         return redirect(found.report)
@@ -94,7 +96,7 @@ def remove(request: SignedInRequest, pk: int) -> HttpResponse:
 @require_POST
 def renew(request: SignedInRequest, pk: int) -> HttpResponse:
     """Put the newest assessment in its place."""
-    places = _with_place().select_related("assessment__release__measurement").defer("assessment__detail")
+    places = _with_place().select_related(ASSESSED).defer("assessment__detail", *RELEASE_BYTES)
     found = load(places, request.user, Action.REPORT, pk)
     form = SeenForm(request.POST)
     if form.is_valid():
