@@ -10,6 +10,14 @@ from fits.assessments.models import Assessment
 from fits.reports.models import Report, ReportPart
 
 MARKDOWN = "Markdown: *emphasis*, lists, quotes, “#” for headings, [words](https://…) for a link. No images, no HTML."
+# Markdown of nothing but brackets takes long to read, and longer the more there is of it.
+MOST_CHARACTERS = 50_000
+
+
+def _words(help_text: str, label: str = "Words") -> forms.CharField:
+    return forms.CharField(
+        label=label, required=False, max_length=MOST_CHARACTERS, widget=forms.Textarea, help_text=help_text
+    )
 
 
 class NewReportForm(forms.ModelForm):  # type: ignore[type-arg]
@@ -46,16 +54,17 @@ class IntoReportForm(forms.Form):
 class ReportWordsForm(RevisionForm, forms.ModelForm):  # type: ignore[type-arg]
     """Title and opening words of a draft."""
 
+    words = _words(f"What was asked, and what you make of the answers. {MARKDOWN}", "Opening words")
+
     class Meta:
         model = Report
         fields = ("title", "words")
-        labels = {"words": "Opening words"}  # noqa: RUF012
-        help_texts = {"words": f"What was asked, and what you make of the answers. {MARKDOWN}"}  # noqa: RUF012
 
 
 class PartForm(RevisionForm, forms.ModelForm):  # type: ignore[type-arg]
     """Heading and words of a part, and which of the theories that were judged it shows."""
 
+    words = _words(MARKDOWN)
     shown = forms.MultipleChoiceField(
         label="Shown",
         widget=forms.CheckboxSelectMultiple,
@@ -70,7 +79,6 @@ class PartForm(RevisionForm, forms.ModelForm):  # type: ignore[type-arg]
         fields = ("heading", "words", "shown")
         help_texts = {  # noqa: RUF012
             "heading": "Without one, an assessment is headed by measurement and release.",
-            "words": MARKDOWN,
         }
 
     def __init__(self, *args: Any, names: Sequence[str], **kwargs: Any) -> None:

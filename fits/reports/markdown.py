@@ -15,9 +15,11 @@ TAGS = {
 
 def _is_allowed(address: str) -> bool:
     try:
-        return urlsplit(address).scheme.lower() in SCHEMES
+        parts = urlsplit(address)
     except ValueError:
         return False
+    # Without a host a browser would take "http:/path" for a page of this site.
+    return parts.scheme in SCHEMES and bool(parts.netloc or parts.scheme == "mailto")
 
 
 def _parser() -> MarkdownIt:

@@ -9,6 +9,7 @@ from django.urls import reverse
 
 from core.people.models import Collaboration, Membership, Role, User
 from fits.assessments.models import Assessment
+from fits.reports.draft_forms import MOST_CHARACTERS
 from fits.reports.models import Report, ReportPart
 from fits.reports.services import add_part, edit_part, start_report
 
@@ -119,6 +120,18 @@ def test_parts_are_added_written_moved_and_removed(
     draft.refresh_from_db()
     post(client, "remove_part", words.pk, seen=draft.revision)
     assert headings(draft) == ["", ""]
+
+
+@pytest.mark.parametrize("route", ["words", "part"])
+def test_words_that_would_take_long_to_read_are_refused(
+    signed_in: SignedIn, lead: User, draft: Report, route: str
+) -> None:
+    row = draft if route == "words" else draft.parts.get()
+    words = "[" * (MOST_CHARACTERS + 1)
+    page = post(signed_in(lead), route, row.pk, title="The floor", words=words, revision=row.revision)
+    assert "at most 50000 characters" in page.content.decode()
+    row.refresh_from_db()
+    assert row.words == ""
 
 
 def test_the_preview_shows_what_would_be_frozen(signed_in: SignedIn, lead: User, draft: Report) -> None:

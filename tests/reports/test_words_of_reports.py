@@ -18,6 +18,7 @@ HOSTILE = [
     "[go](vbscript:x)",
     "[go](//elsewhere.example)",
     "[go](/collaborations/1/)",
+    "[go](https:/collaborations/1/)",
     "[go](file:///etc/passwd)",
     "<javascript:alert(1)>",
     "[go][1]\n\n[1]: javascript:alert(1)",
@@ -61,6 +62,7 @@ def test_nothing_runs_is_fetched_or_leads_elsewhere_than_the_web(words: str) -> 
     for _, name, value in found.attributes:
         if name == "href":
             assert value.startswith(("http://", "https://", "mailto:"))
+            assert "/collaborations/" not in value
 
 
 def test_links_tell_nobody_where_they_were_followed_from() -> None:
