@@ -8,7 +8,6 @@ from core.worker import app
 from fits.assessments import leases
 from fits.assessments.tasks import ending
 from fits.reports.models import Paper, Printing
-from fits.reports.printing import printed
 
 
 @app.task(name="fits.reports.tasks.print_report")  # type: ignore[untyped-decorator]
@@ -17,6 +16,9 @@ def print_report(pk: int) -> None:
     lease = leases.take(Printing, pk)
     if lease is None:
         return
+    # Loaded here, since what draws charts takes a second to load, and workers that never print need none of it.
+    from fits.reports.printing import printed
+
     with ending(lease, f"printing {pk}"):
         printing = Printing.objects.select_related(
             "report__collaboration", "report__author", "report__previous"

@@ -216,7 +216,7 @@ def test_names_are_escaped_in_what_is_printed(lead: User, done: Assessment) -> N
 @pytest.fixture
 def quick(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(
-        "fits.reports.tasks.printed", lambda report, paper, step: f"%PDF {report.pk} {paper}".encode()
+        "fits.reports.printing.printed", lambda report, paper, step: f"%PDF {report.pk} {paper}".encode()
     )
 
 
@@ -268,7 +268,7 @@ def test_a_print_that_takes_too_long_fails_and_says_so(
     def slow(*_: Any) -> bytes:
         raise SoftTimeLimitExceeded
 
-    monkeypatch.setattr("fits.reports.tasks.printed", slow)
+    monkeypatch.setattr("fits.reports.printing.printed", slow)
     row = report.printings.get(paper="a4")
     print_report(row.pk)
     row.refresh_from_db()
@@ -289,7 +289,7 @@ def test_a_print_that_failed_says_so_and_a_lead_asks_again(
     def fail(*_: Any) -> bytes:
         raise RuntimeError("no letters")
 
-    monkeypatch.setattr("fits.reports.tasks.printed", fail)
+    monkeypatch.setattr("fits.reports.printing.printed", fail)
     row = ask_printing(report, Paper.A4)
     print_report(row.pk)
     address = reverse("reports:print", args=[report.pk, "a4"])
