@@ -179,5 +179,5 @@ def test_an_automatic_one_is_nobodys_deed(member: User, release: Release, curve:
     request_assessment(
         user=member, release=release, curves=[curve], settings=SETTINGS, seed=1, is_automatic=True
     )
-    entry = LogEntry.objects.get(deed="asked_assessment")
+    entry = LogEntry.objects.get(deed="began_assessment")
     assert (entry.who, "release 1" in entry.about) == (None, True)

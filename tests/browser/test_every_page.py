@@ -17,7 +17,7 @@ from core.people.models import User
 from core.theories.models import Curve, Theory
 from fits.assessments.features import features_of
 from fits.reports.models import ShareLink
-from tests.browser.conftest import WIDE, Browsing
+from tests.browser.conftest import HEIGHT, WIDE, Browsing
 from tests.browser.pages import PAGES, Row, a_batch, sealed
 from tests.browser.survey import Survey, survey_of
 from tests.reports.searches import NOTHING_FOUND, stored_search
@@ -74,7 +74,10 @@ def opened(row: Row, survey: Survey, browsing: Browsing, width: int) -> Page:
 def seen_faults(page: Page) -> list[str]:
     """What axe finds serious or critical."""
     page.evaluate(AXE_SCRIPT)
-    found: dict[str, Any] = page.evaluate("axe.run({resultTypes: ['violations']})")
+    # The strokes of drawings are left out, of which there are thousands: each stands in an element with a name.
+    found: dict[str, Any] = page.evaluate(
+        "axe.run({exclude: [['.js-plotly-plot .main-svg']]}, {resultTypes: ['violations']})"
+    )
     return [
         f"{fault['id']} ({fault['impact']}): {fault['help']}: {node['target']}"
         for fault in found["violations"]
@@ -104,15 +107,24 @@ def picture(page: Page, row: Row, width: int) -> None:
         page.screenshot(path=folder / f"{row.name}-{width}.png", full_page=True)
 
 
-@pytest.mark.parametrize("width", [WIDE, NARROW])
 @pytest.mark.parametrize("row", PAGES, ids=[row.name for row in PAGES])
 def test_a_page_is_readable_by_all_and_keeps_to_its_width(
-    row: Row, width: int, survey: Survey, browsing: Browsing
+    row: Row, survey: Survey, browsing: Browsing
 ) -> None:
-    page = opened(row, survey, browsing, width)
+    page = opened(row, survey, browsing, WIDE)
+    assert faults_at(page, row, WIDE) == []
+    if row.then is None:
+        page.set_viewport_size({"width": NARROW, "height": HEIGHT})
+        page.reload(wait_until="load")
+    else:
+        page = opened(row, survey, browsing, NARROW)
+    assert faults_at(page, row, NARROW) == []
+
+
+def faults_at(page: Page, row: Row, width: int) -> list[str]:
+    """What is wrong with the page as it stands."""
     picture(page, row, width)
-    assert sideways(page) == []
-    assert seen_faults(page) == []
+    return [*sideways(page), *seen_faults(page)]
 
 
 def routes(patterns: Sequence[URLPattern | URLResolver], space: str = "") -> Iterator[tuple[str, str]]:
