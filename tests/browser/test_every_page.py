@@ -226,7 +226,9 @@ def test_a_result_can_be_read_without_scripts(survey: Survey, browsing: Browsing
     assert stills.count() > 5
     for still in stills.all():
         expect(still).to_be_visible()
-        assert still.evaluate("still => still.complete && still.naturalWidth > 0")
+        page.wait_for_function(
+            "still => still.complete && still.naturalWidth > 0", arg=still.element_handle()
+        )
 
 
 def test_on_paper_every_chart_is_its_still_drawing(survey: Survey, browsing: Browsing) -> None:
@@ -240,4 +242,6 @@ def test_on_paper_every_chart_is_its_still_drawing(survey: Survey, browsing: Bro
     assert stills.count() > 5
     for still in stills.all():
         expect(still).to_be_visible()
-        assert still.evaluate("still => still.complete && still.naturalWidth > 0")
+        page.wait_for_function(
+            "still => still.complete && still.naturalWidth > 0", arg=still.element_handle()
+        )

@@ -121,7 +121,9 @@ def test_on_paper_every_chart_is_its_still_drawing(
     assert stills.count() >= 6
     for still in stills.all():
         expect(still).to_be_visible()
-        assert still.evaluate("still => still.complete && still.naturalWidth > 0")
+        page.wait_for_function(
+            "still => still.complete && still.naturalWidth > 0", arg=still.element_handle()
+        )
 
 
 def test_features_can_be_read_without_scripts(
